@@ -1,0 +1,92 @@
+package mcc
+
+import (
+	"math"
+
+	"ionfall/crosssections"
+	"ionfall/internal/phys"
+)
+
+// table gives collision probabilities as a function of relative speed: row r holds, for
+// every channel, the cumulated n sigma g / nu_max at speed r*step.
+type table struct {
+	channels int
+	perSpeed float64   // rows per unit of speed, in the caller's velocity unit
+	rows     []float64 // (tableRows+1) x channels, cumulated over channels
+	max      float64   // nu_max [1/s]
+	end      float64   // speed beyond which a cross section is extrapolated, caller's unit
+}
+
+// newTable tabulates the channels up to the speed top [m/s] each.
+func newTable(channels []channel, top, unit float64) table {
+	t := table{channels: len(channels), perSpeed: tableRows / (top / unit), end: math.Inf(1)}
+	t.rows = make([]float64, (tableRows+1)*len(channels))
+	for r := range tableRows + 1 {
+		g := top * float64(r) / tableRows
+		sum := 0.0
+		for c, ch := range channels {
+			sum += ch.density * ch.process.Table.At(ch.energyEV(g)) * g
+			t.rows[r*len(channels)+c] = sum
+			if ch.process.Table.Beyond(ch.energyEV(g)) {
+				t.end = math.Min(t.end, g/unit)
+			}
+		}
+		t.max = math.Max(t.max, sum)
+	}
+	if t.max > 0 {
+		for i := range t.rows {
+			t.rows[i] /= t.max
+		}
+	}
+	return t
+}
+
+// pick returns the channel that the uniform number u selects at relative speed g, or -1.
+func (t *table) pick(g, u float64) int {
+	at := g * t.perSpeed
+	r := int(at)
+	if r >= tableRows {
+		r, at = tableRows-1, tableRows
+	}
+	s := at - float64(r)
+	n := t.channels
+	rows := t.rows[r*n : r*n+2*n]
+	if u >= rows[n-1]+s*(rows[2*n-1]-rows[n-1]) {
+		return -1
+	}
+	for c := range n - 1 {
+		if u < rows[c]+s*(rows[n+c]-rows[c]) {
+			return c
+		}
+	}
+	return n - 1
+}
+
+// channel is one process with one component of the gas, with its kinematics prepared.
+type channel struct {
+	process *crosssections.Process
+	density float64 // of the target [1/m3]
+	share   float64 // M/(m+M): part of the relative velocity's change the projectile takes
+	loss2   float64 // g^2 lost to the threshold, 2 eps/mu in the caller's unit squared
+	thermal float64 // target's thermal speed, caller's unit
+	perG2   float64 // table energy [eV] over g^2 [m2/s2]
+}
+
+func newChannel(p *crosssections.Process, b Background, mass, unit float64) channel {
+	mu := mass * b.Gas.Mass / (mass + b.Gas.Mass)
+	energyMass := mu
+	if p.Frame == crosssections.Lab {
+		energyMass = mass
+	}
+	return channel{
+		process: p,
+		density: b.Density,
+		share:   b.Gas.Mass / (mass + b.Gas.Mass),
+		loss2:   2 * p.Threshold * phys.ElementaryCharge / mu / (unit * unit),
+		thermal: b.thermalSpeed() / unit,
+		perG2:   0.5 * energyMass / phys.ElementaryCharge,
+	}
+}
+
+// energyEV returns the energy at which the process is tabulated for relative speed g [m/s].
+func (c *channel) energyEV(g float64) float64 { return c.perG2 * g * g }
