@@ -1,0 +1,47 @@
+package pic
+
+import "math"
+
+// Tone is one cosine of the drive.
+type Tone struct {
+	Harmonic  int     // frequency over the fundamental
+	Amplitude float64 // [V]
+	Phase     float64 // [rad]
+}
+
+// Drive is the voltage of the powered electrode against the grounded one:
+//
+//	V(t) = Bias + sum of Amplitude cos(2 pi Harmonic t/T + Phase)
+//
+// with T the period of the fundamental.
+type Drive struct {
+	Bias  float64 // [V]
+	Tones []Tone
+}
+
+// At returns V [V] at the given part of the fundamental period.
+func (d Drive) At(part float64) float64 {
+	v := d.Bias
+	for _, t := range d.Tones {
+		v += t.Amplitude * math.Cos(2*math.Pi*float64(t.Harmonic)*part+t.Phase)
+	}
+	return v
+}
+
+// samples tabulates one period in n steps.
+func (d Drive) samples(n int) []float64 {
+	v := make([]float64, n)
+	for i := range v {
+		v[i] = d.At(float64(i) / float64(n))
+	}
+	return v
+}
+
+// Largest returns the largest magnitude of V the tones could add up to [V].
+func (d Drive) Largest() float64 {
+	v := math.Abs(d.Bias)
+	for _, t := range d.Tones {
+		v += math.Abs(t.Amplitude)
+	}
+	return v
+}

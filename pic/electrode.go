@@ -1,0 +1,121 @@
+package pic
+
+import (
+	"math"
+
+	"ionfall/internal/kernels"
+	"ionfall/internal/phys"
+	"ionfall/internal/rng"
+)
+
+// leave takes the particles that crossed a wall out of chunk c, or sends them back. out holds
+// their indices in increasing order; they are treated from the last, so that filling the gap with the
+// chunk's last particle never moves one that is still to come.
+func (s *Simulation) leave(w *worker, i, c int, out []int32) {
+	sp := &s.species[i]
+	ch := &sp.chunks[c]
+	stream := rng.Key{
+		Seed: s.config.Seed, Purpose: rng.Walls,
+		Species: uint16(i), Chunk: uint32(c), Step: uint64(w.step),
+	}.Stream()
+	cells := float64(s.config.Cells)
+	for k := len(out) - 1; k >= 0; k-- {
+		p := int(out[k])
+		wall, kick := Powered, w.kick[i][0]
+		depth := -ch.x[p] // how far behind the wall
+		if ch.x[p] > 0.5*cells {
+			wall, kick = Grounded, w.kick[i][s.config.Cells-1]
+			kick.A += kick.D
+			depth = ch.x[p] - cells
+		}
+		if sp.Charge < 0 && s.config.Electrodes[wall].ElectronReflection > 0 &&
+			stream.Float64() < s.config.Electrodes[wall].ElectronReflection {
+			if s.reflect(w, i, ch, p, wall, depth) {
+				continue
+			}
+		}
+		ch.take(p, wall, kick.A, depth)
+		if wall == Powered {
+			w.absorbed[(w.step+1)&1] += int64(sp.Charge)
+		}
+		if sp.Charge > 0 {
+			s.emit(w, &stream, c, wall)
+		}
+	}
+}
+
+// take removes particle p, counting its energy and noting its velocity where it crossed the
+// wall: a part f of the move after its start, v = v^(n+1/2) + a (f - 1/2).
+func (c *chunk) take(p int, wall Wall, a, depth float64) {
+	vx, vy, vz := c.vx[p], c.vy[p], c.vz[p]
+	c.tally.absorbed[wall]++
+	c.tally.absorbedV2[wall] += vx*vx + vy*vy + vz*vz
+	f := 1.0
+	if speed := math.Abs(vx); speed > 0 {
+		f = 1 - max(0, min(1, depth/speed))
+	}
+	hit := vx + a*(f-0.5)
+	if hit*vx < 0 {
+		hit = 0
+	}
+	c.hits = append(c.hits, Hit{wall, hit, vy, vz})
+	c.remove(p)
+}
+
+// reflect mirrors particle p at the wall; false if it is too far out to be inside afterwards.
+func (s *Simulation) reflect(w *worker, i int, ch *chunk, p int, wall Wall, depth float64) bool {
+	x := depth
+	if wall == Grounded {
+		x = float64(s.config.Cells) - depth
+	}
+	if !kernels.Inside(x, s.config.Cells) {
+		return false
+	}
+	ch.x[p] = x
+	ch.vx[p] = -ch.vx[p]
+	ch.tally.reflected[wall]++
+	kernels.Deposit(ch.x[p:p+1], w.deposit[(w.step+1)&1][i])
+	return true
+}
+
+// emit sets electrons free at the wall where an ion arrived: isotropic into the gap, with the
+// electrode's emission energy, at a random moment of the step.
+func (s *Simulation) emit(w *worker, stream *rng.Stream, c int, wall Wall) {
+	e := &s.config.Electrodes[wall]
+	if e.IonSecondaryYield == 0 || s.species[0].Charge >= 0 {
+		return
+	}
+	number := int(e.IonSecondaryYield + stream.Float64())
+	electrons := &s.species[0]
+	ch := &electrons.chunks[c]
+	speed := math.Sqrt(e.SecondaryEnergyEV * phys.ElementaryCharge / electrons.energyPer)
+	for range number {
+		vx, vy, vz := stream.Direction()
+		vx, vy, vz = speed*math.Abs(vx), speed*vy, speed*vz
+		x := vx * stream.Float64()
+		if wall == Grounded {
+			vx, x = -vx, float64(s.config.Cells)-x
+		}
+		if !kernels.Inside(x, s.config.Cells) {
+			x = max(0, math.Nextafter(float64(s.config.Cells), 0)-0x1p-20)
+		}
+		ch.add(x, vx, vy, vz)
+		ch.tally.emitted[wall]++
+		ch.tally.emittedV2 += vx*vx + vy*vy + vz*vz
+		kernels.Deposit(ch.x[len(ch.x)-1:], w.deposit[(w.step+1)&1][0])
+		if wall == Powered {
+			w.absorbed[(w.step+1)&1] -= int64(electrons.Charge)
+		}
+	}
+}
+
+// absorb shows the observers what the electrodes took from chunk c.
+func (s *Simulation) absorb(_ *worker, i, c int) {
+	hits := s.species[i].chunks[c].hits
+	if len(hits) == 0 {
+		return
+	}
+	for _, o := range s.observers {
+		o.Hits(i, c, hits)
+	}
+}

@@ -1,0 +1,104 @@
+package pic
+
+import (
+	"ionfall/internal/kernels"
+	"ionfall/internal/rng"
+)
+
+// carryDensity prepares the other side of the deposits: species that move start from nothing, those that rest
+// keep what they had.
+func (s *Simulation) carryDensity(w *worker) {
+	now, next := w.step&1, (w.step+1)&1
+	for i := range s.species {
+		if s.species[i].due(w.step) {
+			clear(w.deposit[next][i])
+		} else {
+			copy(w.deposit[next][i], w.deposit[now][i])
+		}
+	}
+	w.absorbed[next] = 0
+}
+
+// collide collides chunk c of species i with the gas, before it moves: a new pair of charges
+// starts at one place, so the field does not change.
+func (s *Simulation) collide(w *worker, i, c int) {
+	sp := &s.species[i]
+	if sp.Collisions == nil {
+		return
+	}
+	ch := &sp.chunks[c]
+	stream := rng.Key{
+		Seed: s.config.Seed, Purpose: rng.Collisions,
+		Species: uint16(i), Chunk: uint32(c), Step: uint64(w.step),
+	}.Stream()
+	out := ch.outcome
+	out.Births, out.Events = out.Births[:0], out.Events[:0]
+	sp.Collisions.Collide(&stream, ch.vx, ch.vy, ch.vz, out)
+	if len(s.observers) > 0 && len(out.Events) > 0 {
+		w.events = w.events[:0]
+		for _, e := range out.Events {
+			w.events = append(w.events, Event(e))
+		}
+		for _, o := range s.observers {
+			o.Events(w.step, i, c, ch.x, w.events)
+		}
+	}
+	for b := range out.Births {
+		birth := &out.Births[b]
+		s.bear(w, sp, c, sp.ionOf[birth.Channel], ch.x[birth.Parent], birth.Electron, birth.Ion)
+	}
+}
+
+// bear adds an electron and an ion at x. The ion's velocity comes in the electrons' unit.
+func (s *Simulation) bear(w *worker, electrons *Species, c, ion int, x float64, ve, vi [3]float64) {
+	ch := &electrons.chunks[c]
+	ch.add(x, ve[0], ve[1], ve[2])
+	ch.tally.born[0]++
+	ch.tally.bornV2 += ve[0]*ve[0] + ve[1]*ve[1] + ve[2]*ve[2]
+	sp := &s.species[ion]
+	k := float64(sp.Every) / float64(electrons.Every)
+	vi = [3]float64{k * vi[0], k * vi[1], k * vi[2]}
+	ions := &sp.chunks[c]
+	ions.add(x, vi[0], vi[1], vi[2])
+	ions.tally.born[0]++
+	ions.tally.bornV2 += vi[0]*vi[0] + vi[1]*vi[1] + vi[2]*vi[2]
+	if !sp.due(w.step) {
+		kernels.Deposit(ions.x[len(ions.x)-1:], w.deposit[(w.step+1)&1][ion])
+	}
+}
+
+// push kicks and moves chunk c of species i and deposits it for the next step.
+func (s *Simulation) push(w *worker, i, c int) {
+	ch := &s.species[i].chunks[c]
+	n := len(ch.x)
+	if len(ch.out) < n { // births beyond what was reserved
+		ch.out = make([]int32, n+n/4)
+	}
+	left := kernels.PushDeposit(ch.x, ch.vx, w.kick[i], w.deposit[(w.step+1)&1][i], ch.out)
+	w.moved += int64(n)
+	ch.hits = ch.hits[:0]
+	if left > 0 {
+		s.leave(w, i, c, ch.out[:left])
+	}
+}
+
+// startLeapfrog takes velocities half a move back, from time 0 to -1/2.
+func (s *Simulation) startLeapfrog() {
+	w := s.workers[0]
+	s.sumCharge(w, 0)
+	s.solvePotential(w, 0)
+	s.differentiate(w)
+	for i := range s.species {
+		sp := &s.species[i]
+		clear(w.fieldSum[i])
+		w.summed[i] = 0
+		for c := range sp.chunks {
+			ch := &sp.chunks[c]
+			for k, x := range ch.x {
+				j := int(x)
+				f := w.fieldA[j] + (x-float64(j))*w.fieldD[j]
+				ch.vx[k] -= 0.5 * sp.kickPerE * f
+			}
+		}
+	}
+}
