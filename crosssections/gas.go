@@ -1,0 +1,77 @@
+package crosssections
+
+import "slices"
+
+// ElectronName is the name of the electron among projectiles and products.
+const ElectronName = "e"
+
+// Source says where the numbers of a table come from.
+type Source struct {
+	Citation string // reference as printed: authors, journal, volume, page, year
+	Database string // collection the table was taken from; empty if none
+	Date     string // day of the download, YYYY-MM-DD; empty if none
+	Status   string // read, computed, derived or memory
+	Note     string // how it was obtained, pitfalls, doubts
+	Bib      string // key of the reference in the program's list of citations; may be empty
+}
+
+// Process is one kind of collision of one projectile with the gas.
+type Process struct {
+	Name       string   // unique within the gas
+	Kind       Kind     // what happens
+	Projectile string   // "e" or the name of an ion
+	Threshold  float64  // energy lost by the projectile, in the frame of the table [eV]
+	Frame      Frame    // meaning of the energy of the table
+	Table      Table    // cross section against energy
+	Products   []string // all products, charged and neutral; empty where nothing changes
+	// WeightRatio is the statistical weight of the upper over that of the lower level of an
+	// excitation that may run backwards; 0 if it may not.
+	WeightRatio float64
+	Source      Source // where the numbers come from
+	File        string // table within the library
+	SHA256      string // of that file, hexadecimal
+}
+
+// Ion is an ion that the processes of a gas make or move.
+type Ion struct {
+	Name   string  // with the charge: "Ar+"
+	Mass   float64 // [kg]
+	Charge int     // in elementary charges, with its sign
+}
+
+// Gas is a neutral gas with one set of processes.
+type Gas struct {
+	Name       string    // name in a mixture: "Ar"
+	Set        string    // name of the set: "default"
+	Title      string    // name in words: "argon"
+	Note       string    // why these tables, what to doubt
+	Mass       float64   // of the neutral [kg]
+	Ions       []Ion     // declared ions, in the order of gas.yaml
+	Electron   []Process // collisions of electrons; never of kind Effective
+	IonNeutral []Process // collisions of ions
+	Sets       []string  // names of all sets of the gas
+	Warnings   []string  // what happened while the set was prepared and a user should see
+	SHA256     string    // of gas.yaml, the name of the set and its tables, hexadecimal
+}
+
+// Ion is the declared ion with the name.
+func (g *Gas) Ion(name string) (Ion, bool) {
+	i := slices.IndexFunc(g.Ions, func(ion Ion) bool { return ion.Name == name })
+	if i < 0 {
+		return Ion{}, false
+	}
+	return g.Ions[i], true
+}
+
+// Processes are the collisions of the projectile, "e" or the name of an ion.
+func (g *Gas) Processes(projectile string) []Process {
+	var found []Process
+	for _, list := range [][]Process{g.Electron, g.IonNeutral} {
+		for _, p := range list {
+			if p.Projectile == projectile {
+				found = append(found, p)
+			}
+		}
+	}
+	return found
+}

@@ -1,0 +1,181 @@
+package crosssections
+
+import (
+	"crypto/sha256"
+	"embed"
+	"errors"
+	"fmt"
+	"io/fs"
+	"path"
+	"slices"
+	"strings"
+
+	"ionfall/internal/inputerr"
+)
+
+//go:embed data
+var bundled embed.FS
+
+// gasFileName is the file that makes a folder a gas.
+const gasFileName = "gas.yaml"
+
+// Library is a collection of gases, read and checked as a whole.
+type Library struct {
+	gases []libraryGas
+}
+
+// libraryGas is a gas with its sets, the default one first.
+type libraryGas struct {
+	name string
+	sets []Gas
+}
+
+// Bundled is the library that comes with the program.
+func Bundled() (*Library, error) {
+	root, err := fs.Sub(bundled, "data")
+	if err != nil {
+		return nil, fmt.Errorf("bundled cross sections: %w", err)
+	}
+	return OpenLibrary(root)
+}
+
+// OpenLibrary reads all gases of a file system: a folder a gas, each with a gas.yaml. The error
+// holds everything that is wrong with any of them.
+func OpenLibrary(fsys fs.FS) (*Library, error) {
+	entries, err := fs.ReadDir(fsys, ".")
+	if err != nil {
+		return nil, fmt.Errorf("cross-section library: %w", err)
+	}
+	var lib Library
+	var list inputerr.List
+	for _, entry := range entries {
+		if !entry.IsDir() || strings.HasPrefix(entry.Name(), ".") {
+			continue
+		}
+		if len(lib.gases) >= maxGases {
+			return nil, fmt.Errorf("cross-section library: more than %d gases", maxGases)
+		}
+		gas, err := readGas(fsys, entry.Name())
+		var some inputerr.List
+		switch {
+		case errors.As(err, &some):
+			list = append(list, some...)
+		case err != nil:
+			return nil, err
+		default:
+			lib.gases = append(lib.gases, gas)
+		}
+	}
+	if err := list.Err(); err != nil {
+		return nil, err
+	}
+	if len(lib.gases) == 0 {
+		return nil, errors.New("cross-section library: no gas: want a folder a gas, " +
+			"each with a " + gasFileName)
+	}
+	return &lib, nil
+}
+
+// Names are the gases of the library, sorted.
+func (l *Library) Names() []string {
+	names := make([]string, 0, len(l.gases))
+	for _, g := range l.gases {
+		names = append(names, g.name)
+	}
+	slices.Sort(names)
+	return names
+}
+
+// Gas is the gas with the name: "He" with its default set, "He/phelps" with another one. The
+// error for an unknown name lists the nearest and all known names.
+func (l *Library) Gas(name string) (*Gas, error) {
+	gasName, setName, hasSet := strings.Cut(name, "/")
+	if !hasSet {
+		setName = defaultSet
+	}
+	i := slices.IndexFunc(l.gases, func(g libraryGas) bool { return g.name == gasName })
+	if i < 0 {
+		return nil, unknown("gas", gasName, l.Names())
+	}
+	for _, set := range l.gases[i].sets {
+		if set.Set == setName {
+			return set.clone(), nil
+		}
+	}
+	return nil, unknown("set of "+gasName, setName, l.gases[i].sets[0].Sets)
+}
+
+// clone is a copy that shares no list with the library except the rows of the tables, which
+// nobody changes.
+func (g Gas) clone() *Gas {
+	g.Ions = slices.Clone(g.Ions)
+	g.Electron = slices.Clone(g.Electron)
+	g.IonNeutral = slices.Clone(g.IonNeutral)
+	g.Sets = slices.Clone(g.Sets)
+	g.Warnings = slices.Clone(g.Warnings)
+	return &g
+}
+
+func unknown(what, name string, known []string) error {
+	hint := didYouMean(name, known)
+	if hint != "" {
+		hint = " (" + hint + ")"
+	}
+	return fmt.Errorf("unknown %s %s%s: want one of %s", what, quoted(name), hint,
+		strings.Join(known, ", "))
+}
+
+// readGas reads and checks the folder of a gas.
+func readGas(fsys fs.FS, folder string) (libraryGas, error) {
+	name := path.Join(folder, gasFileName)
+	data, err := fs.ReadFile(fsys, name)
+	if err != nil {
+		return libraryGas{}, fmt.Errorf("gas %q: %w", folder, err)
+	}
+	r, err := readGasFile(name, data)
+	if err != nil {
+		return libraryGas{}, err
+	}
+	r.check(folder)
+	tables := r.readTables(fsys, folder)
+	if err := r.err(); err != nil {
+		return libraryGas{}, err
+	}
+	sum := sha256.Sum256(data)
+	return libraryGas{name: folder, sets: r.assemble(folder, tables, sum[:])}, nil
+}
+
+// readTables reads the tables of all processes, each file once.
+func (r *gasReader) readTables(fsys fs.FS, folder string) map[string]*TableFile {
+	tables := map[string]*TableFile{}
+	failed := map[string]bool{}
+	for i := range r.out.processes {
+		p := &r.out.processes[i]
+		if p.file == "" || p.file != path.Base(p.file) || failed[p.file] {
+			continue // noted before
+		}
+		name := path.Join(folder, p.file)
+		if tables[p.file] == nil {
+			data, err := fs.ReadFile(fsys, name)
+			failed[p.file] = err != nil
+			if err != nil {
+				r.at(p.fileAt, "file", quoted(p.file)+", which is not there",
+					"a file in the folder of the gas")
+				continue
+			}
+			table, err := ReadTable(name, data)
+			failed[p.file] = err != nil
+			if err != nil {
+				var list inputerr.List
+				errors.As(err, &list)
+				r.list = append(r.list, list...)
+				continue
+			}
+			tables[p.file] = table
+		}
+		c := complaints{file: name}
+		checkTable(p, tables[p.file], &c)
+		r.list = append(r.list, c.list...)
+	}
+	return tables
+}
