@@ -1,0 +1,180 @@
+package config
+
+import (
+	"reflect"
+)
+
+// Case is a checked input. It is plain data: change a copy freely, and let Resolved check it.
+type Case struct {
+	// Title is a line for people, or "".
+	Title string
+	// Gap is the distance between the electrodes [m]: x = 0 is the powered one.
+	Gap        float64
+	Gas        Gas
+	Drive      Drive
+	Electrodes Electrodes
+	Accuracy   Accuracy
+	Budget     Budget
+	Initial    Initial
+	// Film is nil when no growth data were given.
+	Film *Film
+	// IonEnergyThresholds are the energies above which the ion flux is asked for [eV].
+	IonEnergyThresholds []float64
+	// Seed selects the random numbers.
+	Seed     uint64
+	Numerics Numerics
+
+	origin *origin
+}
+
+// Gas is the neutral background.
+type Gas struct {
+	// Pressure of the mixture [Pa].
+	Pressure float64
+	// Temperature of the mixture [K].
+	Temperature float64
+	// Mixture in the order of the file; the fractions sum to 1 within 1e-6.
+	Mixture []Component
+}
+
+// Component is one gas of a mixture.
+type Component struct {
+	// Gas is its name as written; whether such a gas is known is for the caller to decide.
+	Gas string
+	// Fraction of the molecules, above 0 and at most 1.
+	Fraction float64
+}
+
+// Drive is the voltage of the powered electrode: V(t) = bias + sum of cosines.
+type Drive struct {
+	// Tones has at least one element.
+	Tones []Tone
+	// Bias is the constant part [V].
+	Bias float64
+}
+
+// Tone is one term, amplitude * cos(2 pi frequency t + phase).
+type Tone struct {
+	// Frequency [Hz].
+	Frequency float64
+	// Amplitude, not peak to peak [V].
+	Amplitude float64
+	// Phase [rad].
+	Phase float64
+}
+
+// Electrodes are the two walls.
+type Electrodes struct {
+	// Powered is at x = 0, Grounded at x = gap.
+	Powered, Grounded Electrode
+}
+
+// Electrode is one wall.
+type Electrode struct {
+	// IonSecondaryYield is the mean number of electrons an arriving ion sets free.
+	IonSecondaryYield float64
+	// SecondaryElectronEnergy is the energy they start with [eV].
+	SecondaryElectronEnergy float64
+	// ElectronReflection is the part of the arriving electrons that is reflected, below 1.
+	ElectronReflection float64
+	// Substrate says that the film grows here.
+	Substrate bool
+}
+
+// Accuracy is the relative standard error that ends a run when it is reached.
+type Accuracy struct {
+	// IonEnergy is that of the mean ion energy, IonFlux that of the ion flux; 0.01 is 1 %.
+	IonEnergy, IonFlux float64
+}
+
+// Budget ends a run that has not reached its accuracy; 0 is no limit.
+type Budget struct {
+	// CPU time [s].
+	CPU float64
+	// Periods is the number of RF periods.
+	Periods int
+}
+
+// Initial is the uniform plasma at the start; 0 is to be estimated.
+type Initial struct {
+	// Density of the electrons [1/m3].
+	Density float64
+	// ElectronTemperature [K].
+	ElectronTemperature float64
+}
+
+// Film is the growth that the ion flux is compared with.
+type Film struct {
+	// GrowthRate is the thickness gained a second [m/s].
+	GrowthRate float64
+	// AtomDensity is the number of atoms in a volume of film [1/m3].
+	AtomDensity float64
+}
+
+// Numerics are the numerical settings; 0 and "" are chosen automatically.
+type Numerics struct {
+	// Cells between the electrodes.
+	Cells int
+	// StepsPerPeriod is the number of electron steps in a period of the fundamental.
+	StepsPerPeriod int
+	// ParticlesPerCell of each species, at the start.
+	ParticlesPerCell int
+	// Scheme is MomentumConserving, EnergyConserving or "".
+	Scheme string
+	// IonSubsteps K: ions move once every K electron steps.
+	IonSubsteps int
+	// Periods is the whole length of a run of fixed length, in RF periods; 0 lets the accuracy
+	// decide. A run of fixed length makes no density extrapolation.
+	Periods int
+	// AveragePeriods is how many of them, the last ones, are averaged over.
+	AveragePeriods int
+	// Extrapolation is ExtrapolationAuto, or ExtrapolationOff to forbid the steps that project
+	// the density ahead while the run settles.
+	Extrapolation string
+}
+
+// The words that Numerics.Scheme and Numerics.Extrapolation may hold.
+const (
+	MomentumConserving = "momentum_conserving"
+	EnergyConserving   = "energy_conserving"
+	ExtrapolationAuto  = "auto"
+	ExtrapolationOff   = "off"
+)
+
+// newCase is a Case with all defaults; what has none is zero.
+func newCase() *Case {
+	wall := Electrode{SecondaryElectronEnergy: 1}
+	substrate := wall
+	substrate.Substrate = true
+	return &Case{
+		Gas:        Gas{Temperature: 300},
+		Electrodes: Electrodes{Powered: wall, Grounded: substrate},
+		Accuracy:   Accuracy{IonEnergy: 0.01, IonFlux: 0.01},
+		Seed:       1,
+		Numerics:   Numerics{Extrapolation: ExtrapolationAuto},
+	}
+}
+
+// Equal compares the values of two cases, not where they were written.
+func (c *Case) Equal(other *Case) bool {
+	if c == nil || other == nil {
+		return c == other
+	}
+	return reflect.DeepEqual(c.bare(), other.bare())
+}
+
+// bare is a copy without positions, and with empty lists as nil.
+func (c *Case) bare() Case {
+	b := *c
+	b.origin = nil
+	if len(b.IonEnergyThresholds) == 0 {
+		b.IonEnergyThresholds = nil
+	}
+	if len(b.Gas.Mixture) == 0 {
+		b.Gas.Mixture = nil
+	}
+	if len(b.Drive.Tones) == 0 {
+		b.Drive.Tones = nil
+	}
+	return b
+}
