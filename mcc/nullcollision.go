@@ -22,9 +22,19 @@ type Outcome struct {
 	Counts []int64   // collisions by channel
 	Loss   []float64 // sum of v^2 the particles lost, by channel, in units squared
 	Events []Event   // non-elastic collisions and where they happened, if KeepEvents
-	Beyond int64     // collisions judged by an extrapolated cross section
+	Beyond int64     // collisions above TopEnergy or by an extrapolated cross section
 	// KeepEvents asks for Events.
 	KeepEvents bool
+	// Advance, if not nil, gives the velocity along x that particle i gains until the time of the
+	// collision. Velocities that lag half a step behind are so collided at their own time:
+	// without it, each collision would cost half a kick, an error of first order in the step.
+	Advance Advancer
+}
+
+// Advancer tells how much vx changes between the time of the velocities and that of the
+// collisions, in the model's unit.
+type Advancer interface {
+	HalfKick(i int) float64
 }
 
 // Event is a collision of the particle at index Particle.
@@ -55,6 +65,11 @@ func (m *Model) collideElectrons(s *rng.Stream, vx, vy, vz []float64, out *Outco
 	for at := s.Exponential() * gap; at < float64(len(vx)); at += s.Exponential() * gap {
 		i := int(at)
 		x, y, z := vx[i], vy[i], vz[i]
+		ahead := 0.0
+		if out.Advance != nil {
+			ahead = out.Advance.HalfKick(i)
+			x += ahead
+		}
 		v2 := x*x + y*y + z*z
 		v := math.Sqrt(v2)
 		c := t.pick(v, s.Float64())
@@ -70,11 +85,12 @@ func (m *Model) collideElectrons(s *rng.Stream, vx, vy, vz []float64, out *Outco
 		if !ok {
 			continue
 		}
-		vx[i], vy[i], vz[i] = x, y, z
+		vx[i], vy[i], vz[i] = x-ahead, y, z
 		after := x*x + y*y + z*z
 		if len(out.Births) > n0 {
 			e := &out.Births[n0].Electron
 			after += e[0]*e[0] + e[1]*e[1] + e[2]*e[2]
+			e[0] -= ahead
 		}
 		out.Counts[c]++
 		out.Loss[c] += v2 - after
@@ -124,6 +140,11 @@ func (m *Model) collideIons(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
 		}
 		gr := &m.groups[k]
 		x, y, z := vx[i], vy[i], vz[i]
+		ahead := 0.0
+		if out.Advance != nil {
+			ahead = out.Advance.HalfKick(i)
+			x += ahead
+		}
 		ux, uy, uz := gr.thermal*s.Normal(), gr.thermal*s.Normal(), gr.thermal*s.Normal()
 		gx, gy, gz := x-ux, y-uy, z-uz
 		g := math.Sqrt(gx*gx + gy*gy + gz*gz)
@@ -144,7 +165,7 @@ func (m *Model) collideIons(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
 			ex, ey, ez := s.Direction()
 			x, y, z = x+f*(g*ex-gx), y+f*(g*ey-gy), z+f*(g*ez-gz)
 		}
-		vx[i], vy[i], vz[i] = x, y, z
+		vx[i], vy[i], vz[i] = x-ahead, y, z
 		out.Counts[c]++
 		out.Loss[c] += before - (x*x + y*y + z*z)
 		if out.KeepEvents {

@@ -14,12 +14,12 @@ type table struct {
 	perSpeed float64   // rows per unit of speed, in the caller's velocity unit
 	rows     []float64 // (tableRows+1) x channels, cumulated over channels
 	max      float64   // nu_max [1/s]
-	end      float64   // speed beyond which a cross section is extrapolated, caller's unit
+	end      float64   // speed beyond which a cross section is extrapolated or a rate held
 }
 
 // newTable tabulates the channels up to the speed top [m/s] each.
 func newTable(channels []channel, top, unit float64) table {
-	t := table{channels: len(channels), perSpeed: tableRows / (top / unit), end: math.Inf(1)}
+	t := table{channels: len(channels), perSpeed: tableRows / (top / unit), end: top / unit}
 	t.rows = make([]float64, (tableRows+1)*len(channels))
 	for r := range tableRows + 1 {
 		g := top * float64(r) / tableRows
@@ -44,9 +44,11 @@ func newTable(channels []channel, top, unit float64) table {
 // pick returns the channel that the uniform number u selects at relative speed g, or -1.
 func (t *table) pick(g, u float64) int {
 	at := g * t.perSpeed
-	r := int(at)
-	if r >= tableRows {
-		r, at = tableRows-1, tableRows
+	r := tableRows - 1
+	if at < tableRows { // false for what is no number, too
+		r = int(at)
+	} else {
+		at = tableRows
 	}
 	s := at - float64(r)
 	n := t.channels

@@ -116,3 +116,15 @@ func (s *Simulation) fieldEnergy() float64 {
 	}
 	return 0.5 * phys.Epsilon0 * sum * dx
 }
+
+// Kinetic returns the kinetic energy of each species [J/m2].
+func (s *Simulation) Kinetic() []float64 {
+	list := make([]float64, len(s.species))
+	for i := range s.species {
+		sp := &s.species[i]
+		for c := range sp.chunks {
+			list[i] += s.config.Weight * sp.energyPer * sp.chunks[c].v2()
+		}
+	}
+	return list
+}

@@ -33,6 +33,8 @@ func (s *Simulation) collide(w *worker, i, c int) {
 	}.Stream()
 	out := ch.outcome
 	out.Births, out.Events = out.Births[:0], out.Events[:0]
+	w.half = halfKick{ch.x, w.kick[i]}
+	out.Advance = &w.half
 	sp.Collisions.Collide(&stream, ch.vx, ch.vy, ch.vz, out)
 	if len(s.observers) > 0 && len(out.Events) > 0 {
 		w.events = w.events[:0]
@@ -47,6 +49,20 @@ func (s *Simulation) collide(w *worker, i, c int) {
 		birth := &out.Births[b]
 		s.bear(w, sp, c, sp.ionOf[birth.Channel], ch.x[birth.Parent], birth.Electron, birth.Ion)
 	}
+}
+
+// halfKick brings a particle's velocity from n-1/2 to n, where its position is and the collision
+// happens (mcc.Advancer).
+type halfKick struct {
+	x    []float64
+	kick []kernels.Field
+}
+
+// HalfKick implements mcc.Advancer.
+func (h *halfKick) HalfKick(i int) float64 {
+	j := int(h.x[i])
+	f := &h.kick[j]
+	return 0.5 * (f.A + (h.x[i]-float64(j))*f.D)
 }
 
 // bear adds an electron and an ion at x. The ion's velocity comes in the electrons' unit.

@@ -52,6 +52,7 @@ type worker struct {
 	summed         []int64
 	frame          Frame
 	events         []Event
+	half           halfKick
 }
 
 // New returns an empty discharge at step 0. Fill it by Load or Add, then Advance.
@@ -107,13 +108,16 @@ func (s *Simulation) linkBirths(sp *Species) error {
 	return nil
 }
 
-// Observe adds an observer. Observers are called in the order in which they were added.
-func (s *Simulation) Observe(o Observer) {
-	s.observers = append(s.observers, o)
+// Observe adds an observer, after those there are. Only between steps.
+func (s *Simulation) Observe(o Observer) { s.SetObservers(append(s.observers, o)...) }
+
+// SetObservers sets who looks on; they are called in this order. Only between steps.
+func (s *Simulation) SetObservers(list ...Observer) {
+	s.observers = list
 	for i := range s.species {
 		for c := range s.species[i].chunks {
 			if out := s.species[i].chunks[c].outcome; out != nil {
-				out.KeepEvents = true
+				out.KeepEvents = len(list) > 0
 			}
 		}
 	}
