@@ -5,9 +5,10 @@ import (
 	"sync/atomic"
 )
 
-// spins is how often a waiting worker polls before it offers its processor to others: about
-// 20 us, longer than workers of a balanced step are apart.
-const spins = 20_000
+// spins is how often a waiting worker polls before it offers its processor to others: some
+// microseconds, longer than workers of a balanced step are apart. On a busy machine the one that
+// is waited for may need this very processor.
+const spins = 4_000
 
 // barrier lets workers wait for each other at the end of every step: 0.1 us instead of the
 // 10 us of a sleeping wait. A worker raises its own flag and polls the others'.
