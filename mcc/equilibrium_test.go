@@ -67,16 +67,28 @@ func TestIonsReachGasTemperature(t *testing.T) {
 
 // Goal: light projectiles come to the temperature of the gas by elastic collisions. Method:
 // electrons in a gas of seven electron masses, which takes 2 m M/(m+M)^2 = 22 % of the difference
-// in each of 60 collisions (e^-13 is left of it). The frequency is constant: electrons are judged
-// by their own speed, so that detailed balance is exact only where the frequency does not depend
-// on it; otherwise it errs by the order of the gas's energy over the electron's.
+// in each of some 60 collisions (e^-13 is left of it). With a constant frequency, and with a
+// constant cross section: judged by the electron's own speed instead of the relative one, the
+// latter would end at three quarters of the temperature.
 func TestElectronsReachGasTemperature(t *testing.T) {
-	m := onlyChannel(t, "e", crosssections.Elastic, phys.ElectronMass, light, 300, 0, 3)
-	s := stream(210)
-	vx, vy, vz := maxwellian(s, population(), 3000, phys.ElectronMass)
-	out := m.NewOutcome()
-	for range 200 { // at 0.3 candidates each
-		m.Collide(s, vx, vy, vz, out)
+	for _, c := range []struct {
+		name  string
+		sigma func(e float64) float64
+		steps int
+	}{
+		{"constant frequency", inverseSpeed(1e9, testDensity, phys.ElectronMass), 200},
+		{"constant cross section", func(float64) float64 { return 1e-19 }, 800},
+	} {
+		b := background(light, 300, process("p", "e", crosssections.Elastic, 0,
+			tabulate(0, 0.6, c.sigma)))
+		m := mustModel(t, "e", phys.ElectronMass, 0.6, 0.3, b)
+		s := stream(210)
+		vx, vy, vz := maxwellian(s, population(), 2000, phys.ElectronMass)
+		out := m.NewOutcome()
+		for range c.steps {
+			m.Collide(s, vx, vy, vz, out)
+		}
+		t.Logf("%s: %.0f collisions each", c.name, float64(out.Counts[0])/float64(len(vx)))
+		checkMaxwellian(t, "electrons, "+c.name, 300, phys.ElectronMass, vx, vy, vz)
 	}
-	checkMaxwellian(t, "electrons", 300, phys.ElectronMass, vx, vy, vz)
 }

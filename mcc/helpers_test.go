@@ -191,22 +191,18 @@ func single(m *Model, s *rng.Stream, v vector) collision {
 }
 
 // replay draws the target's velocity of the first collision again, in the order of Collide:
-// candidate, channel, target for electrons; candidate, target, channel for ions.
+// candidate, channel's number, then the target unless the number is above every ceiling.
 func replay(m *Model, s *rng.Stream, v vector) vector {
 	gr := &m.groups[0]
 	for {
 		s.Exponential()
-		if m.settings.Projectile == "e" {
-			c := gr.table.pick(v.norm(), s.Float64())
-			if c < 0 {
-				continue
-			}
-			th := m.channels[c].thermal
-			return vector{th * s.Normal(), th * s.Normal(), th * s.Normal()}
+		u := s.Float64()
+		if !gr.table.mayCollide(v.norm(), u) {
+			continue
 		}
-		u := vector{gr.thermal * s.Normal(), gr.thermal * s.Normal(), gr.thermal * s.Normal()}
-		if gr.table.pick(v.add(-1, u).norm(), s.Float64()) >= 0 {
-			return u
+		target := vector{gr.thermal * s.Normal(), gr.thermal * s.Normal(), gr.thermal * s.Normal()}
+		if gr.table.pick(v.add(-1, target).norm(), u) >= 0 {
+			return target
 		}
 	}
 }

@@ -26,8 +26,7 @@ type Model struct {
 	rate     float64 // candidates a particle and step, nu_max dt
 }
 
-// group is what is judged by one relative speed: everything for electrons, the channels with one
-// component of the gas for ions.
+// group is what is judged by one relative speed: the channels with one component of the gas.
 type group struct {
 	table   table
 	first   int     // index of its first channel
@@ -57,20 +56,17 @@ func NewModel(set Settings, gas []Background) (*Model, error) {
 			}
 			m.channels = append(m.channels, newChannel(p, b, set.Mass, set.Unit))
 		}
-		if !electrons && len(m.channels) > first {
+		if len(m.channels) > first {
 			// The target adds its own speed to the fastest relative speed.
-			reach := top + 6*b.thermalSpeed()
+			reach := fastestTarget * b.thermalSpeed()
 			m.groups = append(m.groups, group{
-				table: newTable(m.channels[first:], reach, set.Unit), first: first,
+				table: newTable(m.channels[first:], top+reach, reach, set.Unit), first: first,
 				thermal: b.thermalSpeed() / set.Unit,
 			})
 		}
 	}
 	if len(m.channels) == 0 {
 		return nil, fmt.Errorf("mcc: no cross section of %s with this gas", set.Projectile)
-	}
-	if electrons {
-		m.groups = []group{{table: newTable(m.channels, top, set.Unit)}}
 	}
 	return m, m.finish()
 }

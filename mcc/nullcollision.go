@@ -51,125 +51,107 @@ func (m *Model) NewOutcome() *Outcome {
 // Collide collides the particles of velocities (vx, vy, vz), in the model's unit, for one time
 // step. New particles are not added to the slices; they are in out.Births.
 func (m *Model) Collide(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
-	if m.settings.Projectile == "e" {
-		m.collideElectrons(s, vx, vy, vz, out)
-		return
-	}
-	m.collideIons(s, vx, vy, vz, out)
-}
-
-func (m *Model) collideElectrons(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
-	t := &m.groups[0].table
 	vy, vz = vy[:len(vx)], vz[:len(vx)]
 	gap := 1 / m.rate
 	for at := s.Exponential() * gap; at < float64(len(vx)); at += s.Exponential() * gap {
 		i := int(at)
-		x, y, z := vx[i], vy[i], vz[i]
-		ahead := 0.0
-		if out.Advance != nil {
-			ahead = out.Advance.HalfKick(i)
-			x += ahead
-		}
-		v2 := x*x + y*y + z*z
-		v := math.Sqrt(v2)
-		c := t.pick(v, s.Float64())
-		if c < 0 {
-			continue
-		}
-		if v > t.end {
-			out.Beyond++
-		}
-		ch := &m.channels[c]
-		n0 := len(out.Births)
-		x, y, z, ok := ch.electron(s, x, y, z, int32(i), int32(c), out)
-		if !ok {
-			continue
-		}
-		vx[i], vy[i], vz[i] = x-ahead, y, z
-		after := x*x + y*y + z*z
-		if len(out.Births) > n0 {
-			e := &out.Births[n0].Electron
-			after += e[0]*e[0] + e[1]*e[1] + e[2]*e[2]
-			e[0] -= ahead
-		}
-		out.Counts[c]++
-		out.Loss[c] += v2 - after
-		if out.KeepEvents && ch.process.Kind != crosssections.Elastic {
-			out.Events = append(out.Events, Event{int32(i), int32(c)})
-		}
-	}
-}
-
-// electron returns the electron's velocity after the collision; false if its energy does not
-// reach the threshold (the table is linear between rows on both sides of it).
-func (c *channel) electron(s *rng.Stream, x, y, z float64, i, index int32, out *Outcome) (
-	_, _, _ float64, ok bool) {
-	ux, uy, uz := c.thermal*s.Normal(), c.thermal*s.Normal(), c.thermal*s.Normal()
-	gx, gy, gz := x-ux, y-uy, z-uz
-	rest := gx*gx + gy*gy + gz*gz - c.loss2
-	if rest < 0 {
-		return 0, 0, 0, false
-	}
-	if c.process.Kind == crosssections.Ionization {
-		// Half of the excess energy each: mu (g^2 - loss2)/2 = 2 x m g'^2/2, with mu = share m.
-		g := math.Sqrt(0.5 * c.share * rest)
-		ex, ey, ez := s.Direction()
-		out.Births = append(out.Births, Birth{
-			Parent: i, Channel: index,
-			Electron: [3]float64{ux + g*ex, uy + g*ey, uz + g*ez},
-			Ion:      [3]float64{ux, uy, uz},
-		})
-		ex, ey, ez = s.Direction()
-		return ux + g*ex, uy + g*ey, uz + g*ez, true
-	}
-	g := math.Sqrt(rest)
-	ex, ey, ez := s.Direction()
-	f := c.share
-	return x + f*(g*ex-gx), y + f*(g*ey-gy), z + f*(g*ez-gz), true
-}
-
-func (m *Model) collideIons(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
-	vy, vz = vy[:len(vx)], vz[:len(vx)]
-	gap := 1 / m.rate
-	for at := s.Exponential() * gap; at < float64(len(vx)); at += s.Exponential() * gap {
-		i := int(at)
-		k := 0
+		gr := &m.groups[0]
 		if len(m.groups) > 1 {
-			for u := s.Float64(); u >= m.groups[k].upTo; k++ {
-			}
+			gr = m.pickGroup(s.Float64())
 		}
-		gr := &m.groups[k]
-		x, y, z := vx[i], vy[i], vz[i]
+		v := velocity{vx[i], vy[i], vz[i]}
 		ahead := 0.0
 		if out.Advance != nil {
 			ahead = out.Advance.HalfKick(i)
-			x += ahead
+			v.x += ahead
 		}
-		ux, uy, uz := gr.thermal*s.Normal(), gr.thermal*s.Normal(), gr.thermal*s.Normal()
-		gx, gy, gz := x-ux, y-uy, z-uz
-		g := math.Sqrt(gx*gx + gy*gy + gz*gz)
-		c := gr.table.pick(g, s.Float64())
+		u := s.Float64()
+		if !gr.table.mayCollide(math.Sqrt(v.square()), u) {
+			continue
+		}
+		target := velocity{gr.thermal * s.Normal(), gr.thermal * s.Normal(), gr.thermal * s.Normal()}
+		g := math.Sqrt(v.minus(target).square())
+		c := gr.table.pick(g, u)
 		if c < 0 {
+			continue
+		}
+		after, ok := m.channels[gr.first+c].collide(s, v, target, int32(i), int32(gr.first+c), out)
+		if !ok {
 			continue
 		}
 		if g > gr.table.end {
 			out.Beyond++
 		}
-		c += gr.first
-		ch := &m.channels[c]
-		before := x*x + y*y + z*z
-		f := ch.share
-		if ch.process.Kind == crosssections.Backscatter {
-			x, y, z = x-2*f*gx, y-2*f*gy, z-2*f*gz
-		} else {
-			ex, ey, ez := s.Direction()
-			x, y, z = x+f*(g*ex-gx), y+f*(g*ey-gy), z+f*(g*ez-gz)
-		}
-		vx[i], vy[i], vz[i] = x-ahead, y, z
-		out.Counts[c]++
-		out.Loss[c] += before - (x*x + y*y + z*z)
-		if out.KeepEvents {
-			out.Events = append(out.Events, Event{int32(i), int32(c)})
-		}
+		vx[i], vy[i], vz[i] = after.x-ahead, after.y, after.z
+		m.count(gr.first+c, i, v.square()-after.square(), ahead, out)
 	}
+}
+
+// pickGroup returns the group that the uniform number u selects.
+func (m *Model) pickGroup(u float64) *group {
+	k := 0
+	for u >= m.groups[k].upTo {
+		k++
+	}
+	return &m.groups[k]
+}
+
+// count enters a collision into the outcome. A birth's share of the energy has not been lost.
+func (m *Model) count(c, i int, lost, ahead float64, out *Outcome) {
+	kind := m.channels[c].process.Kind
+	if kind == crosssections.Ionization {
+		e := &out.Births[len(out.Births)-1].Electron
+		lost -= e[0]*e[0] + e[1]*e[1] + e[2]*e[2]
+		e[0] -= ahead
+	}
+	out.Counts[c]++
+	out.Loss[c] += lost
+	if out.KeepEvents && kind != crosssections.Elastic {
+		out.Events = append(out.Events, Event{int32(i), int32(c)})
+	}
+}
+
+// collide returns the projectile's velocity after a collision with the target; false if the energy
+// does not reach the threshold (the table is linear between rows on both sides of it).
+func (c *channel) collide(
+	s *rng.Stream, v, target velocity, i, index int32, out *Outcome,
+) (after velocity, ok bool) {
+	g := v.minus(target)
+	if c.process.Kind == crosssections.Backscatter {
+		return v.plus(-2*c.share, g), true
+	}
+	rest := g.square() - c.loss2
+	if rest < 0 {
+		return v, false
+	}
+	if c.process.Kind == crosssections.Ionization {
+		// Half of the excess energy each: mu (g^2 - loss2)/2 = 2 x m g'^2/2, with mu = share m.
+		speed := math.Sqrt(0.5 * c.share * rest)
+		born := target.plus(speed, direction(s))
+		out.Births = append(out.Births, Birth{
+			Parent: i, Channel: index,
+			Electron: [3]float64{born.x, born.y, born.z},
+			Ion:      [3]float64{target.x, target.y, target.z},
+		})
+		return target.plus(speed, direction(s)), true
+	}
+	turned := velocity{}.plus(math.Sqrt(rest), direction(s))
+	return v.plus(c.share, turned.minus(g)), true
+}
+
+// velocity is a velocity.
+type velocity struct{ x, y, z float64 }
+
+func direction(s *rng.Stream) velocity {
+	x, y, z := s.Direction()
+	return velocity{x, y, z}
+}
+
+func (a velocity) square() float64 { return a.x*a.x + a.y*a.y + a.z*a.z }
+
+func (a velocity) minus(b velocity) velocity { return velocity{a.x - b.x, a.y - b.y, a.z - b.z} }
+
+// plus returns a + k b.
+func (a velocity) plus(k float64, b velocity) velocity {
+	return velocity{a.x + k*b.x, a.y + k*b.y, a.z + k*b.z}
 }

@@ -13,12 +13,14 @@ type table struct {
 	channels int
 	perSpeed float64   // rows per unit of speed, in the caller's velocity unit
 	rows     []float64 // (tableRows+1) x channels, cumulated over channels
+	ceiling  []float64 // of the sum, at any relative speed that a projectile of row r may have
 	max      float64   // nu_max [1/s]
 	end      float64   // speed beyond which a cross section is extrapolated or a rate held
 }
 
-// newTable tabulates the channels up to the speed top [m/s] each.
-func newTable(channels []channel, top, unit float64) table {
+// newTable tabulates the channels up to the speed top [m/s] each, for targets that move at reach
+// [m/s] at most.
+func newTable(channels []channel, top, reach, unit float64) table {
 	t := table{channels: len(channels), perSpeed: tableRows / (top / unit), end: top / unit}
 	t.rows = make([]float64, (tableRows+1)*len(channels))
 	for r := range tableRows + 1 {
@@ -38,7 +40,36 @@ func newTable(channels []channel, top, unit float64) table {
 			t.rows[i] /= t.max
 		}
 	}
+	t.setCeiling(int(math.Ceil(reach/top*tableRows)) + 1)
 	return t
+}
+
+// setCeiling finds, for each row, the largest sum within width rows of it, by doubling the
+// width that a maximum covers.
+func (t *table) setCeiling(width int) {
+	c := make([]float64, tableRows+1)
+	for r := range c {
+		c[r] = t.rows[(r+1)*t.channels-1]
+	}
+	for have := 0; have < width; {
+		step := min(width-have, max(1, have))
+		next := make([]float64, len(c))
+		for r := range c {
+			next[r] = max(c[r], c[max(0, r-step)], c[min(tableRows, r+step)])
+		}
+		c, have = next, have+step
+	}
+	t.ceiling = c
+}
+
+// mayCollide tells, from the projectile's own speed, whether u could select a channel at any
+// relative speed: a bound that spares drawing targets for most null collisions.
+func (t *table) mayCollide(v, u float64) bool {
+	r := tableRows
+	if at := v * t.perSpeed; at < tableRows {
+		r = int(at)
+	}
+	return u < t.ceiling[r]
 }
 
 // pick returns the channel that the uniform number u selects at relative speed g, or -1.

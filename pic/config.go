@@ -65,7 +65,13 @@ func (c *Config) check() error {
 	case len(c.Species) < 1 || len(c.Species) > MaxSpecies:
 		return fmt.Errorf("pic: %d species, want 1 to %d", len(c.Species), MaxSpecies)
 	}
-	for _, sp := range c.Species {
+	for i, sp := range c.Species {
+		if !(sp.Mass > 0) {
+			return fmt.Errorf("pic: %s has the mass %g kg", sp.Name, sp.Mass)
+		}
+		if i > 0 && sp.Charge < 0 && sp.Collisions != nil && sp.Name == "e" {
+			return fmt.Errorf("pic: the electrons must be the first species")
+		}
 		if sp.Every < 1 || c.StepsPerPeriod%sp.Every != 0 {
 			return fmt.Errorf("pic: %s moves every %d steps, which does not divide the %d of a period",
 				sp.Name, sp.Every, c.StepsPerPeriod)

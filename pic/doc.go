@@ -1,13 +1,14 @@
 // Package pic advances a planar capacitive discharge by the electrostatic particle-in-cell
 // method: one position, three velocity components (1D3V).
 //
-// Vocabulary. Node j lies at x = j dx, j = 0..Cells; cell j lies between nodes j and j+1.
-// x = 0 is the powered electrode, x = Gap the grounded one. A species is split into a fixed
-// number of chunks; workers own chunks, never particles. All particles share one weight W, the number
-// of real particles per electrode area [1/m2] that each stands for.
+// Vocabulary. Node j lies at x = j dx, j = 0..Cells; cell j lies between nodes j and j+1. x = 0
+// is the powered electrode, x = Gap the grounded one. A species is split into a fixed number of
+// chunks; workers own chunks, never particles. All particles share one weight W, the number of
+// real particles per electrode area [1/m2] that each stands for.
 //
 // Scheme. Step n takes positions from n to n+1 and velocities from n-1/2 to n+1/2 (leapfrog).
-// Density by linear weighting, the potential by a tridiagonal solve, the field by one of two schemes:
+// Density by linear weighting, the potential by a tridiagonal solve, the field by one of two
+// schemes:
 //
 //	momentum conserving   field at nodes, (phi[j-1]-phi[j+1])/(2 dx), linear in the cell
 //	energy conserving     field constant in the cell, (phi[j]-phi[j+1])/dx

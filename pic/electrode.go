@@ -9,8 +9,8 @@ import (
 )
 
 // leave takes the particles that crossed a wall out of chunk c, or sends them back. out holds
-// their indices in increasing order; they are treated from the last, so that filling the gap with the
-// chunk's last particle never moves one that is still to come.
+// their indices in increasing order; they are treated from the last, so that filling the gap
+// with the chunk's last particle never moves one that is still to come.
 func (s *Simulation) leave(w *worker, i, c int, out []int32) {
 	sp := &s.species[i]
 	ch := &sp.chunks[c]
@@ -67,7 +67,8 @@ func (c *chunk) take(p int, wall Wall, a, depth float64) {
 // mirroring the end of the step instead would heat what bounces in a sheath, by (a v)^2/3 each
 // time. With y and u the distance and velocity into the gap, u^2 = u0^2 - 2 a y0 at the wall.
 func (s *Simulation) reflect(
-	w *worker, i int, ch *chunk, p int, wall Wall, a, depth float64) bool {
+	w *worker, i int, ch *chunk, p int, wall Wall, a, depth float64,
+) bool {
 	u := ch.vx[p]
 	if wall == Grounded {
 		u, a = -u, -a

@@ -34,8 +34,9 @@ func (s *Simulation) solvePotential(w *worker, n int64) {
 	s.poisson.solve(w.rhs, w.phi)
 }
 
-// differentiate finds E = -dphi/dx at nodes and the field that acts in each cell. At a wall, Gauss's
-// law for the half cell: E[0] = E[1/2] - sigma/eps0, sigma the charge at the wall's node.
+// differentiate finds E = -dphi/dx at nodes and the field that acts in each cell. At a wall,
+// Gauss's law for the half cell: E[0] = E[1/2] - sigma/eps0, sigma the charge at the wall's
+// node.
 func (s *Simulation) differentiate(w *worker) {
 	cells := s.config.Cells
 	dx := s.config.CellSize()

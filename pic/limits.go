@@ -9,6 +9,4 @@ const (
 	MaxSpecies = 64
 	// MaxChunks bounds the work that is not spread over particles.
 	MaxChunks = 256
-	// MaxParticles of one chunk: indices are 32-bit.
-	MaxParticles = 1 << 30
 )

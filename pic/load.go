@@ -25,9 +25,9 @@ func (s *Simulation) Add(species, chunkIndex int, x, vx, vy, vz float64) error {
 // Load adds count particles of a species: positions follow the relative density at the nodes
 // (len Cells+1), velocities a Maxwellian of the temperature [K].
 //
-// The start is quiet: position k is the (k + 1/2)/count quantile of the profile, so that the charge density
-// of two species loaded alike is equal to within one particle a cell. Particles go to the chunks in an
-// order without runs of neighbours.
+// The start is quiet: position k is the (k + 1/2)/count quantile of the profile, so that the
+// charge density of two species loaded alike is equal to within one particle a cell. Particles
+// go to the chunks in an order without runs of neighbours.
 func (s *Simulation) Load(species, count int, density []float64, temperature float64) error {
 	if len(density) != s.config.Cells+1 {
 		return fmt.Errorf("pic: density at %d nodes, want %d", len(density), s.config.Cells+1)
@@ -72,7 +72,6 @@ func gcd(a, b int) int {
 // quantiles inverts the integral of a density that is linear between nodes.
 type quantiles struct {
 	density, sum []float64
-	cell         int
 }
 
 func newQuantiles(density []float64) *quantiles {

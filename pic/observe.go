@@ -1,6 +1,7 @@
 package pic
 
-// observe shows the step to the observers: the circuit to each, the particles to those that are due.
+// observe shows the step to the observers: the circuit to each, the particles to those that are
+// due.
 func (s *Simulation) observe(w *worker) {
 	w.frame.Step, w.frame.Weight = w.step, s.config.Weight
 	if w.index == 0 {

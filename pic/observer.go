@@ -1,10 +1,10 @@
 package pic
 
 // Observer looks at a run without changing it. Particles and Reduce are called only at steps
-// that Due names, by all workers at once: Particles by the owner of the chunk, then, when
-// all chunks have been seen, Reduce by every worker. Hits and Events are called at every step by the
-// owner of the chunk, Step by one worker. No method may allocate, and what a method
-// accumulates must not depend on which worker calls it.
+// that Due names, by all workers at once: Particles by the owner of the chunk, then, when all
+// chunks have been seen, Reduce by every worker. Hits and Events are called at every step by the
+// owner of the chunk, Step by one worker. No method may allocate, and what a method accumulates
+// must not depend on which worker calls it.
 type Observer interface {
 	// Due reports whether the particles are wanted at step n: a pure function of n.
 	Due(n int64) bool

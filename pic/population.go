@@ -76,8 +76,8 @@ func (s *Simulation) order(i int) []place {
 	return all
 }
 
-// Multiply replaces every particle by copies of equal velocity, spread over reach cells around it so that
-// they part, and divides the weight: the charge density stays, smoothed over reach.
+// Multiply replaces every particle by copies of equal velocity, spread over reach cells around
+// it so that they part, and divides the weight: the charge density stays, smoothed over reach.
 func (s *Simulation) Multiply(copies int, reach float64) {
 	for i := range s.species {
 		stream := rng.Key{
@@ -113,8 +113,8 @@ func (c *chunk) multiply(stream *rng.Stream, copies int, reach float64, cells in
 	c.reserve()
 }
 
-// Balance evens out the chunks' sizes when they have drifted apart by more than a fifth. Which particles
-// move depends on the state alone.
+// Balance evens out the chunks' sizes when they have drifted apart by more than a fifth. Which
+// particles move depends on the state alone.
 func (s *Simulation) Balance() {
 	for i := range s.species {
 		chunks := s.species[i].chunks

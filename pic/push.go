@@ -5,8 +5,8 @@ import (
 	"ionfall/internal/rng"
 )
 
-// carryDensity prepares the other side of the deposits: species that move start from nothing, those that rest
-// keep what they had.
+// carryDensity prepares the other side of the deposits: species that move start from nothing,
+// those that rest keep what they had.
 func (s *Simulation) carryDensity(w *worker) {
 	now, next := w.step&1, (w.step+1)&1
 	for i := range s.species {

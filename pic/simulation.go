@@ -12,8 +12,8 @@ import (
 	"ionfall/internal/phys"
 )
 
-// Simulation is a discharge at step Step. Advance moves it; between calls it may be looked at, saved, or
-// resized.
+// Simulation is a discharge at step Step. Advance moves it; between calls it may be looked at,
+// saved, or resized.
 type Simulation struct {
 	config    Config
 	species   []Species
@@ -203,9 +203,28 @@ func (s *Simulation) Advance(steps int64) error {
 		s.moved += w.moved
 		w.moved = 0
 	}
+	if err := s.checkDeposits(); err != nil {
+		return err
+	}
 	if e := s.workers[0].e[0]; math.IsNaN(e) || math.IsInf(e, 0) {
 		return fmt.Errorf("pic: the field is %g V/m at step %d: the run has diverged; "+
 			"a shorter time step or finer grid is needed", e, s.step)
+	}
+	return nil
+}
+
+// checkDeposits makes sure that no cell's word comes near its end.
+func (s *Simulation) checkDeposits() error {
+	for i := range s.species {
+		for _, w := range s.workers {
+			for j, word := range w.deposit[s.step&1][i] {
+				if n := kernels.Deposits(word); n > kernels.MaxDeposits/2 {
+					return fmt.Errorf("pic: %d particles of %s in cell %d, want at most %d: "+
+						"fewer particles or more cells are needed",
+						n, s.species[i].Name, j, kernels.MaxDeposits/2)
+				}
+			}
+		}
 	}
 	return nil
 }

@@ -99,9 +99,8 @@ func (c *chunk) restore(dec *codec.Decoder, name string, cells int) error {
 			return fmt.Errorf("pic: %s: particle %d is at %g cells, want 0 to %d", name, i, x, cells)
 		}
 	}
-	channels := 0
 	if c.outcome != nil {
-		channels = len(c.outcome.Counts)
+		channels := len(c.outcome.Counts)
 		if len(counts) == tallyCounts+1+channels && len(sums) == tallySums+channels {
 			c.outcome.Beyond = counts[tallyCounts]
 			copy(c.outcome.Counts, counts[tallyCounts+1:])

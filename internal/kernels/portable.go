@@ -58,6 +58,9 @@ func Inside(x float64, cells int) bool {
 	return fixed(x) < uint64(cells)<<FractionBits
 }
 
+// Deposits returns the number of particles that a cell word holds.
+func Deposits(word uint64) int { return int(word >> FractionSumBits) }
+
 // AddDensity adds the cell words to node sums: number[j] is the particle number at node j,
 // linear weighting. Needs len(number) > len(acc). The sums are exact while fewer than 2^29
 // particles meet at a node.

@@ -81,8 +81,16 @@ func TestEdges(t *testing.T) {
 		x, v   float64
 		inside bool
 	}{
-		{0, 0, true}, {1, 0, true}, {3.999, 0, true}, {1, -1, true}, {1, -1.0001, false},
-		{3, 1, false}, {3, 0.9999, true}, {2, 2, false}, {2, 1e6, false}, {2, -1e6, false},
+		{0, 0, true},
+		{1, 0, true},
+		{3.999, 0, true},
+		{1, -1, true},
+		{1, -1.0001, false},
+		{3, 1, false},
+		{3, 0.9999, true},
+		{2, 2, false},
+		{2, 1e6, false},
+		{2, -1e6, false},
 	} {
 		x, v := []float64{c.x}, []float64{c.v}
 		acc, out := make([]uint64, cells), make([]int32, 1)

@@ -1,0 +1,8 @@
+module ionfall/internal/kernels/asm
+
+go 1.26.8
+
+require (
+	github.com/mmcloughlin/avo v0.6.0 // indirect
+	golang.org/x/tools v0.52.0 // indirect
+)
