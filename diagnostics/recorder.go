@@ -1,0 +1,314 @@
+package diagnostics
+
+import (
+	"math"
+
+	"ionfall/crosssections"
+	"ionfall/internal/phys"
+	"ionfall/pic"
+)
+
+// Recorder is a pic.Observer that collects everything a results folder holds.
+type Recorder struct {
+	config  pic.Config
+	species []*speciesRecord
+	stride  int64
+	on      bool
+	phases  int // bins of RF phase
+
+	thresholds []float64 // [eV]
+	regions    []Region
+	eBins      *bins
+
+	// sums over the running batch
+	grid     [][]float64 // by quantity: PhaseBins x nodes
+	samples  []int64     // grid samples by phase
+	circuit  [circuitRows][]float64
+	steps    []int64 // circuit samples by phase
+	batch    int     // periods of a batch
+	periods  int     // in the running batch
+	averages averages
+}
+
+// Region is a part of the gap in which electron energies are recorded.
+type Region struct {
+	Name     string
+	From, To float64 // [m]
+}
+
+// speciesRecord is what is collected for one species.
+type speciesRecord struct {
+	name     string
+	charge   int
+	mass     float64
+	kickPerE float64 // velocity unit per V/m
+	eVPerV2  float64
+	unit     float64
+	every    int
+	chunks   []chunkRecord
+	impacts  [2]*impactRecord // by wall; nil for electrons
+	ionizes  []bool           // by collision channel
+}
+
+// chunkRecord is written only by the worker that owns the chunk.
+type chunkRecord struct {
+	power, energy []float64 // node sums of the sampled step
+	ionized       []int64   // PhaseBins x nodes
+	electrons     []int64   // regions x energy bins
+	hits          [2]hitRecord
+	moves         []int64 // electrons seen, and those that cross more than a cell in a step
+}
+
+// Quantities on the grid; by species after these.
+const (
+	gridPotential = iota
+	gridField
+	gridIonization
+	gridFixed
+)
+
+// By-species quantities.
+const (
+	gridDensity = iota
+	gridPower
+	gridEnergy
+	gridPerSpecies
+)
+
+const (
+	circuitVoltage = iota
+	circuitCurrent
+	circuitMidGap
+	circuitRows
+)
+
+// New returns a recorder for the simulation, switched off: see Start.
+func New(s *pic.Simulation, thresholds []float64) *Recorder {
+	c := s.Config()
+	r := &Recorder{config: c, thresholds: thresholds, stride: strideFor(c.StepsPerPeriod)}
+	r.phases = min(PhaseBins, c.StepsPerPeriod)
+	r.regions = regionsOf(c.Gap)
+	r.eBins = electronBins(electronTop(c.Drive.Largest()))
+	nodes := c.Cells + 1
+	list := s.Species()
+	for i := range list {
+		r.species = append(r.species, newSpeciesRecord(r, &c, &list[i]))
+	}
+	r.grid = make([][]float64, gridFixed+gridPerSpecies*len(list))
+	for q := range r.grid {
+		r.grid[q] = make([]float64, r.phases*nodes)
+	}
+	r.samples, r.steps = make([]int64, r.phases), make([]int64, r.phases)
+	for q := range r.circuit {
+		r.circuit[q] = make([]float64, r.phases)
+	}
+	r.averages = newAverages(r)
+	return r
+}
+
+func newSpeciesRecord(r *Recorder, c *pic.Config, sp *pic.Species) *speciesRecord {
+	unit := c.VelocityUnit(sp.Every)
+	rec := &speciesRecord{
+		name: sp.Name, charge: sp.Charge, mass: sp.Mass, every: sp.Every, unit: unit,
+		eVPerV2: 0.5 * sp.Mass * unit * unit / phys.ElementaryCharge,
+		kickPerE: float64(sp.Charge) * phys.ElementaryCharge / sp.Mass *
+			c.TimeStep() * float64(sp.Every) / unit,
+		chunks: make([]chunkRecord, c.Chunks),
+	}
+	if sp.Collisions != nil {
+		for _, p := range sp.Collisions.Processes() {
+			rec.ionizes = append(rec.ionizes, p.Kind == crosssections.Ionization)
+		}
+	}
+	nodes := c.Cells + 1
+	for k := range rec.chunks {
+		ch := &rec.chunks[k]
+		ch.power, ch.energy = make([]float64, nodes), make([]float64, nodes)
+		if sp.Charge < 0 {
+			ch.ionized = make([]int64, r.phases*nodes)
+			ch.electrons = make([]int64, len(r.regions)*r.eBins.count())
+			ch.moves = make([]int64, 2)
+		}
+	}
+	if sp.Charge > 0 {
+		ions := uniformBins(1.3*c.Drive.Largest()+30, ionEnergyBins)
+		for wall := range rec.impacts {
+			rec.impacts[wall] = newImpactRecord(ions, len(r.thresholds))
+			for k := range rec.chunks {
+				rec.chunks[k].hits[wall] = newHitRecord(rec.impacts[wall])
+			}
+		}
+	}
+	return rec
+}
+
+// electronTop is the end of the electron energy table: tails beyond twice an ionization energy
+// carry nothing that is worth a bin, except fast secondaries from the walls.
+func electronTop(largest float64) float64 { return math.Max(60, math.Min(1.2*largest, 400)) }
+
+// regionsOf divides the gap for electron energies.
+func regionsOf(gap float64) []Region {
+	half := 0.5 * centerPart * gap
+	return []Region{
+		{"powered_quarter", 0, 0.25 * gap},
+		{"center", 0.5*gap - half, 0.5*gap + half},
+		{"grounded_quarter", 0.75 * gap, gap},
+		{"gap", 0, gap},
+	}
+}
+
+// strideFor returns a sampling stride near a fortieth of the period's steps, at least 4 and at
+// most 24, without common factor with them.
+func strideFor(steps int) int64 {
+	m := max(4, min(24, steps/40))
+	for gcd(m, steps) != 1 {
+		m++
+	}
+	return int64(m)
+}
+
+func gcd(a, b int) int {
+	for b != 0 {
+		a, b = b, a%b
+	}
+	return a
+}
+
+// Start switches recording on, with batches of the given number of periods (lengthened, if
+// need be, so that every phase is sampled in each). To be called between two periods.
+func (r *Recorder) Start(batch int) {
+	r.on = true
+	r.batch = max(batch, r.periodsToSee())
+}
+
+// periodsToSee returns how many periods it takes, from any step, to sample every phase bin.
+func (r *Recorder) periodsToSee() int {
+	steps := int64(r.config.StepsPerPeriod)
+	most := 1
+	for start := range r.stride {
+		seen := make(map[int]bool)
+		for n := start; len(seen) < r.phases; n += r.stride {
+			seen[r.phase(n)] = true
+			most = max(most, int(n/steps)+1)
+		}
+	}
+	return most
+}
+
+// On tells whether the recorder is recording.
+func (r *Recorder) On() bool { return r.on }
+
+// phase returns the phase bin of step n.
+func (r *Recorder) phase(n int64) int {
+	steps := int64(r.config.StepsPerPeriod)
+	return int((n % steps) * int64(r.phases) / steps)
+}
+
+// Due implements pic.Observer.
+func (r *Recorder) Due(n int64) bool { return r.on && n%r.stride == 0 }
+
+// Step implements pic.Observer.
+func (r *Recorder) Step(c pic.Circuit) {
+	if !r.on {
+		return
+	}
+	p := r.phase(c.Step)
+	r.steps[p]++
+	r.circuit[circuitVoltage][p] += c.Voltage
+	r.circuit[circuitCurrent][p] += c.Current
+	r.circuit[circuitMidGap][p] += c.MidGap
+}
+
+// Events implements pic.Observer: it counts ionizations on the nearest node.
+func (r *Recorder) Events(n int64, species, chunk int, x []float64, events []pic.Event) {
+	rec := r.species[species]
+	if !r.on || rec.charge >= 0 {
+		return
+	}
+	row := rec.chunks[chunk].ionized[r.phase(n)*(r.config.Cells+1):]
+	for _, e := range events {
+		if rec.ionizes[e.Channel] {
+			row[int(x[e.Particle]+0.5)]++
+		}
+	}
+}
+
+// Particles implements pic.Observer: node sums of the power from the field and of the energy, and
+// electron energies by region. Velocities are taken half a kick on, at the time of the positions.
+func (r *Recorder) Particles(f *pic.Frame, species, chunk int, p pic.Particles) {
+	rec := r.species[species]
+	ch := &rec.chunks[chunk]
+	clear(ch.power)
+	clear(ch.energy)
+	k := rec.kickPerE
+	vx, vy, vz := p.VX[:len(p.X)], p.VY[:len(p.X)], p.VZ[:len(p.X)]
+	for i, x := range p.X {
+		j := int(x)
+		s := x - float64(j)
+		a := k * (f.FieldA[j] + s*f.FieldD[j])
+		v := vx[i] + 0.5*a
+		e := v*v + vy[i]*vy[i] + vz[i]*vz[i]
+		ch.power[j] += (1 - s) * a * v
+		ch.power[j+1] += s * a * v
+		ch.energy[j] += (1 - s) * e
+		ch.energy[j+1] += s * e
+		if ch.electrons != nil {
+			r.countElectron(ch, x, rec.eVPerV2*e)
+			if v > 1 || v < -1 {
+				ch.moves[1]++
+			}
+		}
+	}
+	if ch.electrons != nil {
+		ch.moves[0] += int64(len(p.X))
+	}
+}
+
+func (r *Recorder) countElectron(ch *chunkRecord, x, energyEV float64) {
+	n := r.eBins.count()
+	b := r.eBins.find(energyEV)
+	at := x * r.config.CellSize()
+	for k := range r.regions {
+		if at >= r.regions[k].From && at < r.regions[k].To {
+			ch.electrons[k*n+b]++
+		}
+	}
+}
+
+// Reduce implements pic.Observer: each worker adds up a range of nodes, over chunks in order.
+func (r *Recorder) Reduce(f *pic.Frame, worker, workers int) {
+	nodes := r.config.Cells + 1
+	from, to := worker*nodes/workers, (worker+1)*nodes/workers
+	p := r.phase(f.Step)
+	if worker == 0 {
+		r.samples[p]++
+	}
+	base := p * nodes
+	dx := r.config.CellSize()
+	for j := from; j < to; j++ {
+		r.grid[gridPotential][base+j] += f.Phi[j]
+		r.grid[gridField][base+j] += f.E[j]
+	}
+	for i, rec := range r.species {
+		first := gridFixed + gridPerSpecies*i
+		density := r.grid[first+gridDensity]
+		power := r.grid[first+gridPower]
+		energy := r.grid[first+gridEnergy]
+		// a v of one particle [units^2] is 2 eVPerV2 a v [eV] a move.
+		watt := 2 * rec.eVPerV2 * phys.ElementaryCharge / (r.config.TimeStep() * float64(rec.every))
+		for j := from; j < to; j++ {
+			perVolume := f.Weight / dx
+			if j == 0 || j == nodes-1 {
+				perVolume *= 2
+			}
+			var sumPower, sumEnergy float64
+			for c := range rec.chunks {
+				sumPower += rec.chunks[c].power[j]
+				sumEnergy += rec.chunks[c].energy[j]
+			}
+			density[base+j] += perVolume * f.Number[i][j]
+			power[base+j] += perVolume * watt * sumPower
+			energy[base+j] += perVolume * rec.eVPerV2 * sumEnergy
+		}
+	}
+}
