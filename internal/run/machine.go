@@ -1,0 +1,296 @@
+package run
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+	"time"
+
+	"ionfall/diagnostics"
+	"ionfall/internal/stats"
+	"ionfall/internal/store"
+	"ionfall/pic"
+)
+
+// ErrInterrupted says that a run was told to stop and has written its checkpoint.
+var ErrInterrupted = errors.New("interrupted")
+
+// ErrBudget says that the budget was spent before there was anything to average.
+var ErrBudget = errors.New("the budget is spent before the discharge is steady")
+
+const (
+	// segment is how long the loop may run before it looks for an interrupt.
+	segment = 100 * time.Millisecond
+	// checkpointEvery is the time between checkpoints.
+	checkpointEvery = 3 * time.Minute
+	// balanceEvery is how often chunks are evened out [periods].
+	balanceEvery = 16
+	// settleLook is how often the steadiness is tested while settling [periods].
+	settleLook = 5
+	// mostWindows ends the settling of a discharge that never stands; the trust check will say so.
+	mostWindows = 20
+	// band is the factor by which the number of electrons may leave its target.
+	band = 2
+)
+
+// machine is a run in progress.
+type machine struct {
+	plan    *Plan
+	options Options
+	folder  *store.Run
+	control control
+	history []Row
+	sim     *pic.Simulation
+	rec     *diagnostics.Recorder
+
+	crew      crew
+	perStep   time.Duration // of the last segment
+	started   time.Time
+	cpuAtOpen float64
+	saved     time.Time
+	shown     time.Time
+}
+
+// loop makes periods until the run is done, interrupted, or has failed.
+func (m *machine) loop(ctx context.Context) error {
+	m.saved = time.Now()
+	for m.control.Stage != StageDone {
+		if err := m.advancePeriod(ctx); err != nil {
+			return err
+		}
+		l := m.sim.TakeLedger()
+		m.rec.EndPeriod(l.Weight)
+		m.account(&l)
+		m.control.Periods++
+		m.control.SimPeriods++
+		m.control.StagePeriods++
+		if err := m.decide(); err != nil {
+			return errors.Join(err, m.save())
+		}
+		m.holdPopulation()
+		m.report()
+		if time.Since(m.saved) > m.options.checkpointEvery() {
+			if err := m.save(); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
+}
+
+// advancePeriod goes to the end of the period, in segments short enough to hear an interrupt.
+func (m *machine) advancePeriod(ctx context.Context) error {
+	steps := int64(m.control.Numerics.StepsPerPeriod)
+	for left := steps - m.sim.Step()%steps; left > 0; {
+		if ctx.Err() != nil {
+			if err := m.save(); err != nil {
+				return err
+			}
+			return fmt.Errorf("%w in the %s stage, after %d periods: continue with: ionfall resume %s",
+				ErrInterrupted, m.control.Stage, m.control.Periods, m.folder.Dir())
+		}
+		n := min(left, 16) // of a new simulation, whose speed is not known
+		if m.perStep > 0 {
+			n = min(left, max(1, int64(segment/m.perStep)))
+		}
+		begin := time.Now()
+		if err := m.sim.Advance(n); err != nil {
+			return err
+		}
+		m.perStep = max(1, time.Since(begin)/time.Duration(n))
+		m.crew.watch(m.sim, m.perStep, time.Since(begin))
+		left -= n
+	}
+	return nil
+}
+
+// decide moves the run from stage to stage; called between periods.
+func (m *machine) decide() error {
+	c := &m.control
+	row := &m.history[len(m.history)-1]
+	if row.Electrons == 0 || row.Ions == 0 {
+		return errors.New("the plasma has gone out: no charged particles are left at these settings")
+	}
+	if m.fixedLength() {
+		m.decideFixed()
+		return nil
+	}
+	switch c.Stage {
+	case StagePilot:
+		if err := m.decidePilot(row); err != nil {
+			return err
+		}
+	case StageSettling:
+		m.decideSettling(row)
+	case StageAveraging:
+		m.decideAveraging()
+	}
+	return m.checkBudget()
+}
+
+func (m *machine) fixedLength() bool { return m.plan.Case.Numerics.Periods > 0 }
+
+// decideFixed keeps to the asked-for number of periods.
+func (m *machine) decideFixed() {
+	n := m.plan.Case.Numerics
+	average := n.AveragePeriods
+	if average == 0 {
+		average = max(1, n.Periods/4)
+	}
+	switch {
+	case m.control.Periods >= n.Periods:
+		m.control.Reached = true
+		m.enter(StageDone)
+	case m.control.Periods == n.Periods-average:
+		m.enter(StageAveraging)
+		m.rec.Start(max(1, average/stats.MinBatches/2))
+	}
+}
+
+// decidePilot projects the density until it stands, then measures for some periods, then
+// goes over to the final numerics.
+func (m *machine) decidePilot(row *Row) error {
+	c := &m.control
+	if c.Projecting {
+		if q := m.guessPlasma(row); q.frequency()*m.plan.period() >
+			1.5*pilotQuality.plasmaStep*float64(c.Numerics.StepsPerPeriod) {
+			return m.refinePilot(q)
+		}
+		if m.project(row) {
+			c.Projecting = false
+			m.rec.Start(1)
+		}
+		return nil
+	}
+	if n, _ := m.rec.Batches(); n < stats.MinBatches {
+		return nil
+	}
+	return m.toFinal()
+}
+
+// guessPlasma estimates the plasma from the number of ions alone: the middle holds about 1.8
+// times the mean.
+func (m *machine) guessPlasma(row *Row) plasma {
+	q, _ := m.plan.firstGuess()
+	q.Density = 1.8 * row.Content / m.plan.Case.Gap
+	return q
+}
+
+// decideSettling projects the density once more, then waits for steadiness.
+func (m *machine) decideSettling(row *Row) {
+	c := &m.control
+	if c.Projecting {
+		if !m.project(row) {
+			return
+		}
+		c.Projecting = false
+		c.StagePeriods = 0
+	}
+	if c.StagePeriods < c.Window {
+		return
+	}
+	if c.StagePeriods%settleLook != 0 {
+		return
+	}
+	if ok, _, _ := m.steady(len(m.history) - c.Window); !ok && c.StagePeriods < mostWindows*c.Window {
+		return
+	}
+	m.enter(StageAveraging)
+	m.rec.Start(max(2, int(c.Transit/2)))
+}
+
+// decideAveraging ends the run when the asked-for errors are reached, over a time that is long
+// against the memory of the discharge, and nothing drifts.
+func (m *machine) decideAveraging() {
+	c := &m.control
+	n, length := m.rec.Batches()
+	if c.StagePeriods%length != 0 || n < 2*stats.MinBatches ||
+		float64(c.StagePeriods) < math.Max(float64(2*c.Window), averagingLives*c.Residence) {
+		return
+	}
+	if !m.accurate() {
+		return
+	}
+	if ok, _, name := m.steady(len(m.history) - c.StagePeriods); !ok && c.Restarts < mostRestarts {
+		c.Restarts++
+		c.Event = name + " drifts: the average starts again"
+		m.rec = m.newRecorder()
+		c.Averaged = accountTotals{}
+		c.StagePeriods = 0
+		m.rec.Start(length)
+		return
+	}
+	c.Reached = true
+	m.enter(StageDone)
+}
+
+const (
+	// averagingLives is the least length of the average in residence times of an ion: the density
+	// remembers for that long, and an error estimated over less would be a guess.
+	averagingLives = 1.0
+	// mostRestarts bounds how often a drifting average is thrown away.
+	mostRestarts = 3
+)
+
+// accurate tells whether the errors at every substrate are as small as was asked for.
+func (m *machine) accurate() bool {
+	want := m.plan.Case.Accuracy
+	for _, wall := range m.plan.substrates() {
+		energy, flux := m.rec.Progress(wall)
+		if !(energy.StdErr <= want.IonEnergy*energy.Mean && flux.StdErr <= want.IonFlux*flux.Mean) {
+			return false
+		}
+	}
+	return true
+}
+
+// checkBudget ends the run when the budget is spent.
+func (m *machine) checkBudget() error {
+	c := &m.control
+	b := m.plan.Case.Budget
+	if m.options.Budget != nil {
+		b = *m.options.Budget
+	}
+	cpu := c.CPU + cpuSeconds() - m.cpuAtOpen
+	if c.Stage == StageDone ||
+		!(b.Periods > 0 && c.Periods >= b.Periods || b.CPU > 0 && cpu >= b.CPU) {
+		return nil
+	}
+	c.Spent = true
+	if n, _ := m.rec.Batches(); c.Stage != StageAveraging || n < stats.MinBatches {
+		return fmt.Errorf("%w: in the %s stage after %d periods and %.0f s of processor time; "+
+			"give a larger budget and continue with: ionfall resume %s",
+			ErrBudget, c.Stage, c.Periods, cpu, m.folder.Dir())
+	}
+	m.enter(StageDone)
+	return nil
+}
+
+func (m *machine) enter(stage string) {
+	m.control.Stage = stage
+	m.control.StagePeriods = 0
+	if stage == StageAveraging {
+		m.control.Averaged = accountTotals{}
+	}
+}
+
+// holdPopulation keeps the number of electrons in its band and chunks of equal size.
+func (m *machine) holdPopulation() {
+	c := &m.control
+	electrons := m.sim.Species()[0].Count()
+	switch {
+	case m.fixedLength(): // its number of particles is part of what was asked for
+	case electrons > band*c.Target:
+		m.sim.Halve()
+		c.Event = "every second particle removed, weight doubled"
+		m.rebase()
+	case electrons*band < c.Target:
+		m.sim.Multiply(2, 1)
+		c.Event = "particles doubled, weight halved"
+		m.rebase()
+	}
+	if c.SimPeriods%balanceEvery == 0 {
+		m.sim.Balance()
+	}
+}

@@ -1,0 +1,235 @@
+package run
+
+import (
+	"crypto/sha256"
+	"encoding/hex"
+	"fmt"
+	"math"
+	"path/filepath"
+	"strings"
+
+	"ionfall/crosssections"
+	"ionfall/internal/config"
+	"ionfall/internal/inputerr"
+	"ionfall/internal/phys"
+	"ionfall/mcc"
+	"ionfall/pic"
+)
+
+// Plan is an input that has been checked against the gases' data: everything but running.
+type Plan struct {
+	Name  string // of the case: the input file's folder or name
+	Case  *config.Case
+	Input []byte
+	Gases []*crosssections.Gas // in the order of the mixture
+}
+
+// Prepare reads and checks an input file.
+func Prepare(path string) (*Plan, error) {
+	c, src, err := config.Load(path)
+	if err != nil {
+		return nil, err
+	}
+	return prepare(caseName(path), c, src)
+}
+
+// PrepareBytes checks an input that is already in memory; name stands in messages.
+func PrepareBytes(name string, src []byte) (*Plan, error) {
+	c, err := config.Parse(name, src)
+	if err != nil {
+		return nil, err
+	}
+	return prepare(caseName(name), c, src)
+}
+
+// caseName is the folder's name for an input called input.yaml, else the file's own.
+func caseName(path string) string {
+	base := strings.TrimSuffix(filepath.Base(path), filepath.Ext(path))
+	if base == "input" || base == "resolved" {
+		if full, err := filepath.Abs(path); err == nil {
+			return filepath.Base(filepath.Dir(full))
+		}
+	}
+	return base
+}
+
+func prepare(name string, c *config.Case, src []byte) (*Plan, error) {
+	p := &Plan{Name: name, Case: c, Input: src}
+	library, err := crosssections.Bundled()
+	if err != nil {
+		return nil, err
+	}
+	var bad inputerr.List
+	for _, part := range c.Gas.Mixture {
+		gas, err := library.Gas(part.Gas)
+		if err != nil {
+			hint := ""
+			if near := inputerr.Nearest(part.Gas, library.Names()); near != "" {
+				hint = fmt.Sprintf("did you mean %q?", near)
+			}
+			bad = append(bad, c.Errorf("gas.mixture."+part.Gas, fmt.Sprintf("%q", part.Gas),
+				"one of "+strings.Join(library.Names(), ", "), hint))
+			continue
+		}
+		p.Gases = append(p.Gases, gas)
+	}
+	bad = append(bad, p.missingCollisions()...)
+	if len(bad) > 0 {
+		return nil, bad
+	}
+	return p, nil
+}
+
+// missingCollisions finds ions whose collisions with a part of the mixture are not known: left out,
+// they would fall through the sheath as if that gas were not there.
+func (p *Plan) missingCollisions() inputerr.List {
+	var bad inputerr.List
+	for _, own := range p.Gases {
+		for _, ion := range own.Ions {
+			for _, other := range p.Gases {
+				if len(other.Processes(ion.Name)) == 0 {
+					bad = append(bad, p.Case.Errorf("gas.mixture."+other.Name,
+						fmt.Sprintf("%s together with %s", other.Name, own.Name),
+						fmt.Sprintf("a gas whose collisions with %s are known", ion.Name), ""))
+				}
+			}
+		}
+	}
+	return bad
+}
+
+// InputSHA256 returns the hash of the input as given.
+func (p *Plan) InputSHA256() string {
+	sum := sha256.Sum256(p.Input)
+	return hex.EncodeToString(sum[:])
+}
+
+// period returns that of the fundamental [s].
+func (p *Plan) period() float64 { return 1 / p.Case.Drive.Fundamental() }
+
+// gasDensity returns n = p/(k T) [1/m3].
+func (p *Plan) gasDensity() float64 {
+	return p.Case.Gas.Pressure / (phys.Boltzmann * p.Case.Gas.Temperature)
+}
+
+func (p *Plan) backgrounds() []mcc.Background {
+	list := make([]mcc.Background, len(p.Gases))
+	for i, g := range p.Gases {
+		list[i] = mcc.Background{
+			Gas: g, Density: p.gasDensity() * p.Case.Gas.Mixture[i].Fraction,
+			Temperature: p.Case.Gas.Temperature,
+		}
+	}
+	return list
+}
+
+// drive returns the drive in harmonics of the fundamental.
+func (p *Plan) drive() pic.Drive {
+	d := pic.Drive{Bias: p.Case.Drive.Bias}
+	fundamental := p.Case.Drive.Fundamental()
+	for _, t := range p.Case.Drive.Tones {
+		d.Tones = append(d.Tones, pic.Tone{
+			Harmonic:  int(math.Round(t.Frequency / fundamental)),
+			Amplitude: t.Amplitude, Phase: t.Phase,
+		})
+	}
+	return d
+}
+
+// fastestHarmonic is the largest harmonic of the drive.
+func (p *Plan) fastestHarmonic() int {
+	most := 1
+	for _, t := range p.drive().Tones {
+		most = max(most, t.Harmonic)
+	}
+	return most
+}
+
+// substrates returns the walls on which the film grows; with none named, both.
+func (p *Plan) substrates() []pic.Wall {
+	var list []pic.Wall
+	if p.Case.Electrodes.Powered.Substrate {
+		list = append(list, pic.Powered)
+	}
+	if p.Case.Electrodes.Grounded.Substrate {
+		list = append(list, pic.Grounded)
+	}
+	if len(list) == 0 {
+		list = []pic.Wall{pic.Powered, pic.Grounded}
+	}
+	return list
+}
+
+// assemble builds an empty simulation with the given numerics.
+func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
+	c := pic.Config{
+		Gap: p.Case.Gap, Cells: n.Cells, Period: p.period(), StepsPerPeriod: n.StepsPerPeriod,
+		Scheme: n.scheme(), Drive: p.drive(), Weight: weight, Chunks: n.Chunks, Seed: p.Case.Seed,
+	}
+	for wall, e := range []config.Electrode{p.Case.Electrodes.Powered, p.Case.Electrodes.Grounded} {
+		c.Electrodes[wall] = pic.Electrode{
+			IonSecondaryYield: e.IonSecondaryYield, SecondaryEnergyEV: e.SecondaryElectronEnergy,
+			ElectronReflection: e.ElectronReflection,
+		}
+	}
+	electrons, err := p.collisions(&c, "e", phys.ElectronMass, 1)
+	if err != nil {
+		return nil, err
+	}
+	c.Species = []pic.Species{{
+		Name: "e", Charge: -1, Mass: phys.ElectronMass, Every: 1, Collisions: electrons,
+	}}
+	for _, g := range p.Gases {
+		for _, ion := range g.Ions {
+			model, err := p.collisions(&c, ion.Name, ion.Mass, n.IonSubsteps)
+			if err != nil {
+				return nil, err
+			}
+			c.Species = append(c.Species, pic.Species{
+				Name: ion.Name, Charge: ion.Charge, Mass: ion.Mass, Every: n.IonSubsteps,
+				Collisions: model,
+			})
+		}
+	}
+	return pic.New(c)
+}
+
+// collisions prepares a species' collisions, tabulated a little beyond the energies that the
+// drive can give.
+func (p *Plan) collisions(c *pic.Config, name string, mass float64, every int) (*mcc.Model, error) {
+	top := 1.3*c.Drive.Largest() + 50
+	if name == "e" {
+		top = max(top, 300)
+	}
+	return mcc.NewModel(mcc.Settings{
+		Projectile: name, Mass: mass, Unit: c.VelocityUnit(every),
+		TimeStep: c.TimeStep() * float64(every), TopEnergy: top,
+	}, p.backgrounds())
+}
+
+// fill loads a uniform quasi-neutral plasma; the ions share the density by the gases' fractions.
+func (p *Plan) fill(s *pic.Simulation, particles int, electronTemperature float64) error {
+	uniform := make([]float64, s.Config().Cells+1)
+	for j := range uniform {
+		uniform[j] = 1
+	}
+	if err := s.Load(0, particles, uniform, electronTemperature); err != nil {
+		return err
+	}
+	loaded, species, whole := 0, 1, 0.0
+	for i, g := range p.Gases {
+		for k := range g.Ions {
+			whole += p.Case.Gas.Mixture[i].Fraction / float64(len(g.Ions))
+			upTo := min(particles, int(math.Round(whole*float64(particles))))
+			if i == len(p.Gases)-1 && k == len(g.Ions)-1 {
+				upTo = particles
+			}
+			if err := s.Load(species, upTo-loaded, uniform, p.Case.Gas.Temperature); err != nil {
+				return err
+			}
+			loaded = upTo
+			species++
+		}
+	}
+	return nil
+}

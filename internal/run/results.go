@@ -1,0 +1,251 @@
+package run
+
+import (
+	"fmt"
+	"runtime"
+	"strings"
+
+	"ionfall/crosssections"
+	"ionfall/diagnostics"
+	"ionfall/internal/bib"
+	"ionfall/internal/phys"
+	"ionfall/internal/stats"
+	"ionfall/internal/store"
+	"ionfall/internal/table"
+	"ionfall/pic"
+)
+
+// value turns an estimate into a leaf of the results.
+func value(e stats.Estimate, unit string) store.Value {
+	return store.Value{Value: e.Mean, SE: e.StdErr, Unit: unit}
+}
+
+// results collects every scalar.
+func (m *machine) results() map[string]any {
+	energy, flux, energyFlux := map[string]any{}, map[string]any{}, map[string]any{}
+	fractions, percentiles, sheath := map[string]any{}, map[string]any{}, map[string]any{}
+	for _, wall := range []pic.Wall{pic.Powered, pic.Grounded} {
+		e, f, w, part := map[string]any{}, map[string]any{}, map[string]any{}, map[string]any{}
+		enter := func(name string, im diagnostics.Impact) {
+			e[name] = value(im.MeanEnergyEV, "eV")
+			f[name] = value(im.Flux, "1/(m2 s)")
+			w[name] = value(im.EnergyFlux, "W/m2")
+			above := map[string]any{}
+			for k, t := range m.plan.Case.IonEnergyThresholds {
+				above[thresholdName(t)] = value(im.Above[k], "")
+			}
+			part[name] = above
+		}
+		all := m.rec.AllImpacts(wall)
+		enter("all", all)
+		for i, sp := range m.sim.Species() {
+			if sp.Charge > 0 {
+				enter(sp.Name, m.rec.Impact(i, wall))
+			}
+		}
+		at := wall.String()
+		energy[at], flux[at], energyFlux[at], fractions[at] = e, f, w, part
+		percentiles[at] = map[string]any{
+			"p05": value(all.Percentiles[0], "eV"), "p50": value(all.Percentiles[1], "eV"),
+			"p95": value(all.Percentiles[2], "eV"),
+		}
+		sheath[at] = value(m.rec.Sheath(wall), "m")
+	}
+	r := map[string]any{
+		"ion_mean_energy_eV": energy, "ion_flux_m2ps": flux, "ion_energy_flux_Wpm2": energyFlux,
+		"ion_energy_percentile_eV": percentiles, "sheath_width_m": sheath,
+		"power_Wpm2":                     m.powers(),
+		"self_bias_V":                    store.Value{Value: m.plan.Case.Drive.Bias, Unit: "V"},
+		"plasma_potential_V":             value(m.rec.PlasmaPotential(), "V"),
+		"electron_density_center_m3":     value(m.rec.CenterDensity(), "1/m3"),
+		"electron_density_peak_m3":       value(m.rec.PeakDensity(), "1/m3"),
+		"electron_temperature_center_eV": value(m.rec.CenterTemperatureEV(), "eV"),
+	}
+	if len(m.plan.Case.IonEnergyThresholds) > 0 {
+		r["ion_fraction_above"] = fractions
+	}
+	m.filmResults(r)
+	return r
+}
+
+// thresholdName is a threshold as a key: 20eV, 12p5eV (a point would divide a path).
+func thresholdName(energyEV float64) string {
+	return strings.ReplaceAll(fmt.Sprintf("%geV", energyEV), ".", "p")
+}
+
+// powers returns the mean powers that the species take from the field and the drive delivers.
+func (m *machine) powers() map[string]any {
+	n := m.control.Averaged.Periods
+	powers := map[string]any{
+		"total": value(stats.Mean(m.series(func(r *Row) float64 { return r.TotalPower }, n)), "W/m2"),
+	}
+	for i, sp := range m.sim.Species() {
+		name := sp.Name
+		if i == 0 {
+			name = "electron"
+		}
+		series := m.series(func(r *Row) float64 { return r.Power[i] }, n)
+		powers[name] = value(stats.Mean(series), "W/m2")
+	}
+	return powers
+}
+
+// filmResults relates the ions to the atoms that grow, where the input gives the growth.
+func (m *machine) filmResults(r map[string]any) {
+	film := m.plan.Case.Film
+	if film == nil {
+		return
+	}
+	atoms := film.GrowthRate * film.AtomDensity // [1/(m2 s)]
+	energy, ions := map[string]any{}, map[string]any{}
+	for _, wall := range m.plan.substrates() {
+		im := m.rec.AllImpacts(wall)
+		e := im.EnergyFlux
+		perAtom := 1 / (atoms * phys.ElementaryCharge)
+		energy[wall.String()] = store.Value{
+			Value: e.Mean * perAtom, SE: e.StdErr * perAtom, Unit: "eV",
+		}
+		ions[wall.String()] = store.Value{Value: im.Flux.Mean / atoms, SE: im.Flux.StdErr / atoms}
+	}
+	r["film_energy_per_atom_eV"], r["film_ions_per_atom"] = energy, ions
+}
+
+// provenance says where the numbers come from.
+func (m *machine) provenance() map[string]any {
+	c := &m.control
+	gases := map[string]any{}
+	for _, g := range m.plan.Gases {
+		gases[g.Name] = map[string]any{"set": g.Set, "sha256": g.SHA256}
+	}
+	n := c.Numerics
+	batches, length := m.rec.Batches()
+	return map[string]any{
+		"program": "ionfall", "version": m.options.version(), "go": runtime.Version(),
+		"platform": runtime.GOOS + "/" + runtime.GOARCH, "kernels": "portable",
+		"cores": m.options.cores(), "seed": m.plan.Case.Seed,
+		"input_sha256": m.plan.InputSHA256(), "cross_sections": gases,
+		"wall_s": c.Wall, "cpu_s": c.CPU, "particle_steps": c.Moved,
+		"periods": c.Periods, "averaged_periods": c.Averaged.Periods,
+		"batches": batches, "batch_periods": length,
+		"correlation": "errors from batch means; neighbouring batches' correlation widens them",
+		"numerics": map[string]any{
+			"cells": n.Cells, "steps_per_period": n.StepsPerPeriod,
+			"particles_per_cell": n.ParticlesPerCell, "scheme": n.Scheme,
+			"ion_substeps": n.IonSubsteps, "chunks": n.Chunks, "reasons": c.Reasons,
+		},
+		"ionization_energy_sharing": "equal",
+		"accuracy_reached":          c.Reached, "budget_spent": c.Spent,
+		"caution": "a simulated value is no interlock setting",
+	}
+}
+
+// references lists the publications that the run relied on.
+func (m *machine) references() []store.Reference {
+	why := [][2]string{
+		{"birdsall-1991", "particle-in-cell with Monte Carlo collisions"},
+		{"vahedi-surendra-1995", "collisions of electrons and ions with the gas"},
+		{"skullerud-1968", "null collisions"},
+		{"brinkmann-2007", "sheath width"},
+		{"salmon-2011", "random numbers"},
+		{"blackman-vigna-2021", "random numbers"},
+		{"flyvbjerg-petersen-1989", "standard errors of correlated averages"},
+	}
+	if m.control.Numerics.scheme() == pic.EnergyConserving {
+		why = append(why, [2]string{"lewis-1970", "energy-conserving field"},
+			[2]string{"powis-kaganovich-2024", "cells of several Debye lengths"})
+	}
+	var list []store.Reference
+	for _, w := range why {
+		if e, ok := bib.Lookup(w[0]); ok {
+			list = append(list, store.Reference{Key: e.Key, Citation: e.Citation, Why: w[1]})
+		}
+	}
+	for _, g := range m.plan.Gases {
+		list = append(list, sources(g, g.Electron)...)
+		list = append(list, sources(g, g.IonNeutral)...)
+	}
+	return list
+}
+
+// sources lists where a gas's cross sections come from.
+func sources(g *crosssections.Gas, processes []crosssections.Process) []store.Reference {
+	var list []store.Reference
+	for _, p := range processes {
+		key := p.Source.Bib
+		if key == "" {
+			key = p.File
+		}
+		why := fmt.Sprintf("cross section of %s: %s (%s)", g.Name, p.Name, p.Source.Status)
+		list = append(list, store.Reference{Key: key, Citation: p.Source.Citation, Why: why})
+	}
+	return list
+}
+
+// historyTable is one row a period.
+func (m *machine) historyTable() *table.Table {
+	t := table.New("history", "one row an RF period")
+	n := len(m.history)
+	period, electrons, ions := make([]int64, n), make([]int64, n), make([]int64, n)
+	stage, event := make([]string, n), make([]string, n)
+	for i, r := range m.history {
+		period[i], electrons[i], ions[i] = int64(i+1), r.Electrons, r.Ions
+		stage[i], event[i] = r.Stage, r.Event
+	}
+	t.AddInt("period", "", "RF period", period)
+	t.AddText("stage", "pilot, settling or averaging", stage)
+	t.AddInt("electrons", "", "simulated electrons at the end of the period", electrons)
+	t.AddInt("ions", "", "simulated ions at the end of the period", ions)
+	add := func(name, unit, doc string, f func(r *Row) float64) {
+		t.AddFloat(name, unit, doc, m.series(f, n))
+	}
+	add("weight_pm2", "1/m2", "real particles per area that a simulated one stands for",
+		func(r *Row) float64 { return r.Weight })
+	add("ion_content_pm2", "1/m2", "ions in the gap per area", func(r *Row) float64 { return r.Content })
+	for _, wall := range []pic.Wall{pic.Powered, pic.Grounded} {
+		add("ion_flux_"+wall.String()+"_m2ps", "1/(m2 s)", "ions that hit the electrode",
+			func(r *Row) float64 { return r.Flux[wall] })
+		add("ion_mean_energy_"+wall.String()+"_eV", "eV", "their mean energy; 0 where none came",
+			func(r *Row) float64 { return r.Energy[wall] })
+	}
+	for i, sp := range m.sim.Species() {
+		add("power_"+diagnostics.ColumnName(sp.Name)+"_Wpm2", "W/m2", "taken from the field",
+			func(r *Row) float64 { return r.Power[i] })
+	}
+	add("power_total_Wpm2", "W/m2", "delivered by the drive",
+		func(r *Row) float64 { return r.TotalPower })
+	add("field_energy_Jpm2", "J/m2", "at the end of the period",
+		func(r *Row) float64 { return r.FieldEnergy })
+	t.AddText("event", "what the program did to the particles, if anything", event)
+	return t
+}
+
+// write puts every file into the folder and makes it whole.
+func (m *machine) write() (*store.Summary, error) {
+	checks := m.trust()
+	s := &store.Summary{
+		Verdict: verdict(checks), Checks: checks, Results: m.results(),
+		Provenance: m.provenance(), References: m.references(),
+	}
+	meta := map[string]string{
+		"program": "ionfall " + m.options.version(), "input_sha256": m.plan.InputSHA256(),
+		"verdict": s.Verdict, "seed": fmt.Sprint(m.plan.Case.Seed),
+	}
+	for _, t := range []*table.Table{
+		m.rec.Profiles(), m.rec.Phases(), m.rec.IonEnergy(), m.rec.IonAngle(),
+		m.rec.ElectronEnergy(), m.rec.Waveforms(), m.historyTable(),
+	} {
+		if err := m.folder.WriteTable(t, meta); err != nil {
+			return nil, err
+		}
+	}
+	if err := m.folder.WriteSummary(s, meta); err != nil {
+		return nil, err
+	}
+	if err := m.save(); err != nil {
+		return nil, err
+	}
+	if err := m.folder.WriteJSON("state.json", m.state()); err != nil {
+		return nil, err
+	}
+	return s, m.folder.Commit()
+}
