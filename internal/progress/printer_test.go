@@ -169,7 +169,7 @@ func TestTerminalPace(t *testing.T) {
 	})
 }
 
-// screen plays what is written to a terminal: carriage return, backspace, line end, characters.
+// screen plays what is written to a terminal: carriage return, line end, characters.
 // It fails if a line is wider than the terminal.
 func screen(t *testing.T, out string, width int) []string {
 	t.Helper()
@@ -179,8 +179,6 @@ func screen(t *testing.T, out string, width int) []string {
 		switch r {
 		case '\r':
 			column = 0
-		case '\b':
-			column--
 		case '\n':
 			lines, column = append(lines, []rune{}), 0
 		default:

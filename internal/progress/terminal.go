@@ -41,7 +41,7 @@ func (r *redrawn) report(s Status) string {
 	// The last column stays free: writing there makes some terminals start a new line.
 	r.shown = cut(sentence(s), width-1)
 	rest := min(before, width-1) - utf8.RuneCountInString(r.shown)
-	return "\r" + r.shown + strings.Repeat(" ", max(0, rest)) + strings.Repeat("\b", max(0, rest))
+	return "\r" + r.shown + strings.Repeat(" ", max(0, rest))
 }
 
 func (r *redrawn) clear() string {
