@@ -33,11 +33,13 @@ type Config struct {
 	StepsPerPeriod int
 	Scheme         Scheme
 	Drive          Drive
-	Electrodes     [2]Electrode // by Wall
-	Species        []Species
-	Weight         float64 // W [1/m2]
-	Chunks         int
-	Seed           uint64
+	// Isolated leaves the powered electrode unconnected: see circuit.go. It has no Drive then.
+	Isolated   bool
+	Electrodes [2]Electrode // by Wall
+	Species    []Species
+	Weight     float64 // W [1/m2]
+	Chunks     int
+	Seed       uint64
 }
 
 // CellSize returns dx [m].
@@ -64,6 +66,9 @@ func (c *Config) check() error {
 		return fmt.Errorf("pic: %d chunks, want 1 to %d", c.Chunks, MaxChunks)
 	case len(c.Species) < 1 || len(c.Species) > MaxSpecies:
 		return fmt.Errorf("pic: %d species, want 1 to %d", len(c.Species), MaxSpecies)
+	}
+	if c.Isolated && (c.Drive.Bias != 0 || len(c.Drive.Tones) > 0) {
+		return fmt.Errorf("pic: an isolated electrode has no drive")
 	}
 	for i, sp := range c.Species {
 		if !(sp.Mass > 0) {

@@ -15,7 +15,8 @@ func (s *Simulation) sumCharge(w *worker, n int64) {
 	}
 }
 
-// solvePotential finds phi on the nodes from -phi” = rho/eps0 with phi[0] = V(t), phi[Cells] = 0.
+// solvePotential finds phi on the nodes from -phi” = rho/eps0 with phi[Cells] = 0 and phi[0]
+// as the circuit has it.
 func (s *Simulation) solvePotential(w *worker, n int64) {
 	scale := phys.ElementaryCharge * s.config.Weight * s.config.CellSize() / phys.Epsilon0
 	clear(w.net)
@@ -29,7 +30,7 @@ func (s *Simulation) solvePotential(w *worker, n int64) {
 		w.rhs[j] = scale * z
 	}
 	cells := s.config.Cells
-	w.phi[0] = s.voltage[n%int64(len(s.voltage))]
+	w.phi[0] = s.electrodePotential(w, n)
 	w.phi[cells] = 0
 	s.poisson.solve(w.rhs, w.phi)
 }
@@ -93,13 +94,14 @@ func (s *Simulation) scaleField(w *worker, i int) {
 }
 
 // measureCurrent finds J from the wall's charge balance: what did not arrive as particles came
-// through the circuit. sigma = eps0 E[0] changes by J dt + absorbed charge.
+// through the circuit. sigma = eps0 E[0] changes by J dt + absorbed charge. To an isolated
+// electrode there is no current.
 func (s *Simulation) measureCurrent(w *worker, n int64) Circuit {
 	dt := s.config.TimeStep()
 	charge := phys.ElementaryCharge * s.config.Weight * float64(s.absorbedAt(n))
 	voltage := w.phi[0]
 	var current float64
-	if s.haveField {
+	if s.haveField && !s.config.Isolated {
 		current = (phys.Epsilon0*(w.e[0]-s.lastE0) - charge) / dt
 		s.electric += 0.5 * (voltage + s.lastVoltage) * current * dt
 	}

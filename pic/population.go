@@ -10,8 +10,14 @@ import (
 )
 
 // ScaleWeight multiplies the weight of all particles: all densities change by the same factor,
-// charge densities stay in proportion.
+// charge densities stay in proportion, that on an isolated electrode, too.
 func (s *Simulation) ScaleWeight(factor float64) {
+	s.changeWeight(factor)
+	s.setSurfaceCharge(factor * s.SurfaceCharge())
+}
+
+// changeWeight multiplies the weight of all particles and leaves the charge on the wall.
+func (s *Simulation) changeWeight(factor float64) {
 	s.config.Weight *= factor
 	s.haveField = false // the field jumps: no displacement current is to be read from it
 }
@@ -22,7 +28,7 @@ func (s *Simulation) Halve() {
 	for i := range s.species {
 		s.halve(i)
 	}
-	s.ScaleWeight(2)
+	s.changeWeight(2)
 	s.redeposit()
 }
 
@@ -87,7 +93,7 @@ func (s *Simulation) Multiply(copies int, reach float64) {
 			s.species[i].chunks[c].multiply(&stream, copies, reach, s.config.Cells)
 		}
 	}
-	s.ScaleWeight(1 / float64(copies))
+	s.changeWeight(1 / float64(copies))
 	s.redeposit()
 }
 
@@ -175,6 +181,7 @@ func (s *Simulation) Transfer(from *Simulation, copies int) {
 		}
 	}
 	s.config.Weight = from.config.Weight
+	s.setSurfaceCharge(from.SurfaceCharge())
 	if copies > 1 {
 		s.Multiply(copies, max(1, scale))
 	}

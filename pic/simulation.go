@@ -42,6 +42,7 @@ type worker struct {
 	// step n: while it is read, the other is written.
 	deposit  [2][][]uint64
 	absorbed [2]int64 // net charge number that the powered electrode took in a step
+	surface  float64  // charge on an isolated powered electrode at step [C/m2], as all workers'
 
 	number         [][]float64 // by species, all workers' particles at each node
 	net, rhs       []float64
@@ -127,11 +128,11 @@ func (s *Simulation) SetObservers(list ...Observer) {
 func (s *Simulation) SetWorkers(n int) {
 	n = max(1, min(n, s.config.Chunks))
 	averages := s.pendingField()
-	absorbed := s.absorbedNow()
+	absorbed, surface := s.absorbedNow(), s.SurfaceCharge()
 	s.workers = make([]*worker, n)
 	for i := range s.workers {
 		s.workers[i] = newWorker(i, &s.config, len(s.species))
-		s.workers[i].step = s.step
+		s.workers[i].step, s.workers[i].surface = s.step, surface
 	}
 	s.setPendingField(averages)
 	s.workers[0].absorbed[s.step&1] = absorbed
@@ -234,7 +235,7 @@ func (s *Simulation) checkDeposits() error {
 func (s *Simulation) work(w *worker) {
 	for w.step < s.stop {
 		s.sumCharge(w, w.step)      // all workers' deposits -> rho
-		s.solvePotential(w, w.step) // -phi'' = rho/eps0, phi[0] = V(t)
+		s.solvePotential(w, w.step) // -phi'' = rho/eps0, phi[0] from drive or wall charge
 		s.differentiate(w)          // E = -dphi/dx
 		s.observe(w)                // read-only: diagnostics
 		s.carryDensity(w)           // species that rest keep their deposit
@@ -249,6 +250,7 @@ func (s *Simulation) work(w *worker) {
 		}
 		w.step++
 		s.sync.wait(w.index)
+		s.chargeElectrode(w) // isolated: what was absorbed stays
 	}
 }
 

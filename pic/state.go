@@ -15,6 +15,9 @@ func (s *Simulation) Save(enc *codec.Encoder, prefix string) {
 		int64(len(s.species)), int64(s.config.Chunks), int64(s.config.Cells),
 	})
 	enc.Float64s(prefix+"scalars", []float64{s.config.Weight, s.electric, s.lastE0, s.lastVoltage})
+	if s.config.Isolated {
+		enc.Float64s(prefix+"surface", []float64{s.SurfaceCharge()})
+	}
 	for i, p := range s.pendingField() {
 		enc.Int64(fmt.Sprintf("%s%d.summed", prefix, i), p.summed)
 		enc.Float64s(fmt.Sprintf("%s%d.field", prefix, i), p.flat())
@@ -49,6 +52,10 @@ func (s *Simulation) Restore(dec *codec.Decoder, prefix string) error {
 		n[6] != int64(s.config.Chunks) || n[7] != int64(s.config.Cells) {
 		return fmt.Errorf("pic: the saved state is of another case")
 	}
+	surface, err := s.restoreSurface(dec, prefix)
+	if err != nil {
+		return err
+	}
 	pending := make([]pending, len(s.species))
 	for i := range s.species {
 		for c := range s.species[i].chunks {
@@ -79,6 +86,7 @@ func (s *Simulation) Restore(dec *codec.Decoder, prefix string) error {
 		w.absorbed = [2]int64{}
 	}
 	s.workers[0].absorbed[s.step&1] = n[3]
+	s.setSurfaceCharge(surface)
 	s.setPendingField(pending)
 	s.redeposit()
 	return nil

@@ -51,8 +51,10 @@ func TestEveryKey(t *testing.T) {
 		Film:                &Film{0.3e-9, 5e28},
 		IonEnergyThresholds: []float64{20, 50},
 		Seed:                math.MaxUint64,
-		Numerics: Numerics{512, 4000, 200, "energy_conserving", 10, 5000, 1000,
-			"off"},
+		Numerics: Numerics{
+			512, 4000, 200, "energy_conserving", 10, 5000, 1000,
+			"off",
+		},
 	}
 	got := mustParse(t, string(validFiles(t)["testdata/full.yaml"]))
 	// The three products of doubles above round differently from the exact conversion.

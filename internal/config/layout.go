@@ -6,43 +6,71 @@ import "go.yaml.in/yaml/v4"
 func layout(c *Case) mapping {
 	return mapping{fields: []field{
 		{key: "title", value: line{&c.Title, maxTitle}, doc: "A line for people."},
-		{key: "gap", required: true,
+		{
+			key: "gap", required: true,
 			value: quantity{dst: &c.Gap, dim: length(), low: minGap, high: maxGap},
 			doc: "Distance between the electrodes; x = 0 is the powered one, " +
-				"x = gap the grounded one."},
+				"x = gap the grounded one.",
+		},
 		{key: "gas", required: true, value: gasLayout(&c.Gas), doc: "The neutral background."},
-		{key: "drive", required: true, value: driveLayout(&c.Drive),
-			doc: "Voltage of the powered electrode: V(t) = bias + sum of cosines."},
+		{
+			key: "drive", required: true, value: driveLayout(&c.Drive),
+			doc: "Voltage of the powered electrode: V(t) = bias + sum of cosines.",
+		},
 		{key: "electrodes", value: electrodesLayout(&c.Electrodes), doc: "The two walls."},
-		{key: "accuracy", value: accuracyLayout(&c.Accuracy),
-			doc: "Relative standard errors that end the run when they are reached."},
-		{key: "budget", value: budgetLayout(&c.Budget),
-			doc: "What the run may cost before it ends short of its accuracy. Default: no limit."},
-		{key: "initial", value: initialLayout(&c.Initial),
-			doc: "The uniform plasma at the start. Default: estimated."},
-		{key: "film", value: pointer[Film]{&c.Film, filmLayout},
-			doc: "Growth of the film, to give ions and ion energy per deposited atom."},
-		{key: "ion_energy_thresholds", value: thresholdsLayout(&c.IonEnergyThresholds),
-			doc: "The ion flux above each of these energies is reported."},
-		{key: "seed", value: seed{&c.Seed},
-			doc: "Selects the random numbers; the same seed gives the same bits. Default: 1."},
-		{key: "numerics", value: numericsLayout(&c.Numerics),
-			doc: "auto picks everything; in a mapping, what is given is kept. Default: auto."},
+		{
+			key: "accuracy", value: accuracyLayout(&c.Accuracy),
+			doc: "Relative standard errors that end the run when they are reached.",
+		},
+		{
+			key: "budget", value: budgetLayout(&c.Budget),
+			doc: "What the run may cost before it ends short of its accuracy. Default: no limit.",
+		},
+		{
+			key: "initial", value: initialLayout(&c.Initial),
+			doc: "The uniform plasma at the start. Default: estimated.",
+		},
+		{
+			key: "film", value: pointer[Film]{&c.Film, filmLayout},
+			doc: "Growth of the film, to give ions and ion energy per deposited atom.",
+		},
+		{
+			key: "ion_energy_thresholds", value: thresholdsLayout(&c.IonEnergyThresholds),
+			doc: "The ion flux above each of these energies is reported.",
+		},
+		{
+			key: "seed", value: seed{&c.Seed},
+			doc: "Selects the random numbers; the same seed gives the same bits. Default: 1.",
+		},
+		{
+			key: "numerics", value: numericsLayout(&c.Numerics),
+			doc: "auto picks everything; in a mapping, what is given is kept. Default: auto.",
+		},
 	}}
 }
 
 func gasLayout(g *Gas) value {
 	return mapping{fields: []field{
-		{key: "pressure", required: true,
-			value: quantity{dst: &g.Pressure, dim: pressure(), low: "0 Pa", high: maxPressure,
-				above: true},
-			doc: "Pressure of the mixture."},
-		{key: "temperature",
-			value: quantity{dst: &g.Temperature, dim: gasTemperature(),
-				low: minGasTemperature, high: maxGasTemperature},
-			doc: "Temperature of the gas. Default: 300 K."},
-		{key: "mixture", required: true, value: mixture{&g.Mixture},
-			doc: "Gases and their fractions of the molecules, which sum to 1."},
+		{
+			key: "pressure", required: true,
+			value: quantity{
+				dst: &g.Pressure, dim: pressure(), low: "0 Pa", high: maxPressure,
+				above: true,
+			},
+			doc: "Pressure of the mixture.",
+		},
+		{
+			key: "temperature",
+			value: quantity{
+				dst: &g.Temperature, dim: gasTemperature(),
+				low: minGasTemperature, high: maxGasTemperature,
+			},
+			doc: "Temperature of the gas. Default: 300 K.",
+		},
+		{
+			key: "mixture", required: true, value: mixture{&g.Mixture},
+			doc: "Gases and their fractions of the molecules, which sum to 1.",
+		},
 	}}
 }
 
@@ -50,28 +78,40 @@ func driveLayout(d *Drive) value {
 	tones := list[Tone]{dst: &d.Tones, max: maxTones, what: "tones", item: toneLayout}
 	tones.check = d.check
 	return mapping{fields: []field{
-		{key: "tones", required: true, value: tones,
+		{
+			key: "tones", required: true, value: tones,
 			doc: "The cosines. Their frequencies are whole multiples of a common fundamental, " +
-				"which is at least 1/1000 of the highest."},
-		{key: "bias",
+				"which is at least 1/1000 of the highest.",
+		},
+		{
+			key:   "bias",
 			value: quantity{dst: &d.Bias, dim: voltage(), low: "-" + maxVoltage, high: maxVoltage},
-			doc:   "Constant voltage. Default: 0 V."},
+			doc:   "Constant voltage. Default: 0 V.",
+		},
 	}}
 }
 
 func toneLayout(t *Tone) value {
 	return mapping{fields: []field{
-		{key: "frequency", required: true,
-			value: quantity{dst: &t.Frequency, dim: frequency(), low: "0 Hz", high: maxFrequency,
-				above: true},
-			doc: "Frequency of the cosine."},
-		{key: "amplitude", required: true,
+		{
+			key: "frequency", required: true,
+			value: quantity{
+				dst: &t.Frequency, dim: frequency(), low: "0 Hz", high: maxFrequency,
+				above: true,
+			},
+			doc: "Frequency of the cosine.",
+		},
+		{
+			key: "amplitude", required: true,
 			value: quantity{dst: &t.Amplitude, dim: voltage(), low: "0 V", high: maxVoltage},
-			doc:   "Amplitude, not peak to peak. At least one tone has more than 0 V."},
-		{key: "phase",
+			doc:   "Amplitude, not peak to peak. At least one tone has more than 0 V.",
+		},
+		{
+			key:   "phase",
 			value: quantity{dst: &t.Phase, dim: angle(), low: minPhase, high: maxPhase},
 			doc: "Phase: the voltage is amplitude * cos(2 pi frequency t + phase). " +
-				"Default: 0 deg."},
+				"Default: 0 deg.",
+		},
 	}}
 }
 
@@ -92,18 +132,28 @@ func electrodesLayout(e *Electrodes) value {
 
 func electrodeLayout(e *Electrode) value {
 	return mapping{fields: []field{
-		{key: "ion_secondary_yield", value: number{dst: &e.IonSecondaryYield, high: maxYield},
-			doc: "Mean number of electrons set free by an arriving ion. Default: 0."},
-		{key: "secondary_electron_energy",
-			value: quantity{dst: &e.SecondaryElectronEnergy, dim: energy(), low: "0 eV",
-				high: maxSecondaryEnergy},
-			doc: "Energy of the electrons set free. Default: 1 eV."},
-		{key: "electron_reflection",
+		{
+			key: "ion_secondary_yield", value: number{dst: &e.IonSecondaryYield, high: maxYield},
+			doc: "Mean number of electrons set free by an arriving ion. Default: 0.",
+		},
+		{
+			key: "secondary_electron_energy",
+			value: quantity{
+				dst: &e.SecondaryElectronEnergy, dim: energy(), low: "0 eV",
+				high: maxSecondaryEnergy,
+			},
+			doc: "Energy of the electrons set free. Default: 1 eV.",
+		},
+		{
+			key:   "electron_reflection",
 			value: number{dst: &e.ElectronReflection, high: 1, below: true, percent: true},
-			doc:   "Part of the arriving electrons that is reflected. Default: 0."},
-		{key: "substrate", value: boolean{&e.Substrate},
+			doc:   "Part of the arriving electrons that is reflected. Default: 0.",
+		},
+		{
+			key: "substrate", value: boolean{&e.Substrate},
 			doc: "The film grows here; both electrodes may be substrates. " +
-				"Default: true for the grounded one."},
+				"Default: true for the grounded one.",
+		},
 	}}
 }
 
@@ -119,44 +169,68 @@ func accuracyLayout(a *Accuracy) value {
 
 func budgetLayout(b *Budget) value {
 	return mapping{optional: true, fields: []field{
-		{key: "cpu",
-			value: quantity{dst: &b.CPU, dim: duration(), low: minCPU, high: maxCPU,
-				optional: true},
-			doc: "CPU time, over all cores. Default: no limit."},
-		{key: "periods", value: integer{dst: &b.Periods, low: 1, high: MaxPeriods, optional: true},
-			doc: "Most RF periods to simulate. Default: no limit."},
+		{
+			key: "cpu",
+			value: quantity{
+				dst: &b.CPU, dim: duration(), low: minCPU, high: maxCPU,
+				optional: true,
+			},
+			doc: "CPU time, over all cores. Default: no limit.",
+		},
+		{
+			key: "periods", value: integer{dst: &b.Periods, low: 1, high: MaxPeriods, optional: true},
+			doc: "Most RF periods to simulate. Default: no limit.",
+		},
 	}}
 }
 
 func initialLayout(i *Initial) value {
 	return mapping{optional: true, fields: []field{
-		{key: "density",
-			value: quantity{dst: &i.Density, dim: density(), low: "0 /m3", high: maxDensity,
-				above: true, optional: true},
-			doc: "Density of the electrons, and of the ions together. Default: estimated."},
-		{key: "electron_temperature",
-			value: quantity{dst: &i.ElectronTemperature, dim: electronTemperature(),
-				low: minElectronTemperature, high: maxElectronTemperature, optional: true},
-			doc: "Temperature of the electrons. Default: estimated."},
+		{
+			key: "density",
+			value: quantity{
+				dst: &i.Density, dim: density(), low: "0 /m3", high: maxDensity,
+				above: true, optional: true,
+			},
+			doc: "Density of the electrons, and of the ions together. Default: estimated.",
+		},
+		{
+			key: "electron_temperature",
+			value: quantity{
+				dst: &i.ElectronTemperature, dim: electronTemperature(),
+				low: minElectronTemperature, high: maxElectronTemperature, optional: true,
+			},
+			doc: "Temperature of the electrons. Default: estimated.",
+		},
 	}}
 }
 
 func filmLayout(f *Film) value {
 	return mapping{fields: []field{
-		{key: "growth_rate", required: true,
-			value: quantity{dst: &f.GrowthRate, dim: speed(), low: "0 m/s", high: maxGrowthRate,
-				above: true},
-			doc: "Thickness gained in a time."},
-		{key: "atom_density", required: true,
-			value: quantity{dst: &f.AtomDensity, dim: density(), low: "0 /m3",
-				high: maxAtomDensity, above: true},
-			doc: "Number of atoms in a volume of film."},
+		{
+			key: "growth_rate", required: true,
+			value: quantity{
+				dst: &f.GrowthRate, dim: speed(), low: "0 m/s", high: maxGrowthRate,
+				above: true,
+			},
+			doc: "Thickness gained in a time.",
+		},
+		{
+			key: "atom_density", required: true,
+			value: quantity{
+				dst: &f.AtomDensity, dim: density(), low: "0 /m3",
+				high: maxAtomDensity, above: true,
+			},
+			doc: "Number of atoms in a volume of film.",
+		},
 	}}
 }
 
 func thresholdsLayout(dst *[]float64) value {
-	return list[float64]{dst: dst, max: maxThresholds, what: "energies",
+	return list[float64]{
+		dst: dst, max: maxThresholds, what: "energies",
 		item: func(f *float64) value {
 			return quantity{dst: f, dim: energy(), low: "0 eV", high: maxThreshold, above: true}
-		}}
+		},
+	}
 }

@@ -59,16 +59,16 @@ const (
 	// No ion can gain more than the largest bias and amplitudes together allow.
 	maxThreshold = "1000 keV"
 
-	// MinCells: with fewer, two sheaths and a bulk cannot be told apart.
+	// MinCells is a limit: with fewer, two sheaths and a bulk cannot be told apart.
 	MinCells = 8
-	// MaxCells: 16384 cells of 1 m are 60 um, below the Debye length of most plasmas here.
+	// MaxCells is a limit: 16384 cells of 1 m are 60 um, below the Debye length of most plasmas here.
 	MaxCells = 16384
-	// MinStepsPerPeriod: fewer than 20 steps do not show the shape of a cosine.
+	// MinStepsPerPeriod is a limit: fewer than 20 steps do not show the shape of a cosine.
 	MinStepsPerPeriod = 20
-	// MaxStepsPerPeriod: a step of 0.1 ps at 13.56 MHz, far below any plasma period here.
+	// MaxStepsPerPeriod is a limit: a step of 0.1 ps at 13.56 MHz, far below any plasma period here.
 	MaxStepsPerPeriod = 1_000_000
-	// MaxParticlesPerCell: with it the noise of a cell is 0.1 %, at 16 GB for 512 cells.
+	// MaxParticlesPerCell is a limit: with it the noise of a cell is 0.1 %, at 16 GB for 512 cells.
 	MaxParticlesPerCell = 1_000_000
-	// MaxIonSubsteps: the field an ion feels is an average over them.
+	// MaxIonSubsteps is a limit: the field an ion feels is an average over them.
 	MaxIonSubsteps = 1000
 )

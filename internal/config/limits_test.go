@@ -17,35 +17,62 @@ type limit struct {
 func limits() []limit {
 	return []limit{
 		{"gap", []string{"1 mm", "1 m"}, []string{"0.999 mm", "1.0001 m", "0 m", "-1 m"}},
-		{"gas.pressure", []string{"1e-300 Pa", "1e5 Pa", "1 bar"},
-			[]string{"0 Pa", "-1 Pa", "100001 Pa"}},
-		{"gas.temperature", []string{"50 K", "3000 K", "-223.15 C"},
-			[]string{"49.9 K", "3001 K", "-224 C", "-3 K"}},
-		{"gas.mixture", []string{"{A: 1}", "{A: 0.5, B: 0.5}", "{A: 90 %, B: 0.1}",
-			"{A: 0.333333, B: 0.333333, C: 0.333333}", "{A: 999999 ppm}", "{A: 1, B: 1e-6}"},
-			[]string{"{}", "{A: 0}", "{A: 1.0001}", "{A: 1, B: 2e-6}", "{A: 0.999998}",
-				"{A: 1, B: -1, C: 1}", "{1: 1}", "{true: 1}", "{A: 1, A: 0}", "[A]", "A"}},
+		{
+			"gas.pressure",
+			[]string{"1e-300 Pa", "1e5 Pa", "1 bar"},
+			[]string{"0 Pa", "-1 Pa", "100001 Pa"},
+		},
+		{
+			"gas.temperature",
+			[]string{"50 K", "3000 K", "-223.15 C"},
+			[]string{"49.9 K", "3001 K", "-224 C", "-3 K"},
+		},
+		{
+			"gas.mixture",
+			[]string{
+				"{A: 1}", "{A: 0.5, B: 0.5}", "{A: 90 %, B: 0.1}",
+				"{A: 0.333333, B: 0.333333, C: 0.333333}", "{A: 999999 ppm}", "{A: 1, B: 1e-6}",
+			},
+			[]string{
+				"{}", "{A: 0}", "{A: 1.0001}", "{A: 1, B: 2e-6}", "{A: 0.999998}",
+				"{A: 1, B: -1, C: 1}", "{1: 1}", "{true: 1}", "{A: 1, A: 0}", "[A]", "A",
+			},
+		},
 		{"drive.bias", []string{"-100 kV", "100 kV", "-0 V"}, []string{"-100001 V", "101 kV"}},
 		{"drive.tones.0.frequency", []string{"1e-9 Hz", "10 GHz"}, []string{"0 Hz", "10.1 GHz"}},
 		{"drive.tones.0.amplitude", []string{"1e-9 V", "100 kV"}, []string{"101 kV", "-1 V", "-0 V"}},
 		{"drive.tones.0.phase", []string{"-3600 deg", "3600 deg"}, []string{"3601 deg", "63 rad"}},
 		{"electrodes.powered.ion_secondary_yield", []string{"0", "10"}, []string{"-0.1", "10.1"}},
-		{"electrodes.powered.secondary_electron_energy", []string{"0 eV", "1 keV"},
-			[]string{"-1 eV", "1001 eV"}},
-		{"electrodes.powered.electron_reflection", []string{"0", "0.999", "99 %"},
-			[]string{"1", "100 %", "-0.1", "-1 %"}},
+		{
+			"electrodes.powered.secondary_electron_energy",
+			[]string{"0 eV", "1 keV"},
+			[]string{"-1 eV", "1001 eV"},
+		},
+		{
+			"electrodes.powered.electron_reflection",
+			[]string{"0", "0.999", "99 %"},
+			[]string{"1", "100 %", "-0.1", "-1 %"},
+		},
 		{"accuracy.ion_energy", []string{"0.01 %", "50 %"}, []string{"0.009 %", "51 %", "0.5"}},
 		{"accuracy.ion_flux", []string{"100 ppm", "50 %"}, []string{"99 ppm", "0 %"}},
 		{"budget.cpu", []string{"1 s", "365 d"}, []string{"0 s", "366 d"}},
 		{"budget.periods", []string{"1", "1000000000"}, []string{"0", "1000000001", "auto"}},
 		{"initial.density", []string{"1e-9 /m3", "1e24 /m3"}, []string{"0 /m3", "1.1e24 /m3"}},
 		{"initial.electron_temperature", []string{"50 K", "1e7 K"}, []string{"49 K", "1 keV"}},
-		{"ion_energy_thresholds", []string{"[1 meV, 1000 keV]", "[30 eV, 20 eV]"},
-			[]string{"[]", "[0 eV]", "[-1 eV]", "20 eV", "[" + strings.Repeat("1 eV,", 21) + "]"}},
-		{"seed", []string{"0", "18446744073709551615"}, []string{"-1", "18446744073709551616",
-			"0.5", "010", "0x10", "1_0", "'1'"}},
-		{"numerics.cells", []string{"8", "16384", "auto", "1e3"},
-			[]string{"7", "1", "0", "16385", "99999999999999999999", "8.5", "many"}},
+		{
+			"ion_energy_thresholds",
+			[]string{"[1 meV, 1000 keV]", "[30 eV, 20 eV]"},
+			[]string{"[]", "[0 eV]", "[-1 eV]", "20 eV", "[" + strings.Repeat("1 eV,", 21) + "]"},
+		},
+		{"seed", []string{"0", "18446744073709551615"}, []string{
+			"-1", "18446744073709551616",
+			"0.5", "010", "0x10", "1_0", "'1'",
+		}},
+		{
+			"numerics.cells",
+			[]string{"8", "16384", "auto", "1e3"},
+			[]string{"7", "1", "0", "16385", "99999999999999999999", "8.5", "many"},
+		},
 		{"numerics.steps_per_period", []string{"20", "1000000", "auto"}, []string{"19", "1000001"}},
 		{"numerics.particles_per_cell", []string{"1", "1000000"}, []string{"0", "1000001"}},
 		{"numerics.ion_substeps", []string{"1", "1000"}, []string{"0", "1001"}},
@@ -75,8 +102,10 @@ func with(key, text string) string {
 	values["drive.tones"] = "[" + section("drive.tones.0") + "]"
 	values["electrodes.powered"] = section("electrodes.powered")
 	var b strings.Builder
-	for _, name := range []string{"gas", "drive", "electrodes", "accuracy", "budget", "initial",
-		"numerics"} {
+	for _, name := range []string{
+		"gas", "drive", "electrodes", "accuracy", "budget", "initial",
+		"numerics",
+	} {
 		b.WriteString(name + ": " + section(name) + "\n")
 	}
 	for _, name := range []string{"gap", "ion_energy_thresholds", "seed"} {

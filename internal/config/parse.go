@@ -51,12 +51,16 @@ func checkText(src []byte) *inputerr.Error {
 	for rest := src; len(rest) > 0; col++ {
 		r, size := utf8.DecodeRune(rest)
 		if r == utf8.RuneError && size == 1 {
-			return &inputerr.Error{Line: line, Col: col,
-				Got: fmt.Sprintf("the byte 0x%02x", rest[0]), Want: "text in UTF-8"}
+			return &inputerr.Error{
+				Line: line, Col: col,
+				Got: fmt.Sprintf("the byte 0x%02x", rest[0]), Want: "text in UTF-8",
+			}
 		}
 		if r < ' ' && !strings.ContainsRune("\t\n\r", r) {
-			return &inputerr.Error{Line: line, Col: col,
-				Got: fmt.Sprintf("the control character U+%04X", r), Want: "text"}
+			return &inputerr.Error{
+				Line: line, Col: col,
+				Got: fmt.Sprintf("the control character U+%04X", r), Want: "text",
+			}
 		}
 		if r == '\n' {
 			line, col = line+1, 0
@@ -88,8 +92,10 @@ func parseYAML(src []byte) (*yaml.Node, *inputerr.Error) {
 	}
 	switch err := loader.Load(&second); {
 	case err == nil:
-		return nil, &inputerr.Error{Line: second.Line, Col: second.Column,
-			Got: "a second document", Want: "one document a file"}
+		return nil, &inputerr.Error{
+			Line: second.Line, Col: second.Column,
+			Got: "a second document", Want: "one document a file",
+		}
 	case !errors.Is(err, io.EOF):
 		return nil, syntaxError(err)
 	}

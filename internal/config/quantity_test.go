@@ -117,20 +117,26 @@ func factors() map[string]map[string]float64 {
 	const torr = 133.32236842105263
 	return map[string]map[string]float64{
 		"a length": {"m": 1, "cm": 1e-2, "mm": 1e-3, "um": 1e-6, "nm": 1e-9, "in": 0.0254},
-		"a pressure": {"Pa": 1, "hPa": 100, "kPa": 1000, "MPa": 1e6, "mPa": 1e-3, "bar": 1e5,
-			"mbar": 100, "ubar": 0.1, "Torr": torr, "mTorr": torr / 1000, "atm": 101325},
+		"a pressure": {
+			"Pa": 1, "hPa": 100, "kPa": 1000, "MPa": 1e6, "mPa": 1e-3, "bar": 1e5,
+			"mbar": 100, "ubar": 0.1, "Torr": torr, "mTorr": torr / 1000, "atm": 101325,
+		},
 		"a temperature":           {"K": 1, "C": 274.15},
 		"an electron temperature": {"K": 1, "eV": 11604.51812},
 		"a frequency":             {"Hz": 1, "kHz": 1e3, "MHz": 1e6, "GHz": 1e9},
 		"a voltage":               {"V": 1, "mV": 1e-3, "kV": 1e3},
 		"an angle":                {"rad": 1, "deg": 0.017453292519943295},
 		"a ratio":                 {"%": 0.01, "ppm": 1e-6},
-		"a time": {"s": 1, "ms": 1e-3, "us": 1e-6, "ns": 1e-9, "min": 60, "h": 3600,
-			"d": 24 * 3600},
+		"a time": {
+			"s": 1, "ms": 1e-3, "us": 1e-6, "ns": 1e-9, "min": 60, "h": 3600,
+			"d": 24 * 3600,
+		},
 		"a density": {"/m3": 1, "/cm3": 1e6},
-		"a growth rate": {"m/s": 1, "mm/s": 1e-3, "um/s": 1e-6, "um/min": 1e-6 / 60,
+		"a growth rate": {
+			"m/s": 1, "mm/s": 1e-3, "um/s": 1e-6, "um/min": 1e-6 / 60,
 			"um/h": 1e-6 / 3600, "nm/s": 1e-9, "nm/min": 1e-9 / 60, "nm/h": 1e-9 / 3600,
-			"Angstrom/s": 1e-10, "Angstrom/min": 1e-10 / 60},
+			"Angstrom/s": 1e-10, "Angstrom/min": 1e-10 / 60,
+		},
 		"an energy": {"eV": 1, "meV": 1e-3, "keV": 1e3},
 	}
 }

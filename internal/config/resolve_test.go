@@ -109,8 +109,10 @@ func FuzzValue(f *testing.F) {
 	for i, p := range places {
 		f.Add(uint(i), src[p[0]+2:p[1]])
 	}
-	for i, s := range []string{"5 Pa", "1e-3 %", "0", "-0", ".5", "5.", "1e2", "auto", "null",
-		"1 Torr", "1 deg", "0.07 %", "3e-320 eV", "é", "[1 eV]", "{a: b}", "'x'", "yes"} {
+	for i, s := range []string{
+		"5 Pa", "1e-3 %", "0", "-0", ".5", "5.", "1e2", "auto", "null",
+		"1 Torr", "1 deg", "0.07 %", "3e-320 eV", "é", "[1 eV]", "{a: b}", "'x'", "yes",
+	} {
 		f.Add(uint(i), s)
 	}
 	schema := compiled(f)

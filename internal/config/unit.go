@@ -70,8 +70,10 @@ func length() dimension {
 		{name: "m", words: []string{"metre", "meter", "metres", "meters"}},
 		{name: "cm", scale: "1e-2"},
 		{name: "mm", scale: "1e-3", words: []string{"millimetre", "millimeter"}},
-		{name: "um", scale: "1e-6", also: []string{"\u00b5m", "\u03bcm"},
-			words: []string{"micron"}},
+		{
+			name: "um", scale: "1e-6", also: []string{"\u00b5m", "\u03bcm"},
+			words: []string{"micron"},
+		},
 		{name: "nm", scale: "1e-9"},
 		{name: "in", scale: "25.4e-3", words: []string{"inch", "inches"}},
 	}}
@@ -87,8 +89,10 @@ func pressure() dimension {
 		{name: "mPa", scale: "1e-3"},
 		{name: "bar", scale: "1e5"},
 		{name: "mbar", scale: "1e2", words: []string{"millibar"}},
-		{name: "ubar", scale: "1e-1", also: []string{"\u00b5bar", "\u03bcbar"},
-			words: []string{"microbar"}},
+		{
+			name: "ubar", scale: "1e-1", also: []string{"\u00b5bar", "\u03bcbar"},
+			words: []string{"microbar"},
+		},
 		{name: "Torr", scale: "101325", per: "760"},
 		{name: "mTorr", scale: "101.325", per: "760", words: []string{"millitorr"}},
 		{name: "atm", scale: "101325", words: []string{"atmosphere", "atmospheres"}},
@@ -98,8 +102,10 @@ func pressure() dimension {
 func gasTemperature() dimension {
 	return dimension{"a temperature", "300 K", []unit{
 		{name: "K", words: []string{"kelvin"}},
-		{name: "C", offset: "273.15", also: []string{"degC", "°C", "℃"},
-			words: []string{"celsius", "centigrade"}},
+		{
+			name: "C", offset: "273.15", also: []string{"degC", "°C", "℃"},
+			words: []string{"celsius", "centigrade"},
+		},
 	}}
 }
 
@@ -108,8 +114,10 @@ func gasTemperature() dimension {
 func electronTemperature() dimension {
 	return dimension{"an electron temperature", "3 eV", []unit{
 		{name: "K", words: []string{"kelvin"}},
-		{name: "eV", scale: "1.602176634e4", per: "1.380649",
-			words: []string{"electronvolt", "electron volt"}},
+		{
+			name: "eV", scale: "1.602176634e4", per: "1.380649",
+			words: []string{"electronvolt", "electron volt"},
+		},
 	}}
 }
 
@@ -134,8 +142,10 @@ func angle() dimension {
 	const pi = "3.14159265358979323846264338327950288"
 	return dimension{"an angle", "90 deg", []unit{
 		{name: "rad", words: []string{"radian", "radians"}},
-		{name: "deg", scale: pi, per: "180", also: []string{"°"},
-			words: []string{"degree", "degrees"}},
+		{
+			name: "deg", scale: pi, per: "180", also: []string{"°"},
+			words: []string{"degree", "degrees"},
+		},
 	}}
 }
 
@@ -160,10 +170,14 @@ func duration() dimension {
 
 func density() dimension {
 	return dimension{"a density", "2.56e14 /m3", []unit{
-		{name: "/m3", also: []string{"1/m3", "m-3", "m^-3", "/m^3", "1/m^3", "m⁻³", "/m³", "1/m³"},
-			words: []string{"per m3"}},
-		{name: "/cm3", scale: "1e6", also: []string{"1/cm3", "cm-3", "cm^-3", "/cm^3", "1/cm^3",
-			"cm⁻³", "/cm³", "1/cm³"}, words: []string{"per cm3", "/cc"}},
+		{
+			name: "/m3", also: []string{"1/m3", "m-3", "m^-3", "/m^3", "1/m^3", "m⁻³", "/m³", "1/m³"},
+			words: []string{"per m3"},
+		},
+		{name: "/cm3", scale: "1e6", also: []string{
+			"1/cm3", "cm-3", "cm^-3", "/cm^3", "1/cm^3",
+			"cm⁻³", "/cm³", "1/cm³",
+		}, words: []string{"per cm3", "/cc"}},
 	}}
 }
 
@@ -177,10 +191,14 @@ func speed() dimension {
 		{name: "nm/s", scale: "1e-9"},
 		{name: "nm/min", scale: "1e-9", per: "60"},
 		{name: "nm/h", scale: "1e-9", per: "3600"},
-		{name: "Angstrom/s", scale: "1e-10", also: []string{"angstrom/s", "\u00c5/s", "\u212b/s"},
-			words: []string{"A/s"}},
-		{name: "Angstrom/min", scale: "1e-10", per: "60",
-			also: []string{"angstrom/min", "\u00c5/min", "\u212b/min"}, words: []string{"A/min"}},
+		{
+			name: "Angstrom/s", scale: "1e-10", also: []string{"angstrom/s", "\u00c5/s", "\u212b/s"},
+			words: []string{"A/s"},
+		},
+		{
+			name: "Angstrom/min", scale: "1e-10", per: "60",
+			also: []string{"angstrom/min", "\u00c5/min", "\u212b/min"}, words: []string{"A/min"},
+		},
 	}}
 }
 

@@ -15,10 +15,14 @@ func TestErrorText(t *testing.T) {
 		want string
 	}{
 		{pressure, "argon.yaml:14:15: gas.pressure: got -3 Pa, want more than 0 Pa"},
-		{Error{File: "a", Line: 2, Key: "k", Got: "x", Hint: `did you mean "y"?`},
-			`a:2: k: got x; did you mean "y"?`},
-		{Error{File: "ar.txt", Line: 212, Col: 3, Got: "15.8 eV after 16 eV", Want: "increasing"},
-			"ar.txt:212:3: got 15.8 eV after 16 eV, want increasing"},
+		{
+			Error{File: "a", Line: 2, Key: "k", Got: "x", Hint: `did you mean "y"?`},
+			`a:2: k: got x; did you mean "y"?`,
+		},
+		{
+			Error{File: "ar.txt", Line: 212, Col: 3, Got: "15.8 eV after 16 eV", Want: "increasing"},
+			"ar.txt:212:3: got 15.8 eV after 16 eV, want increasing",
+		},
 		{Error{File: "a.yaml", Hint: "no such file"}, "a.yaml: no such file"},
 		{Error{Line: 3, Col: 4, Want: "a number"}, "line 3:4: want a number"},
 		{Error{Key: "gap", Got: "x"}, "gap: got x"},
@@ -72,7 +76,7 @@ func TestListLimit(t *testing.T) {
 
 // Goal: an empty list is no error, a full one can be taken apart. Method: errors.As.
 func TestListErr(t *testing.T) {
-	if err := (List)(nil).Err(); err != nil {
+	if err := List(nil).Err(); err != nil {
 		t.Errorf("empty list: got %v, want nil", err)
 	}
 	err := fmt.Errorf("reading: %w", List{{File: "f", Line: 7}}.Err())
@@ -86,19 +90,19 @@ func TestListErr(t *testing.T) {
 func TestNearest(t *testing.T) {
 	keys := []string{"gap", "gas", "drive", "pressure", "temperature", "ion_secondary_yield"}
 	for word, want := range map[string]string{
-		"presure":             "pressure",    // a letter left out
-		"pressuree":           "pressure",    // one too many
-		"prassure":            "pressure",    // a wrong one
-		"rpessure":            "pressure",    // two swapped
-		"PRESSURE":            "pressure",    // case
-		"temprature":          "temperature", //
-		"gpa":                 "gap",         // a swap costs one, so it is not "gas"
-		"gab":                 "gap",         // as close to "gas": the first
-		"ion_secundary_yeild": "ion_secondary_yield",
-		"voltage":             "",
-		"gxx":                 "", // two of three letters wrong
-		"":                    "",
-		"dr":                  "",
+		"presure":            "pressure",    // a letter left out
+		"ppressure":          "pressure",    // one too many
+		"prassure":           "pressure",    // a wrong one
+		"rpessure":           "pressure",    // two swapped
+		"PRESSURE":           "pressure",    // case
+		"temprature":         "temperature", //
+		"gpa":                "gap",         // a swap costs one, so it is not "gas"
+		"gab":                "gap",         // as close to "gas": the first
+		"ion_secundary_yild": "ion_secondary_yield",
+		"voltage":            "",
+		"gxx":                "", // two of three letters wrong
+		"":                   "",
+		"dr":                 "",
 	} {
 		if got := Nearest(word, keys); got != want {
 			t.Errorf("Nearest(%q): got %q, want %q", word, got, want)
@@ -118,8 +122,13 @@ func TestDistance(t *testing.T) {
 		a, b string
 		want int
 	}{
-		{"", "", 0}, {"", "abc", 3}, {"kitten", "sitting", 3}, {"ab", "ba", 1},
-		{"abcd", "acbd", 1}, {"ca", "abc", 3}, {"flaw", "lawn", 2},
+		{"", "", 0},
+		{"", "abc", 3},
+		{"kitten", "sitting", 3},
+		{"ab", "ba", 1},
+		{"abcd", "acbd", 1},
+		{"ca", "abc", 3},
+		{"flaw", "lawn", 2},
 	} {
 		for _, p := range [][2]string{{c.a, c.b}, {c.b, c.a}} {
 			if got := distance([]rune(p[0]), []rune(p[1])); got != c.want {
@@ -132,8 +141,10 @@ func TestDistance(t *testing.T) {
 func ExampleList() {
 	keys := []string{"pressure", "temperature", "mixture"}
 	errs := List{
-		{File: "argon.yaml", Line: 6, Col: 3, Key: "gas.presure",
-			Hint: fmt.Sprintf("unknown key; did you mean %q?", Nearest("presure", keys))},
+		{
+			File: "argon.yaml", Line: 6, Col: 3, Key: "gas.presure",
+			Hint: fmt.Sprintf("unknown key; did you mean %q?", Nearest("presure", keys)),
+		},
 		{File: "argon.yaml", Line: 2, Col: 6, Key: "gap", Got: "0 mm", Want: "1 mm to 1 m"},
 	}
 	fmt.Println(errs.Err())

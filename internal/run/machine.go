@@ -131,7 +131,7 @@ func (m *machine) decide() error {
 
 func (m *machine) fixedLength() bool { return m.plan.Case.Numerics.Periods > 0 }
 
-// decideFixed keeps to the asked-for number of periods.
+// decideFixed keeps to the asked-for number of periods; called before the first, too.
 func (m *machine) decideFixed() {
 	n := m.plan.Case.Numerics
 	average := n.AveragePeriods
@@ -169,11 +169,10 @@ func (m *machine) decidePilot(row *Row) error {
 	return m.toFinal()
 }
 
-// guessPlasma estimates the plasma from the number of ions alone: the middle holds about 1.8
-// times the mean.
+// guessPlasma estimates the plasma from the number of ions alone.
 func (m *machine) guessPlasma(row *Row) plasma {
 	q, _ := m.plan.firstGuess()
-	q.Density = 1.8 * row.Content / m.plan.Case.Gap
+	q.Density = peakOverMean * row.Content / m.plan.Case.Gap
 	return q
 }
 

@@ -47,19 +47,25 @@ type quality struct {
 	debyeCells  float64 // dx/lambda_D with the energy-conserving scheme; 1/4 of it with the other
 	sheathCells float64 // cells in a sheath
 	ionSteps    int     // ion moves in a period of the fastest tone
-	perCell     int     // particles
+	perDebye    float64 // electrons in a Debye length where the plasma is densest
+	perCell     int     // particles in a cell, mean over the gap, at least
 	candidates  float64 // collision candidates of an electron in a step
 }
 
 var (
 	// finalQuality keeps inside the bounds of the trust checks. Against a run with twice the cells
 	// and steps, bench/ has the shifts.
-	finalQuality = quality{0.2, 2.5, 12, 80, 200, 0.1}
+	finalQuality = quality{0.2, 2.5, 12, 80, 200, 100, 0.1}
 	// pilotQuality is for the density within some per cent.
-	pilotQuality = quality{0.35, 5, 8, 40, 100, 0.3}
+	pilotQuality = quality{0.35, 5, 8, 40, 50, 60, 0.3}
 )
 
 const (
+	// peakOverMean is the density in the middle over its mean, of discharges that were looked at.
+	peakOverMean = 1.8
+	// mostPerCell keeps a bad guess of the plasma from asking for more than a machine has.
+	mostPerCell = 4000
+
 	minCells = 64 // an ion energy distribution needs the sheath, at least this finely
 	maxCells = 4096
 	// stepGrain divides the steps of a period, so that sub-cycling finds divisors.
@@ -98,8 +104,11 @@ func (p *Plan) choose(q plasma, want quality) (Numerics, []string) {
 	}
 	p.chooseSteps(&n, q, want, reason)
 	if n.ParticlesPerCell == 0 {
-		n.ParticlesPerCell = want.perCell
-		reason("particles_per_cell", n.ParticlesPerCell, "of each species, on average over the gap")
+		perDebye := want.perDebye * p.Case.Gap / float64(n.Cells) / q.debye() / peakOverMean
+		n.ParticlesPerCell = min(mostPerCell, max(want.perCell, int(math.Ceil(perDebye))))
+		reason("particles_per_cell", n.ParticlesPerCell, "%.0f in a Debye length in the middle, "+
+			"so that the noise of particles heats little (Turner 2006)",
+			float64(n.ParticlesPerCell*n.Cells)*peakOverMean*q.debye()/p.Case.Gap)
 	}
 	n.Chunks = 1
 	for n.Chunks < mostChunks && n.Cells*n.ParticlesPerCell/n.Chunks > 2*chunkParticles {

@@ -200,7 +200,8 @@ func (m *machine) historyTable() *table.Table {
 	}
 	add("weight_pm2", "1/m2", "real particles per area that a simulated one stands for",
 		func(r *Row) float64 { return r.Weight })
-	add("ion_content_pm2", "1/m2", "ions in the gap per area", func(r *Row) float64 { return r.Content })
+	add("ion_content_pm2", "1/m2", "ions in the gap per area",
+		func(r *Row) float64 { return r.Content })
 	for _, wall := range []pic.Wall{pic.Powered, pic.Grounded} {
 		add("ion_flux_"+wall.String()+"_m2ps", "1/(m2 s)", "ions that hit the electrode",
 			func(r *Row) float64 { return r.Flux[wall] })

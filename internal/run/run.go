@@ -91,6 +91,9 @@ func (m *machine) open() error {
 	if err := m.begin(); err != nil {
 		return err
 	}
+	if m.fixedLength() {
+		m.decideFixed()
+	}
 	return m.save()
 }
 

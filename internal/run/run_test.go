@@ -277,6 +277,18 @@ func TestBudget(t *testing.T) {
 	}
 }
 
+// Goal: a run may average from its very first period.
+func TestAverageOverEverything(t *testing.T) {
+	text := strings.Replace(short, "average_periods: 20", "average_periods: 24", 1)
+	s, _, err := Run(context.Background(), plan(t, text), Options{Out: filepath.Join(t.TempDir(), "out")})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if n := s.Provenance["averaged_periods"]; n != 24 {
+		t.Errorf("%v periods averaged, want 24", n)
+	}
+}
+
 // Goal: unknown gases and mixtures without data are errors with a place.
 func TestUnknownGas(t *testing.T) {
 	for _, c := range []struct{ text, want string }{

@@ -113,6 +113,10 @@ func (m *machine) particleChecks() []store.Check {
 
 func (m *machine) balanceChecks() []store.Check {
 	t := &m.control.Averaged
+	// Births and losses come one by one: their difference wanders by the root of their number.
+	weight := m.history[len(m.history)-1].Weight
+	chance := driftErrors * math.Sqrt((t.Born+t.Lost)/weight) / (t.Born / weight)
+	ions := bounds{ionBalance.warn + chance, ionBalance.fail + chance}
 	rest := t.Electric - (t.FieldTo - t.FieldFrom)
 	scale := math.Abs(t.Electric)
 	for _, w := range t.Work {
@@ -123,8 +127,9 @@ func (m *machine) balanceChecks() []store.Check {
 		above("energy_balance", math.Abs(rest)/scale, balanceOfAll,
 			fmt.Sprintf("energy from the drive not found in the particles or the field, %+.2f %%",
 				100*rest/scale)),
-		above("ion_balance", math.Abs(t.Born-t.Lost)/math.Max(t.Born, t.Lost), ionBalance,
-			"difference of ions made and ions lost to the walls, over the average"),
+		above("ion_balance", math.Abs(t.Born-t.Lost)/math.Max(t.Born, t.Lost), ions,
+			fmt.Sprintf("difference of ions made and ions lost to the walls, over the average; "+
+				"chance alone makes up to %.2g %%", 100*chance)),
 	}
 }
 

@@ -54,8 +54,10 @@ func newClaim() (claim, error) {
 		return claim{}, fmt.Errorf("name of this host: %w", err)
 	}
 	pid := os.Getpid()
-	return claim{PID: pid, Host: host, Machine: machineID(), Start: processStart(pid),
-		Token: rand.Text()}, nil
+	return claim{
+		PID: pid, Host: host, Machine: machineID(), Start: processStart(pid),
+		Token: rand.Text(),
+	}, nil
 }
 
 // acquire claims dir or returns an error that is ErrLocked when another process holds it.
@@ -68,8 +70,10 @@ func acquire(fs fsys, dir string) (*lock, error) {
 	if err != nil {
 		return nil, err
 	}
-	l := &lock{dir: dir, path: dir + lockSuffix, own: own, body: append(body, '\n'),
-		stop: make(chan struct{})}
+	l := &lock{
+		dir: dir, path: dir + lockSuffix, own: own, body: append(body, '\n'),
+		stop: make(chan struct{}),
+	}
 	mine := l.path + "-" + own.Token
 	if err := l.prepare(fs, mine); err != nil {
 		return nil, err

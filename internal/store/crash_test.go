@@ -45,8 +45,10 @@ func TestCheckpointSurvivesEveryFault(t *testing.T) {
 			t.Fatalf("fault %v, error %v", failed, err)
 		}
 		if err != nil {
-			for _, want := range []string{run.Path(CheckpointFile), "no space left",
-				"kept in " + dir + ".running"} {
+			for _, want := range []string{
+				run.Path(CheckpointFile), "no space left",
+				"kept in " + dir + ".running",
+			} {
 				if !strings.Contains(err.Error(), want) {
 					t.Errorf("%q is missing from: %v", want, err)
 				}
@@ -149,7 +151,7 @@ func TestContinuationSurvivesEveryFault(t *testing.T) {
 }
 
 func faultWhileContinuing(t *testing.T, fs *faulty) {
-	dir := finishedRun(t, "old")
+	dir := finishedRun(t)
 	run, err := reopenOn(fs, dir)
 	if err == nil {
 		err = work(run, "new")
@@ -196,8 +198,10 @@ func faultWhileContinuing(t *testing.T, fs *faulty) {
 
 func checkUserFiles(t *testing.T, folder string) {
 	t.Helper()
-	for name, want := range map[string]string{"input.yaml": "gap: 40 mm\n", "notes.txt": "mine",
-		"figures/one.svg": "<svg/>"} {
+	for name, want := range map[string]string{
+		"input.yaml": "gap: 40 mm\n", "notes.txt": "mine",
+		"figures/one.svg": "<svg/>",
+	} {
 		if got := get(t, filepath.Join(folder, name)); got != want {
 			t.Errorf("%s: %q, want %q", name, got, want)
 		}
@@ -220,7 +224,7 @@ func checkStartFiles(t *testing.T, run *Run) {
 
 // TestFinishedFolderIsNotTouched: until Commit nothing of it changes, not even times.
 func TestFinishedFolderIsNotTouched(t *testing.T) {
-	dir := finishedRun(t, "old")
+	dir := finishedRun(t)
 	before := snapshot(t, dir)
 	run, err := Reopen(dir)
 	if err != nil {
@@ -284,7 +288,7 @@ func snapshot(t *testing.T, dir string) string {
 // counts too.
 func TestOrderOnDisk(t *testing.T) {
 	for _, noExchange := range []bool{false, true} {
-		dir := finishedRun(t, "old")
+		dir := finishedRun(t)
 		fs := newFaulty(0, false, noExchange)
 		run, err := reopenOn(fs, dir)
 		if err != nil {
@@ -312,7 +316,7 @@ func TestOrderOnDisk(t *testing.T) {
 
 // TestUnrelatedFoldersAreRefused: Reopen and Commit delete nothing that is not surely theirs.
 func TestUnrelatedFoldersAreRefused(t *testing.T) {
-	dir := finishedRun(t, "old")
+	dir := finishedRun(t)
 	if err := os.Mkdir(dir+".running", 0o777); err != nil {
 		t.Fatal(err)
 	}

@@ -38,8 +38,10 @@ type faulty struct {
 }
 
 func newFaulty(failAt int, crash, noExchange bool) *faulty {
-	return &faulty{disk: memory{}, failAt: failAt, crash: crash, noExchange: noExchange,
-		unsynced: map[string]bool{}}
+	return &faulty{
+		disk: memory{}, failAt: failAt, crash: crash, noExchange: noExchange,
+		unsynced: map[string]bool{},
+	}
 }
 
 func (f *faulty) step() error {
@@ -216,7 +218,7 @@ func work(run *Run, name string) error {
 }
 
 // finishedRun makes a whole folder that also holds what a user has put there.
-func finishedRun(t *testing.T, name string) string {
+func finishedRun(t *testing.T) string {
 	t.Helper()
 	dir := filepath.Join(t.TempDir(), "results", "argon")
 	run, err := createOn(memory{}, dir)
@@ -229,8 +231,8 @@ func finishedRun(t *testing.T, name string) string {
 		t.Fatal(err)
 	}
 	put(t, run.Path("figures/one.svg"), "<svg/>")
-	put(t, run.Path("history.parquet"), name)
-	if err := work(run, name); err != nil {
+	put(t, run.Path("history.parquet"), "old")
+	if err := work(run, "old"); err != nil {
 		t.Fatal(err)
 	}
 	return dir

@@ -194,7 +194,8 @@ func TestSecondReaderFindsFaults(t *testing.T) {
 	}
 	for want, spoil := range map[string]func(run *Run, s *Summary) error{
 		"scalars.parquet: self_bias_V is NaN +- NaN V, summary.json has 1": func(run *Run,
-			s *Summary) error {
+			s *Summary,
+		) error {
 			s.Results["self_bias_V"] = Value{1, math.NaN(), "V"}
 			return run.WriteJSON(SummaryFile, s)
 		},

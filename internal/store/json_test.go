@@ -21,12 +21,15 @@ func sample() *Summary {
 		},
 		Results: map[string]any{
 			"ion_mean_energy_eV": map[string]any{"grounded": map[string]any{
-				"Ar+": Value{math.Pi * 20, 0x1p-40, "eV"}, "all": Value{60.1, nan, "eV"}}},
+				"Ar+": Value{math.Pi * 20, 0x1p-40, "eV"}, "all": Value{60.1, nan, "eV"},
+			}},
 			"electron_density_center_m3": Value{2.5600000000000003e14, 1e10, "1/m3"},
 			"self_bias_V":                Value{nan, nan, "V"},
 		},
-		Provenance: map[string]any{"seed": 1.0, "version": "0.1", "wall_s": nan,
-			"kernels": []any{"push", math.Inf(-1)}},
+		Provenance: map[string]any{
+			"seed": 1.0, "version": "0.1", "wall_s": nan,
+			"kernels": []any{"push", math.Inf(-1)},
+		},
 		References: []Reference{{"lewis1970", "Lewis, J. Comput. Phys. 6, 136 (1970)", "scheme"}},
 	}
 }
@@ -66,8 +69,10 @@ func TestSummaryRoundTrip(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	paths := []string{"electron_density_center_m3", "ion_mean_energy_eV.grounded.Ar+",
-		"ion_mean_energy_eV.grounded.all", "self_bias_V"}
+	paths := []string{
+		"electron_density_center_m3", "ion_mean_energy_eV.grounded.Ar+",
+		"ion_mean_energy_eV.grounded.all", "self_bias_V",
+	}
 	if len(want) != len(paths) || len(back) != len(paths) {
 		t.Fatalf("%d results, read %d, want %d", len(want), len(back), len(paths))
 	}
@@ -222,9 +227,13 @@ func TestWriteJSON(t *testing.T) {
 		want string
 	}{
 		{progress{3, Number(inf)}, `{"period":3,"rate":null}`},
-		{map[string]any{"a": inf, "b": []float64{1, inf}, "c": map[string]float64{"d": inf},
-			"e": float32(1.5), "f": []any{inf, "x"}, "g": []float64(nil)},
-			`{"a":null,"b":[1,null],"c":{"d":null},"e":1.5,"f":[null,"x"],"g":null}`},
+		{
+			map[string]any{
+				"a": inf, "b": []float64{1, inf}, "c": map[string]float64{"d": inf},
+				"e": float32(1.5), "f": []any{inf, "x"}, "g": []float64(nil),
+			},
+			`{"a":null,"b":[1,null],"c":{"d":null},"e":1.5,"f":[null,"x"],"g":null}`,
+		},
 	} {
 		if err := run.WriteJSON("state.json", c.v); err != nil {
 			t.Fatal(err)

@@ -79,8 +79,10 @@ func metadata(t *table.Table) (map[string]string, error) {
 	if err != nil {
 		return nil, err
 	}
-	return map[string]string{keyVersion: fmt.Sprint(SchemaVersion), keyTable: t.Name,
-		keyTitle: t.Doc, keyColumns: string(columns)}, nil
+	return map[string]string{
+		keyVersion: fmt.Sprint(SchemaVersion), keyTable: t.Name,
+		keyTitle: t.Doc, keyColumns: string(columns),
+	}, nil
 }
 
 func schemaOf(t *table.Table) *parquet.Schema {

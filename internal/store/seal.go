@@ -66,8 +66,10 @@ func verifySeal(r io.ReaderAt, size int64) error {
 	}
 	sum := crc32.New(crc32.MakeTable(crc32.Castagnoli))
 	after := at + int64(sealLen)
-	for _, part := range []*io.SectionReader{io.NewSectionReader(r, 0, at),
-		io.NewSectionReader(r, after, size-after)} {
+	for _, part := range []*io.SectionReader{
+		io.NewSectionReader(r, 0, at),
+		io.NewSectionReader(r, after, size-after),
+	} {
 		if _, err := io.Copy(sum, part); err != nil {
 			return err
 		}
