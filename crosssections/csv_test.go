@@ -57,21 +57,31 @@ func TestReadTableErrors(t *testing.T) {
 			`t.csv:6:3: got unknown key "fram", want one of ` + keys + `; did you mean "frame"?`},
 		{"center_of_mass", "cm", `t.csv:6:10: frame: got "cm", want lab or center_of_mass`},
 		{"2013-06-04", "4 June", `t.csv:4:9: date: got "4 June", want a day as 2013-06-04`},
-		{"2013-06-04", "2013-13-04",
-			`t.csv:4:9: date: got "2013-13-04", want a day as 2013-06-04`},
-		{": read", ": red",
-			`t.csv:5:11: status: got "red", want one of read, computed, derived, memory`},
+		{
+			"2013-06-04", "2013-13-04",
+			`t.csv:4:9: date: got "2013-13-04", want a day as 2013-06-04`,
+		},
+		{
+			": read", ": red",
+			`t.csv:5:11: status: got "red", want one of read, computed, derived, memory`,
+		},
 		{"phelps-1994", "phelp-1994", `t.csv:7:8: bib: got "phelp-1994", want a known reference; ` +
 			`did you mean "phelps-1994"?`},
-		{"valid_to_eV: 5", "valid_to_eV: NaN",
-			`t.csv:8:16: valid_to_eV: got "NaN", want an energy in eV above 0`},
+		{
+			"valid_to_eV: 5", "valid_to_eV: NaN",
+			`t.csv:8:16: valid_to_eV: got "NaN", want an energy in eV above 0`,
+		},
 		{"# note: one", "# note", `t.csv:9:1: got "# note", want a line "# key: value"`},
-		{"# note: one", "# frame: lab",
-			"t.csv:9:3: frame: got a second value, want one (the first is on line 6)"},
+		{
+			"# note: one", "# frame: lab",
+			"t.csv:9:3: frame: got a second value, want one (the first is on line 6)",
+		},
 		{"energy_eV,", "energy,", `t.csv:11:1: got "energy,cross_section_m2", want the line ` +
 			`"energy_eV,cross_section_m2"`},
-		{"5, 2e-20", "5 2e-20",
-			`t.csv:14:1: got "5 2e-20", want two numbers with a comma between them`},
+		{
+			"5, 2e-20", "5 2e-20",
+			`t.csv:14:1: got "5 2e-20", want two numbers with a comma between them`,
+		},
 		{"5, 2e-20", "5, -2e-20", `t.csv:14:3: cross_section_m2: got " -2e-20", ` +
 			`want a number from 0 to 1e-14 m2`},
 		{"5, 2e-20", "5,2e-4", `t.csv:14:3: cross_section_m2: got "2e-4", ` +
@@ -79,8 +89,10 @@ func TestReadTableErrors(t *testing.T) {
 		{"5, 2e-20", "NaN,2e-20", `t.csv:14:1: energy_eV: got "NaN", ` +
 			`want a number from 0 to 1e+09 eV`},
 		{"1e3", "4", "t.csv:15:1: energy_eV: got 4 eV after 5 eV, want increasing energies"},
-		{"0,1e-20\n# a remark\n5, 2e-20\n1e3,3e-20\n", "",
-			"t.csv:11:1: got no rows, want at least one"},
+		{
+			"0,1e-20\n# a remark\n5, 2e-20\n1e3,3e-20\n", "",
+			"t.csv:11:1: got no rows, want at least one",
+		},
 	} {
 		if !strings.Contains(sampleTable, c.old) {
 			t.Fatalf("%q is not in the sample", c.old)

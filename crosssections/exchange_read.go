@@ -15,10 +15,15 @@ var exchangeKeywords = []struct {
 	word string
 	kind Kind
 }{
-	{"ELASTIC", Elastic}, {"EFFECTIVE", Effective},
-	{"EXCITATION", Excitation}, {"ROTATION", Excitation}, {"ROTATIONAL", Excitation},
-	{"VIBRATION", Excitation}, {"VIBRATIONAL", Excitation},
-	{"IONIZATION", Ionization}, {"ATTACHMENT", Attachment},
+	{"ELASTIC", Elastic},
+	{"EFFECTIVE", Effective},
+	{"EXCITATION", Excitation},
+	{"ROTATION", Excitation},
+	{"ROTATIONAL", Excitation},
+	{"VIBRATION", Excitation},
+	{"VIBRATIONAL", Excitation},
+	{"IONIZATION", Ionization},
+	{"ATTACHMENT", Attachment},
 }
 
 // ReadExchange reads a file in the exchange form of the open-access repositories. A block is a

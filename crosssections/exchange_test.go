@@ -53,8 +53,10 @@ func TestReadExchangeBlocks(t *testing.T) {
 		t.Fatalf("got %d blocks, want %d", len(x.Blocks), len(want))
 	}
 	for i, b := range x.Blocks {
-		got := brief{b.Kind, b.Target, b.Product, b.Threshold, b.MassRatio, b.TwoWay,
-			b.WeightRatio, b.Database, len(b.Table.Energy)}
+		got := brief{
+			b.Kind, b.Target, b.Product, b.Threshold, b.MassRatio, b.TwoWay,
+			b.WeightRatio, b.Database, len(b.Table.Energy),
+		}
 		if got != want[i] {
 			t.Errorf("block %d: got %+v, want %+v", i, got, want[i])
 		}
@@ -111,7 +113,9 @@ func TestExchangeGas(t *testing.T) {
 		t.Errorf("got %s, %s", elastic.Kind, elastic.Source.Status)
 	}
 	for _, c := range []struct{ e, want float64 }{
-		{0, 1e-19}, {5, 1.5e-19}, {10, 1.6e-19},
+		{0, 1e-19},
+		{5, 1.5e-19},
+		{10, 1.6e-19},
 		{20, 2e-19 - 2e-20 - (4e-20 - 3e-20/9)},
 		{100, 0}, // 2e-20 - 1e-20 - 1.5e-20 is below 0
 	} {

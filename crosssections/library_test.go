@@ -115,14 +115,20 @@ func TestGasFileErrors(t *testing.T) {
 		{"mass_u: 10", "mass_u: {", "Xx/gas.yaml:"},
 		{"name: Xx\n", "name: Xy\n", `Xx/gas.yaml:1:1: name: got "Xy", want the name of the fold`},
 		{"charge: 1", "charge: 2", `Xx/gas.yaml:5:5: ions.charge: got 2 for "Xx+", want 1`},
-		{"{name: Xx+, charge: 1}", "{name: Xx+, charge: 1}\n  - {name: X+, charge: 1}",
-			"Xx/gas.yaml:6:5: ions.mass_u: got nothing, want a mass"},
+		{
+			"{name: Xx+, charge: 1}", "{name: Xx+, charge: 1}\n  - {name: X+, charge: 1}",
+			"Xx/gas.yaml:6:5: ions.mass_u: got nothing, want a mass",
+		},
 		{"kind: excitation", "kind: backscatter", "Xx/gas.yaml:8:25: electron.kind: got " +
 			`"backscatter", want one of elastic, effective, excitation, ionization, attachment`},
-		{"kind: excitation, threshold_eV: 5,", "kind: excitation,",
-			"Xx/gas.yaml:8:5: threshold_eV: got nothing, want a threshold"},
-		{"kind: effective", "kind: effective, threshold_eV: 1",
-			"Xx/gas.yaml:7:5: threshold_eV: got 1 eV, want none"},
+		{
+			"kind: excitation, threshold_eV: 5,", "kind: excitation,",
+			"Xx/gas.yaml:8:5: threshold_eV: got nothing, want a threshold",
+		},
+		{
+			"kind: effective", "kind: effective, threshold_eV: 1",
+			"Xx/gas.yaml:7:5: threshold_eV: got 1 eV, want none",
+		},
 		{"[e, e, Xx+]", "[e, Xx+]", "Xx/gas.yaml:9:62: products: got charge +0 in all, want -1"},
 		{"[e, e, Xx+]", "[e, Xx]", "products: got 1 electrons, want 2 for ionization"},
 		{"[e, e, Xx+]", "[e, e, Xy+]", `got "Xy+", want ions declared`},
@@ -131,8 +137,10 @@ func TestGasFileErrors(t *testing.T) {
 		{"projectile: Xx+, ", "", `ion: got no "projectile", want the keys`},
 		{"file: m.csv", "file: ../m.csv", `file: got "../m.csv", want a .csv file in the folder`},
 		{"file: m.csv", "file: n.csv", `Xx/gas.yaml:7:45: file: got "n.csv", which is not there`},
-		{"threshold_eV: 5, file", "threshold_eV: 12, file",
-			"Xx/x.csv:7:1: cross_section_m2: got 2e-20 m2 at 10 eV, want 0 below the threshold"},
+		{
+			"threshold_eV: 5, file", "threshold_eV: 12, file",
+			"Xx/x.csv:7:1: cross_section_m2: got 2e-20 m2 at 10 eV, want 0 below the threshold",
+		},
 		{"name: ion,", "name: level,", `a second process "level"`},
 		{"default:", "standard:", `got no set "default"`},
 		{"[momentum, level]", "[momentum, levl]", `Xx/gas.yaml:14:45: sets.less: got unknown ` +

@@ -47,8 +47,10 @@ func TestRoundTrip(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	names := []string{"electron.x", "counts", "keys", "cells", "note", "weight", "step", "title",
-		"empty"}
+	names := []string{
+		"electron.x", "counts", "keys", "cells", "note", "weight", "step", "title",
+		"empty",
+	}
 	if !slices.Equal(d.Names(), names) || d.Version() != 3 {
 		t.Errorf("names %q, version %d", d.Names(), d.Version())
 	}
@@ -181,19 +183,31 @@ func TestRefusals(t *testing.T) {
 		want string
 	}{
 		{"empty", kind, 3, nil, "truncated: 0 bytes, too few for a header"},
-		{"foreign", kind, 3, []byte("PAR1 something else entirely"),
-			"not a file of this program: its first bytes are foreign"},
+		{
+			"foreign", kind, 3, []byte("PAR1 something else entirely"),
+			"not a file of this program: its first bytes are foreign",
+		},
 		{"kind", "scan", 3, good, `holds "plasma", want "scan"`},
-		{"newer", kind, 2, good,
-			`written by a newer version: layout 3 of "plasma", this program reads up to 2`},
-		{"longer", kind, 3, damaged(func(b []byte) []byte { return append(b, 1, 2) }),
-			"2 bytes after the end at 394"},
-		{"payload", kind, 3, damaged(func(b []byte) []byte { b[at] ^= 8; return b }),
-			`checksum of section "electron.x" does not match`},
-		{"header", kind, 3, damaged(func(b []byte) []byte { b[9] ^= 8; return b }),
-			"checksum of the header does not match"},
-		{"trailer", kind, 3, damaged(func(b []byte) []byte { b[len(b)-1] ^= 8; return b }),
-			"checksum of the whole file does not match"},
+		{
+			"newer", kind, 2, good,
+			`written by a newer version: layout 3 of "plasma", this program reads up to 2`,
+		},
+		{
+			"longer", kind, 3, damaged(func(b []byte) []byte { return append(b, 1, 2) }),
+			"2 bytes after the end at 394",
+		},
+		{
+			"payload", kind, 3, damaged(func(b []byte) []byte { b[at] ^= 8; return b }),
+			`checksum of section "electron.x" does not match`,
+		},
+		{
+			"header", kind, 3, damaged(func(b []byte) []byte { b[9] ^= 8; return b }),
+			"checksum of the header does not match",
+		},
+		{
+			"trailer", kind, 3, damaged(func(b []byte) []byte { b[len(b)-1] ^= 8; return b }),
+			"checksum of the whole file does not match",
+		},
 	} {
 		_, err := Decode(c.kind, c.max, c.b)
 		if err == nil || err.Error() != c.want {

@@ -94,25 +94,35 @@ func TestValidateFindsAll(t *testing.T) {
 		want   string
 	}{
 		{float("energy_eV", "eV"), `column "energy_eV" stands twice`},
-		{Column{Name: "n", Doc: "doc", Int: []int64{1}},
-			`column "n" has 1 rows, "electrode" has 2: want equal lengths`},
+		{
+			Column{Name: "n", Doc: "doc", Int: []int64{1}},
+			`column "n" has 1 rows, "electrode" has 2: want equal lengths`,
+		},
 		{float("", ""), `column "": name is empty or holds spaces or control characters`},
 		{float("a b", ""), `column "a b": name is empty or holds spaces or control characters`},
-		{Column{Name: "n", Doc: "doc", Float: []float64{1, 2}, Int: []int64{1, 2}},
-			`column "n": holds numbers and whole numbers, want one of numbers, whole numbers, texts`},
+		{
+			Column{Name: "n", Doc: "doc", Float: []float64{1, 2}, Int: []int64{1, 2}},
+			`column "n": holds numbers and whole numbers, want one of numbers, whole numbers, texts`,
+		},
 		{Column{Name: "n", Float: []float64{1, 2}}, `column "n": no doc: say what it is`},
 		{float("gap_m", "V"), `column "gap_m": name states the unit "m", the column has "V"`},
 		{float("gap_m", ""), `column "gap_m": name states the unit "m", the column has none`},
 		{float("gap", "m"), `column "gap": name does not end in a unit, the column has "m"`},
 		{float("gap_mm", "mm"), `column "gap_mm": unit "mm" is not on the list of units`},
 		{float("a_m.b_V", "V"), `column "a_m.b_V": name states the units ["m" "V"], want one`},
-		{Column{Name: "t_s", Unit: "s", Doc: "doc", Text: []string{"a", "b"}},
-			`column "t_s": texts with the unit "s", want none`},
+		{
+			Column{Name: "t_s", Unit: "s", Doc: "doc", Text: []string{"a", "b"}},
+			`column "t_s": texts with the unit "s", want none`,
+		},
 		{float("gap_m_se", "m"), `column "gap_m_se": standard error without its column "gap_m"`},
-		{float("electrode_se", ""),
-			`column "electrode_se": a standard error and "electrode" must be numbers`},
-		{Column{Name: "s", Doc: "doc", Text: []string{"a", "\xff"}},
-			`column "s": row 1: "\xff" is not UTF-8`},
+		{
+			float("electrode_se", ""),
+			`column "electrode_se": a standard error and "electrode" must be numbers`,
+		},
+		{
+			Column{Name: "s", Doc: "doc", Text: []string{"a", "\xff"}},
+			`column "s": row 1: "\xff" is not UTF-8`,
+		},
 	} {
 		s := sound()
 		s.Columns = append(s.Columns, c.column)
@@ -129,8 +139,10 @@ func TestValidateReportsEverythingAtOnce(t *testing.T) {
 	s.AddFloat("gap", "", "doc", []float64{1, 2})
 	s.Columns = append(s.Columns, Column{Name: "n", Doc: "doc"})
 	err := s.Validate()
-	for _, want := range []string{"name: want letters", "no doc", "does not end in a unit",
-		"stands twice", "has 2 rows", "holds nothing"} {
+	for _, want := range []string{
+		"name: want letters", "no doc", "does not end in a unit",
+		"stands twice", "has 2 rows", "holds nothing",
+	} {
 		if err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("%q is missing from: %v", want, err)
 		}
