@@ -10,6 +10,8 @@ const (
 	angleBins = 90
 	// angleEnergyBins divides the ion energies in the angle table.
 	angleEnergyBins = 40
+	// fewBatches is how many batches a short average is to have.
+	fewBatches = 20
 	// centerPart is the part of the gap around its middle whose averages are called central.
 	centerPart = 0.1
 )

@@ -82,11 +82,19 @@ const (
 	circuitRows
 )
 
-// New returns a recorder for the simulation, switched off: see Start.
-func New(s *pic.Simulation, thresholds []float64) *Recorder {
+// New returns a recorder for the simulation, switched off: see Start. Impacts above each of the
+// thresholds [eV] are counted. periods is how long the average will be, 0 if it may be long: a
+// short one is sampled more often, so that it has enough batches.
+func New(s *pic.Simulation, thresholds []float64, periods int) *Recorder {
 	c := s.Config()
 	r := &Recorder{config: c, thresholds: thresholds, stride: strideFor(c.StepsPerPeriod)}
 	r.phases = min(PhaseBins, c.StepsPerPeriod)
+	for periods > 0 && r.stride > 1 && r.periodsToSee() > max(1, periods/fewBatches) {
+		r.stride--
+		for gcd(int(r.stride), c.StepsPerPeriod) != 1 {
+			r.stride--
+		}
+	}
 	r.regions = regionsOf(c.Gap)
 	r.eBins = electronBins(electronTop(c.Drive.Largest()))
 	nodes := c.Cells + 1

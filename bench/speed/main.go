@@ -95,7 +95,7 @@ func heliumSpeed(workers, particles int) (float64, error) {
 		return 0, err
 	}
 	s.SetWorkers(workers)
-	rec := diagnostics.New(s, nil)
+	rec := diagnostics.New(s, nil, 0)
 	s.SetObservers(rec)
 	if err := s.Advance(400); err != nil {
 		return 0, err
@@ -177,7 +177,7 @@ func peakMemory() ([]byte, error) {
 		return nil, err
 	}
 	s.SetWorkers(2)
-	rec := diagnostics.New(s, nil)
+	rec := diagnostics.New(s, nil, 0)
 	s.SetObservers(rec)
 	rec.Start(1)
 	for range 2 {

@@ -133,19 +133,25 @@ func (m *machine) fixedLength() bool { return m.plan.Case.Numerics.Periods > 0 }
 
 // decideFixed keeps to the asked-for number of periods; called before the first, too.
 func (m *machine) decideFixed() {
-	n := m.plan.Case.Numerics
-	average := n.AveragePeriods
-	if average == 0 {
-		average = max(1, n.Periods/4)
-	}
+	whole, average := m.plan.Case.Numerics.Periods, m.plan.averagePeriods()
 	switch {
-	case m.control.Periods >= n.Periods:
+	case m.control.Periods >= whole:
 		m.control.Reached = true
 		m.enter(StageDone)
-	case m.control.Periods == n.Periods-average:
+	case m.control.Periods == whole-average:
 		m.enter(StageAveraging)
 		m.rec.Start(max(1, average/stats.MinBatches/2))
 	}
+}
+
+// averagePeriods is the length of the average of a run of fixed length, 0 for others: as given,
+// or the last quarter.
+func (p *Plan) averagePeriods() int {
+	n := p.Case.Numerics
+	if n.AveragePeriods > 0 {
+		return n.AveragePeriods
+	}
+	return (n.Periods + 3) / 4
 }
 
 // decidePilot projects the density until it stands, then measures for some periods, then

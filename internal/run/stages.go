@@ -90,7 +90,7 @@ func (m *machine) adopt(s *pic.Simulation, n Numerics) {
 
 // newRecorder returns a recorder that observes the present simulation, instead of any before.
 func (m *machine) newRecorder() *diagnostics.Recorder {
-	r := diagnostics.New(m.sim, m.plan.Case.IonEnergyThresholds)
+	r := diagnostics.New(m.sim, m.plan.Case.IonEnergyThresholds, m.plan.averagePeriods())
 	m.sim.SetObservers(r)
 	return r
 }
