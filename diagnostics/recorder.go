@@ -14,7 +14,8 @@ type Recorder struct {
 	species []*speciesRecord
 	stride  int64
 	on      bool
-	phases  int // bins of RF phase
+	wander  float64 // see SetWander
+	phases  int     // bins of RF phase
 
 	thresholds []float64 // [eV]
 	regions    []Region

@@ -3,6 +3,7 @@ package diagnostics
 import (
 	"math"
 
+	"ionfall/internal/stats"
 	"ionfall/internal/table"
 	"ionfall/pic"
 )
@@ -82,13 +83,30 @@ func ColumnName(species string) string {
 	return name
 }
 
+// SetWander sets the relative error that the slow wander of the particle number leaves in densities
+// and what is proportional to them, the least that the tables state.
+func (r *Recorder) SetWander(relative float64) { r.wander = relative }
+
+// errors returns the standard errors of a grid quantity.
+func (r *Recorder) errors(quantity int, v *stats.Vector) []float64 {
+	se := v.StdErrs()
+	follows := quantity == gridIonization || quantity >= gridFixed &&
+		(quantity-gridFixed)%gridPerSpecies != gridEnergy
+	if follows {
+		for i := range se {
+			se[i] = math.Max(se[i], r.wander*math.Abs(v.Mean[i]))
+		}
+	}
+	return se
+}
+
 // Profiles returns the time averages on x.
 func (r *Recorder) Profiles() *table.Table {
 	t := table.New("profiles", "averages over time, on the nodes of the grid")
 	t.AddFloat("x_m", "m", "distance from the powered electrode", r.xs())
 	for _, c := range r.gridColumns() {
 		v := r.averages.profiles[c.quantity]
-		t.AddEstimate(c.name, c.unit, c.doc, v.Mean, v.StdErrs())
+		t.AddEstimate(c.name, c.unit, c.doc, v.Mean, r.errors(c.quantity, v))
 	}
 	return t
 }
@@ -112,7 +130,7 @@ func (r *Recorder) Phases() *table.Table {
 			t.AddEstimate(c.name, c.unit, c.doc, value, se)
 			continue
 		}
-		t.AddEstimate(c.name, c.unit, c.doc, v.Mean, v.StdErrs())
+		t.AddEstimate(c.name, c.unit, c.doc, v.Mean, r.errors(c.quantity, v))
 	}
 	return t
 }

@@ -1,7 +1,10 @@
 package run
 
 import (
+	"math"
+
 	"ionfall/internal/phys"
+	"ionfall/internal/stats"
 	"ionfall/pic"
 )
 
@@ -50,6 +53,13 @@ func (m *machine) account(l *pic.Ledger) {
 			row.Energy[wall] = energy[wall] / number[wall] / phys.ElementaryCharge
 		}
 	}
+	if lost := (row.Flux[0] + row.Flux[1]) * period; lost > 0 {
+		now := row.Content / lost
+		if c.Residence == 0 {
+			c.Residence = now
+		}
+		c.Residence += 0.05 * (now - c.Residence)
+	}
 	if c.Stage == StageAveraging {
 		c.Averaged.add(l, row, c.Field, period)
 	}
@@ -82,6 +92,42 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, fieldBefore, period float64)
 			t.Lost += l.Weight * float64(sp.Absorbed[0]+sp.Absorbed[1])
 		}
 	}
+}
+
+// wander returns the relative standard error that the slow wander of the ion number leaves in
+// the mean density over the average.
+//
+// Births and losses one by one make the number n of simulated ions wander by 1/sqrt(n), with a
+// memory of the time T that an ion stays: the number relaxes about as fast as it is renewed. Over M
+// periods the mean of such a process (Ornstein-Uhlenbeck) has the variance
+//
+//	(1/n) (2T/M) [1 - (T/M)(1 - exp(-M/T))]
+//
+// Batch means see it only when M is many times T; until then it is the least error that is
+// stated. In argon at 5 Pa, content over 450 periods scattered by 0.55 to 0.77 % where 1/sqrt(n)
+// is 0.63 to 0.88 %.
+func (m *machine) wander() float64 {
+	c := &m.control
+	if len(m.history) == 0 || c.Residence == 0 || c.Averaged.Periods == 0 {
+		return 0
+	}
+	ions := float64(m.history[len(m.history)-1].Ions)
+	q := c.Residence / float64(c.Averaged.Periods)
+	return math.Sqrt(2 * q * (1 - q*(1-math.Exp(-1/q))) / ions)
+}
+
+// atLeast raises an estimate's error to that of the wander, for what follows the density.
+func (m *machine) atLeast(e stats.Estimate) stats.Estimate {
+	if least := m.wander() * math.Abs(e.Mean); e.StdErr < least {
+		e.StdErr = least
+	}
+	return e
+}
+
+// progressAt returns the mean ion energy and flux at a wall so far, with their errors.
+func (m *machine) progressAt(wall pic.Wall) (energy, flux stats.Estimate) {
+	energy, flux = m.rec.Progress(wall)
+	return energy, m.atLeast(flux)
 }
 
 // rebase takes the kinetic energies afresh after the particles have been resized.

@@ -242,7 +242,7 @@ const (
 func (m *machine) accurate() bool {
 	want := m.plan.Case.Accuracy
 	for _, wall := range m.plan.substrates() {
-		energy, flux := m.rec.Progress(wall)
+		energy, flux := m.progressAt(wall)
 		if !(energy.StdErr <= want.IonEnergy*energy.Mean && flux.StdErr <= want.IonFlux*flux.Mean) {
 			return false
 		}

@@ -39,7 +39,7 @@ func (m *machine) status() progress.Status {
 	wall := m.plan.substrates()[0]
 	s.EnergyEV, s.Flux = row.Energy[wall], row.Flux[wall]
 	if c.Stage == StageAveraging || c.Stage == StageDone {
-		energy, flux := m.rec.Progress(wall)
+		energy, flux := m.progressAt(wall)
 		if !math.IsNaN(energy.Mean) {
 			s.EnergyEV, s.EnergyErrEV = energy.Mean, energy.StdErr
 			s.Flux, s.FluxErr = flux.Mean, flux.StdErr
@@ -74,7 +74,7 @@ func (m *machine) remaining() time.Duration {
 	need := least
 	want := m.plan.Case.Accuracy
 	for _, wall := range m.plan.substrates() {
-		energy, flux := m.rec.Progress(wall)
+		energy, flux := m.progressAt(wall)
 		for _, ratio := range []float64{
 			energy.StdErr / energy.Mean / want.IonEnergy, flux.StdErr / flux.Mean / want.IonFlux,
 		} {

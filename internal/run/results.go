@@ -28,8 +28,8 @@ func (m *machine) results() map[string]any {
 		e, f, w, part := map[string]any{}, map[string]any{}, map[string]any{}, map[string]any{}
 		enter := func(name string, im diagnostics.Impact) {
 			e[name] = value(im.MeanEnergyEV, "eV")
-			f[name] = value(im.Flux, "1/(m2 s)")
-			w[name] = value(im.EnergyFlux, "W/m2")
+			f[name] = value(m.atLeast(im.Flux), "1/(m2 s)")
+			w[name] = value(m.atLeast(im.EnergyFlux), "W/m2")
 			above := map[string]any{}
 			for k, t := range m.plan.Case.IonEnergyThresholds {
 				above[thresholdName(t)] = value(im.Above[k], "")
@@ -57,8 +57,8 @@ func (m *machine) results() map[string]any {
 		"power_Wpm2":                     m.powers(),
 		"self_bias_V":                    store.Value{Value: m.plan.Case.Drive.Bias, Unit: "V"},
 		"plasma_potential_V":             value(m.rec.PlasmaPotential(), "V"),
-		"electron_density_center_m3":     value(m.rec.CenterDensity(), "1/m3"),
-		"electron_density_peak_m3":       value(m.rec.PeakDensity(), "1/m3"),
+		"electron_density_center_m3":     value(m.atLeast(m.rec.CenterDensity()), "1/m3"),
+		"electron_density_peak_m3":       value(m.atLeast(m.rec.PeakDensity()), "1/m3"),
 		"electron_temperature_center_eV": value(m.rec.CenterTemperatureEV(), "eV"),
 	}
 	if len(m.plan.Case.IonEnergyThresholds) > 0 {
@@ -76,16 +76,15 @@ func thresholdName(energyEV float64) string {
 // powers returns the mean powers that the species take from the field and the drive delivers.
 func (m *machine) powers() map[string]any {
 	n := m.control.Averaged.Periods
-	powers := map[string]any{
-		"total": value(stats.Mean(m.series(func(r *Row) float64 { return r.TotalPower }, n)), "W/m2"),
-	}
+	total := m.series(func(r *Row) float64 { return r.TotalPower }, n)
+	powers := map[string]any{"total": value(m.atLeast(stats.Mean(total)), "W/m2")}
 	for i, sp := range m.sim.Species() {
 		name := sp.Name
 		if i == 0 {
 			name = "electron"
 		}
 		series := m.series(func(r *Row) float64 { return r.Power[i] }, n)
-		powers[name] = value(stats.Mean(series), "W/m2")
+		powers[name] = value(m.atLeast(stats.Mean(series)), "W/m2")
 	}
 	return powers
 }
@@ -100,12 +99,12 @@ func (m *machine) filmResults(r map[string]any) {
 	energy, ions := map[string]any{}, map[string]any{}
 	for _, wall := range m.plan.substrates() {
 		im := m.rec.AllImpacts(wall)
-		e := im.EnergyFlux
+		e, flux := m.atLeast(im.EnergyFlux), m.atLeast(im.Flux)
 		perAtom := 1 / (atoms * phys.ElementaryCharge)
 		energy[wall.String()] = store.Value{
 			Value: e.Mean * perAtom, SE: e.StdErr * perAtom, Unit: "eV",
 		}
-		ions[wall.String()] = store.Value{Value: im.Flux.Mean / atoms, SE: im.Flux.StdErr / atoms}
+		ions[wall.String()] = store.Value{Value: flux.Mean / atoms, SE: flux.StdErr / atoms}
 	}
 	r["film_energy_per_atom_eV"], r["film_ions_per_atom"] = energy, ions
 }
@@ -231,6 +230,7 @@ func (m *machine) write() (*store.Summary, error) {
 		"program": "ionfall " + m.options.version(), "input_sha256": m.plan.InputSHA256(),
 		"verdict": s.Verdict, "seed": fmt.Sprint(m.plan.Case.Seed),
 	}
+	m.rec.SetWander(m.wander())
 	for _, t := range []*table.Table{
 		m.rec.Profiles(), m.rec.Phases(), m.rec.IonEnergy(), m.rec.IonAngle(),
 		m.rec.ElectronEnergy(), m.rec.Waveforms(), m.historyTable(),

@@ -40,14 +40,6 @@ func (c *control) startRound(content float64) {
 func (m *machine) project(row *Row) (calm bool) {
 	c := &m.control
 	c.Round.Periods++
-	flux := (row.Flux[0] + row.Flux[1]) * m.plan.period()
-	if flux > 0 {
-		now := row.Content / flux
-		if c.Residence == 0 {
-			c.Residence = now
-		}
-		c.Residence += 0.1 * (now - c.Residence)
-	}
 	if c.Round.Periods < c.Round.Length {
 		return false
 	}

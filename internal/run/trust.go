@@ -147,7 +147,7 @@ func (m *machine) statisticsChecks() []store.Check {
 	want := m.plan.Case.Accuracy
 	worst := 0.0
 	for _, wall := range m.plan.substrates() {
-		energy, flux := m.rec.Progress(wall)
+		energy, flux := m.progressAt(wall)
 		worst = math.Max(worst, energy.StdErr/energy.Mean/want.IonEnergy)
 		worst = math.Max(worst, flux.StdErr/flux.Mean/want.IonFlux)
 		if math.IsNaN(energy.StdErr) || math.IsNaN(flux.StdErr) {
