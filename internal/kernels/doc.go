@@ -1,8 +1,14 @@
 // Package kernels holds the hot loops over particles, as free functions on slices and scalars.
 //
-// The functions of portable.go are the definition of each kernel. They avoid contraction of
-// a*b+c (an explicit float64 conversion of the product forbids it), so that every platform
-// gives the same bits.
+// The plain functions are the definition of each kernel. They avoid contraction of a*b+c (an
+// explicit float64 conversion of the product forbids it), so that every platform gives the same
+// bits. For some of them there are twins in assembly, which agree with them in every bit; a Set
+// holds one form of each, chosen once and passed on as a value:
+//
+//	set := kernels.Best() // or Select(name)
+//	left := set.PushDeposit(x, v, field, acc, out)
+//
+// The build tag purego leaves the assembly out. It is generated, by the module in asm.
 //
 // Units: positions in cells, velocities in cells per step of their species, so that a step is
 // x += v; fields in the same units (velocity gained in a step).

@@ -17,7 +17,8 @@ func fixed(x float64) uint64 {
 //
 // with the field linear in each cell. Those that end outside 0 <= x < len(field) are
 // not deposited; their indices go to out, in increasing order, and their number is
-// returned. All x must be inside before. Needs len(acc) >= len(field), len(out) >= len(x).
+// returned; the rest of out is left as it is. All x must be inside before. Needs len(acc) >=
+// len(field), len(out) >= len(x), and less than 2^26 cells.
 //
 // Ref: C. K. Birdsall and A. B. Langdon, Plasma Physics via Computer Simulation (1985), ch. 2.
 func PushDeposit(x, v []float64, field []Field, acc []uint64, out []int32) int {

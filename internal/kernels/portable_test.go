@@ -132,27 +132,3 @@ func TestDepositIsExact(t *testing.T) {
 		t.Errorf("sum of node numbers is %v", sum)
 	}
 }
-
-func BenchmarkPushDeposit(b *testing.B) {
-	for _, c := range []struct {
-		name     string
-		n, cells int
-	}{{"128x30k", 30_000, 128}, {"128x130k", 130_000, 128}, {"512x130k", 130_000, 512}} {
-		b.Run(c.name, func(b *testing.B) {
-			r := rand.New(rand.NewPCG(5, 6))
-			x, v, field := particles(r, c.n, c.cells)
-			for j := range field {
-				field[j] = Field{1e-3 * field[j].A, 1e-3 * field[j].D}
-			}
-			acc, out := make([]uint64, c.cells), make([]int32, c.n)
-			for b.Loop() {
-				clear(acc)
-				for _, i := range out[:PushDeposit(x, v, field, acc, out)] {
-					x[i] = float64(c.cells) * r.Float64()
-				}
-			}
-			perSecond := float64(c.n) * float64(b.N) / b.Elapsed().Seconds()
-			b.ReportMetric(perSecond/1e6, "Mparticles/s")
-		})
-	}
-}
