@@ -252,10 +252,15 @@ func (r *Recorder) batchElectrons() {
 	counts := make([]int64, len(r.regions)*n)
 	for _, rec := range r.species {
 		for c := range rec.chunks {
-			for k, number := range rec.chunks[c].electrons {
-				counts[k] += number
+			zones := rec.chunks[c].electrons.Counts
+			for k, number := range zones {
+				for g := range r.regions {
+					if z := k / n; z >= r.regions[g].firstZone && z <= r.regions[g].lastZone {
+						counts[g*n+k%n] += number
+					}
+				}
 			}
-			clear(rec.chunks[c].electrons)
+			clear(zones)
 		}
 	}
 	for g := range r.regions {

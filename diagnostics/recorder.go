@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"ionfall/crosssections"
+	"ionfall/internal/kernels"
 	"ionfall/internal/phys"
 	"ionfall/pic"
 )
@@ -35,6 +36,8 @@ type Recorder struct {
 type Region struct {
 	Name     string
 	From, To float64 // [m]
+
+	firstZone, lastZone int
 }
 
 // speciesRecord is what is collected for one species.
@@ -53,11 +56,13 @@ type speciesRecord struct {
 
 // chunkRecord is written only by the worker that owns the chunk.
 type chunkRecord struct {
-	power, energy []float64 // node sums of the sampled step
-	ionized       []int64   // PhaseBins x nodes
-	electrons     []int64   // regions x energy bins
-	hits          [2]hitRecord
-	moves         []int64 // electrons seen, and those that cross more than a cell in a step
+	moments   []kernels.Moments // cell sums of the sampled step
+	field     []kernels.Field   // kicks
+	energy    []float64         // of a block of particles
+	ionized   []int64           // phases x nodes
+	electrons kernels.Spectrum  // by zone and energy bin
+	hits      [2]hitRecord
+	moves     []int64 // electrons seen, and those that cross more than a cell in a step
 }
 
 // Quantities on the grid; by species after these.
@@ -75,6 +80,9 @@ const (
 	gridEnergy
 	gridPerSpecies
 )
+
+// block is the number of particles that are looked at in one call of a kernel.
+const block = 2048
 
 const (
 	circuitVoltage = iota
@@ -129,13 +137,13 @@ func newSpeciesRecord(r *Recorder, c *pic.Config, sp *pic.Species) *speciesRecor
 			rec.ionizes = append(rec.ionizes, p.Kind == crosssections.Ionization)
 		}
 	}
-	nodes := c.Cells + 1
 	for k := range rec.chunks {
 		ch := &rec.chunks[k]
-		ch.power, ch.energy = make([]float64, nodes), make([]float64, nodes)
+		ch.moments, ch.field = make([]kernels.Moments, c.Cells), make([]kernels.Field, c.Cells)
+		ch.energy = make([]float64, block)
 		if sp.Charge < 0 {
-			ch.ionized = make([]int64, r.phases*nodes)
-			ch.electrons = make([]int64, len(r.regions)*r.eBins.count())
+			ch.ionized = make([]int64, r.phases*(c.Cells+1))
+			ch.electrons = r.newSpectrum(rec.eVPerV2)
 			ch.moves = make([]int64, 2)
 		}
 	}
@@ -155,15 +163,32 @@ func newSpeciesRecord(r *Recorder, c *pic.Config, sp *pic.Species) *speciesRecor
 // carry nothing that is worth a bin, except fast secondaries from the walls.
 func electronTop(largest float64) float64 { return math.Max(60, math.Min(1.2*largest, 400)) }
 
-// regionsOf divides the gap for electron energies.
+// zoneEdges part the gap into the zones of kernels.Spectrum.
+func zoneEdges() [4]float64 {
+	return [4]float64{0.25, 0.5 - 0.5*centerPart, 0.5 + 0.5*centerPart, 0.75}
+}
+
+// regionsOf divides the gap for electron energies, each region a run of zones.
 func regionsOf(gap float64) []Region {
-	half := 0.5 * centerPart * gap
+	e := zoneEdges()
 	return []Region{
-		{"powered_quarter", 0, 0.25 * gap},
-		{"center", 0.5*gap - half, 0.5*gap + half},
-		{"grounded_quarter", 0.75 * gap, gap},
-		{"gap", 0, gap},
+		{"powered_quarter", 0, e[0] * gap, 0, 0},
+		{"center", e[1] * gap, e[2] * gap, 2, 2},
+		{"grounded_quarter", e[3] * gap, gap, 4, 4},
+		{"gap", 0, gap, 0, 4},
 	}
+}
+
+// newSpectrum returns empty counts of electrons whose energy is eVPerV2 times v^2.
+func (r *Recorder) newSpectrum(eVPerV2 float64) kernels.Spectrum {
+	s := kernels.Spectrum{
+		PerEnergy: eVPerV2 * r.eBins.perBin, Bin: r.eBins.index, Bins: r.eBins.count(),
+	}
+	for k, part := range zoneEdges() {
+		s.Edges[k] = part * float64(r.config.Cells)
+	}
+	s.Counts = make([]int64, (len(s.Edges)+1)*s.Bins)
+	return s
 }
 
 // strideFor returns a sampling stride near a fortieth of the period's steps, at least 4 and at
@@ -242,45 +267,27 @@ func (r *Recorder) Events(n int64, species, chunk int, x []float64, events []pic
 	}
 }
 
-// Particles implements pic.Observer: node sums of the power from the field and of the energy, and
-// electron energies by region. Velocities are taken half a kick on, at the time of the positions.
+// Particles implements pic.Observer: cell sums of the power from the field and of the energy, and
+// electron energies by zone. Velocities are taken half a kick on, at the time of the positions.
 func (r *Recorder) Particles(f *pic.Frame, species, chunk int, p pic.Particles) {
 	rec := r.species[species]
 	ch := &rec.chunks[chunk]
-	clear(ch.power)
-	clear(ch.energy)
-	k := rec.kickPerE
-	vx, vy, vz := p.VX[:len(p.X)], p.VY[:len(p.X)], p.VZ[:len(p.X)]
-	for i, x := range p.X {
-		j := int(x)
-		s := x - float64(j)
-		a := k * (f.FieldA[j] + s*f.FieldD[j])
-		v := vx[i] + 0.5*a
-		e := v*v + vy[i]*vy[i] + vz[i]*vz[i]
-		ch.power[j] += (1 - s) * a * v
-		ch.power[j+1] += s * a * v
-		ch.energy[j] += (1 - s) * e
-		ch.energy[j+1] += s * e
-		if ch.electrons != nil {
-			r.countElectron(ch, x, rec.eVPerV2*e)
-			if v > 1 || v < -1 {
-				ch.moves[1]++
-			}
+	clear(ch.moments)
+	for j := range ch.field {
+		ch.field[j] = kernels.Field{A: rec.kickPerE * f.FieldA[j], D: rec.kickPerE * f.FieldD[j]}
+	}
+	fast := 0
+	for from := 0; from < len(p.X); from += block {
+		to := min(len(p.X), from+block)
+		fast += r.config.Kernels.AddMoments(p.X[from:to], p.VX[from:to], p.VY[from:to],
+			p.VZ[from:to], ch.field, ch.moments, ch.energy)
+		if ch.moves != nil {
+			ch.electrons.Add(p.X[from:to], ch.energy)
 		}
 	}
-	if ch.electrons != nil {
+	if ch.moves != nil {
 		ch.moves[0] += int64(len(p.X))
-	}
-}
-
-func (r *Recorder) countElectron(ch *chunkRecord, x, energyEV float64) {
-	n := r.eBins.count()
-	b := r.eBins.find(energyEV)
-	at := x * r.config.CellSize()
-	for k := range r.regions {
-		if at >= r.regions[k].From && at < r.regions[k].To {
-			ch.electrons[k*n+b]++
-		}
+		ch.moves[1] += int64(fast)
 	}
 }
 
@@ -312,8 +319,14 @@ func (r *Recorder) Reduce(f *pic.Frame, worker, workers int) {
 			}
 			var sumPower, sumEnergy float64
 			for c := range rec.chunks {
-				sumPower += rec.chunks[c].power[j]
-				sumEnergy += rec.chunks[c].energy[j]
+				if m := rec.chunks[c].moments; j < len(m) {
+					sumPower += m[j].Power - m[j].PowerRight
+					sumEnergy += m[j].Energy - m[j].EnergyRight
+				}
+				if j > 0 {
+					sumPower += rec.chunks[c].moments[j-1].PowerRight
+					sumEnergy += rec.chunks[c].moments[j-1].EnergyRight
+				}
 			}
 			density[base+j] += perVolume * f.Number[i][j]
 			power[base+j] += perVolume * watt * sumPower

@@ -178,7 +178,7 @@ func (r *Recorder) ints() []namedInts {
 			name := fmt.Sprintf("%d.chunk%d.", i, c)
 			if ch.ionized != nil {
 				list = append(list, namedInts{name + "ionized", &ch.ionized},
-					namedInts{name + "electrons", &ch.electrons}, namedInts{name + "moves", &ch.moves})
+					namedInts{name + "electrons", &ch.electrons.Counts}, namedInts{name + "moves", &ch.moves})
 			}
 			for wall, im := range rec.impacts {
 				if im == nil {

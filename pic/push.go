@@ -90,7 +90,7 @@ func (s *Simulation) push(w *worker, i, c int) {
 	if len(ch.out) < n { // births beyond what was reserved
 		ch.out = make([]int32, n+n/4)
 	}
-	left := kernels.PushDeposit(ch.x, ch.vx, w.kick[i], w.deposit[(w.step+1)&1][i], ch.out)
+	left := s.config.Kernels.PushDeposit(ch.x, ch.vx, w.kick[i], w.deposit[(w.step+1)&1][i], ch.out)
 	w.moved += int64(n)
 	ch.hits = ch.hits[:0]
 	if left > 0 {
