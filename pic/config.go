@@ -2,6 +2,8 @@ package pic
 
 import (
 	"fmt"
+
+	"ionfall/internal/kernels"
 )
 
 // Scheme is how the field acts on a particle within its cell.
@@ -40,6 +42,9 @@ type Config struct {
 	Weight     float64 // W [1/m2]
 	Chunks     int
 	Seed       uint64
+	// Kernels is the set of hot loops to use; the zero value is the fastest that works here. All
+	// give the same bits.
+	Kernels kernels.Set
 }
 
 // CellSize returns dx [m].

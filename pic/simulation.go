@@ -61,6 +61,9 @@ func New(c Config) (*Simulation, error) {
 	if err := c.check(); err != nil {
 		return nil, err
 	}
+	if c.Kernels.PushDeposit == nil {
+		c.Kernels = kernels.Best()
+	}
 	s := &Simulation{
 		config: c, species: append([]Species(nil), c.Species...),
 		poisson: newPoisson(c.Cells), voltage: c.Drive.samples(c.StepsPerPeriod),
