@@ -119,7 +119,11 @@ func TestPickBorders(t *testing.T) {
 // lead is a constant half kick.
 type lead float64
 
-func (l lead) HalfKick(int) float64 { return float64(l) }
+func (l lead) HalfKicks(_ []int32, change []float64) {
+	for k := range change {
+		change[k] = float64(l)
+	}
+}
 
 // Goal: velocities that lag behind are collided at the time of the collision. Method: cold gas of
 // equal mass; backscatter stops an ion at that time, so that minus the half kick is left in the

@@ -194,8 +194,11 @@ func single(m *Model, s *rng.Stream, v vector) collision {
 // candidate, channel's number, then the target unless the number is above every ceiling.
 func replay(m *Model, s *rng.Stream, v vector) vector {
 	gr := &m.groups[0]
+	gap := 1 / m.rate
+	for at := s.Exponential() * gap; at < 1; { // the candidates of the one particle come first
+		at += s.Exponential() * gap
+	}
 	for {
-		s.Exponential()
 		u := s.Float64()
 		if !gr.table.mayCollide(v.norm(), u) {
 			continue

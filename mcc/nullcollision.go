@@ -29,12 +29,14 @@ type Outcome struct {
 	// collision. Velocities that lag half a step behind are so collided at their own time:
 	// without it, each collision would cost half a kick, an error of first order in the step.
 	Advance Advancer
+
+	work candidates
 }
 
-// Advancer tells how much vx changes between the time of the velocities and that of the
-// collisions, in the model's unit.
+// Advancer tells how much vx of particles changes between the time of the velocities and that of
+// the collisions, in the model's unit: change[k] for the particle index[k].
 type Advancer interface {
-	HalfKick(i int) float64
+	HalfKicks(index []int32, change []float64)
 }
 
 // Event is a collision of the particle at index Particle.
@@ -48,43 +50,84 @@ func (m *Model) NewOutcome() *Outcome {
 	return &Outcome{Counts: make([]int64, len(m.channels)), Loss: make([]float64, len(m.channels))}
 }
 
+// batch is how many candidates are drawn and fetched together, so that waiting for one particle's
+// memory overlaps with the next's.
+const batch = 64
+
+// candidates are particles that may collide, with their velocities at the time of the collision.
+type candidates struct {
+	n        int
+	index    [batch]int32
+	v        [batch]velocity
+	ahead    [batch]float64
+	at, stop float64 // in particle times
+}
+
+// draw fills the batch; false when the step is over.
+func (c *candidates) draw(s *rng.Stream, gap float64) bool {
+	for c.n = 0; c.n < batch && c.at < c.stop; c.n++ {
+		c.index[c.n] = int32(c.at)
+		c.at += s.Exponential() * gap
+	}
+	return c.n > 0
+}
+
 // Collide collides the particles of velocities (vx, vy, vz), in the model's unit, for one time
 // step. New particles are not added to the slices; they are in out.Births.
 func (m *Model) Collide(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
 	vy, vz = vy[:len(vx)], vz[:len(vx)]
 	gap := 1 / m.rate
-	for at := s.Exponential() * gap; at < float64(len(vx)); at += s.Exponential() * gap {
-		i := int(at)
-		gr := &m.groups[0]
-		if len(m.groups) > 1 {
-			gr = m.pickGroup(s.Float64())
-		}
-		v := velocity{vx[i], vy[i], vz[i]}
-		ahead := 0.0
-		if out.Advance != nil {
-			ahead = out.Advance.HalfKick(i)
-			v.x += ahead
-		}
-		u := s.Float64()
-		if !gr.table.mayCollide(math.Sqrt(v.square()), u) {
-			continue
-		}
-		target := velocity{gr.thermal * s.Normal(), gr.thermal * s.Normal(), gr.thermal * s.Normal()}
-		g := math.Sqrt(v.minus(target).square())
-		c := gr.table.pick(g, u)
-		if c < 0 {
-			continue
-		}
-		after, ok := m.channels[gr.first+c].collide(s, v, target, int32(i), int32(gr.first+c), out)
-		if !ok {
-			continue
-		}
-		if g > gr.table.end {
-			out.Beyond++
-		}
-		vx[i], vy[i], vz[i] = after.x-ahead, after.y, after.z
-		m.count(gr.first+c, i, v.square()-after.square(), ahead, out)
+	c := &out.work
+	c.at, c.stop = s.Exponential()*gap, float64(len(vx))
+	if out.Advance == nil {
+		clear(c.ahead[:])
 	}
+	for c.draw(s, gap) {
+		if out.Advance != nil {
+			out.Advance.HalfKicks(c.index[:c.n], c.ahead[:c.n])
+		}
+		for k, i := range c.index[:c.n] {
+			c.v[k] = velocity{vx[i] + c.ahead[k], vy[i], vz[i]}
+		}
+		for k, i := range c.index[:c.n] {
+			if k > 0 && c.index[k-1] == i { // may have collided a moment ago
+				c.v[k] = velocity{vx[i] + c.ahead[k], vy[i], vz[i]}
+			}
+			if after, ok := m.tryOne(s, c.v[k], i, c.ahead[k], out); ok {
+				vx[i], vy[i], vz[i] = after.x-c.ahead[k], after.y, after.z
+			}
+		}
+	}
+}
+
+// tryOne decides about candidate i of velocity v and returns its velocity after a collision.
+func (m *Model) tryOne(s *rng.Stream, v velocity, i int32, ahead float64, out *Outcome) (
+	after velocity, ok bool,
+) {
+	gr := &m.groups[0]
+	if len(m.groups) > 1 {
+		gr = m.pickGroup(s.Float64())
+	}
+	u := s.Float64()
+	if !gr.table.mayCollide(math.Sqrt(v.square()), u) {
+		return v, false
+	}
+	target := velocity{gr.thermal * s.Normal(), gr.thermal * s.Normal(), gr.thermal * s.Normal()}
+	g := math.Sqrt(v.minus(target).square())
+	c := gr.table.pick(g, u)
+	if c < 0 {
+		return v, false
+	}
+	c += gr.first
+	after, ok = m.channels[c].collide(s, v, target, i, int32(c), out)
+	if !ok {
+		return v, false
+	}
+	if g > gr.table.end {
+		out.Beyond++
+	}
+	m.count(c, int(i), v.square()-after.square(), ahead, out)
+	return after, true
 }
 
 // pickGroup returns the group that the uniform number u selects.

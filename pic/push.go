@@ -58,11 +58,14 @@ type halfKick struct {
 	kick []kernels.Field
 }
 
-// HalfKick implements mcc.Advancer.
-func (h *halfKick) HalfKick(i int) float64 {
-	j := int(h.x[i])
-	f := &h.kick[j]
-	return 0.5 * (f.A + (h.x[i]-float64(j))*f.D)
+// HalfKicks implements mcc.Advancer.
+func (h *halfKick) HalfKicks(index []int32, change []float64) {
+	x, kick := h.x, h.kick
+	for k, i := range index {
+		j := int(x[i])
+		f := &kick[j]
+		change[k] = 0.5 * (f.A + (x[i]-float64(j))*f.D)
+	}
 }
 
 // bear adds an electron and an ion at x. The ion's velocity comes in the electrons' unit.
