@@ -45,7 +45,7 @@ type round struct {
 	Periods int     // made
 	Length  int     // to make
 	Content float64 // ions at its start [1/m2]
-	Calm    int     // rounds in a row with no significant growth
+	Doubled int     // times that the length was doubled
 }
 
 // accountTotals sums the ledgers of the averaging stage.

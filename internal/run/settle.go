@@ -10,12 +10,13 @@ import (
 const (
 	// roundPeriods is the least length of a round; longer where ions live long.
 	roundPeriods = 20
-	// roundsPerLife is how many rounds fit into the residence time of an ion.
-	roundsPerLife = 15
+	// firstRounds and lastRounds are how many rounds fit into the residence time of an ion: short
+	// ones find the density coarsely, longer ones finely.
+	firstRounds, lastRounds = 15, 4
 	// projection is the part of the residence time by which a round's growth is carried ahead.
 	projection = 0.4
-	// largestJump bounds ln(density) of one projection.
-	largestJump = 0.5
+	// largestJump bounds ln(density) of one projection; below leastJump none is worth it.
+	largestJump, leastJump = 0.5, 0.005
 	// mostRounds ends the projection; from then on the steadiness test decides alone.
 	mostRounds = 60
 	// transitsToSettle is how many sheath transits of an ion the undisturbed settling lasts.
@@ -28,16 +29,18 @@ const (
 
 // startRound begins to measure the growth of the density.
 func (c *control) startRound(content float64) {
-	length := max(roundPeriods, int(c.Residence/roundsPerLife))
+	length := int(c.Residence/firstRounds) << c.Round.Doubled
+	length = max(roundPeriods, min(length, int(c.Residence/lastRounds)))
 	c.Round = round{
-		Number: c.Round.Number + 1, Length: length, Content: content, Calm: c.Round.Calm,
+		Number: c.Round.Number + 1, Length: length, Content: content, Doubled: c.Round.Doubled,
 	}
 }
 
 // project ends a round: the density, which follows slowly, is moved ahead by a part of the
-// residence time of an ion at the growth rate that was seen. Reports whether two rounds in a row
-// saw no growth beyond noise.
-func (m *machine) project(row *Row) (calm bool) {
+// residence time of an ion at the growth rate that was seen, if the growth is more than chance.
+// If it is not, the next round is twice as long and sees less of chance. Reports whether a
+// round of the greatest length saw no growth.
+func (m *machine) project(row *Row) (done bool) {
 	c := &m.control
 	c.Round.Periods++
 	if c.Round.Periods < c.Round.Length {
@@ -47,24 +50,23 @@ func (m *machine) project(row *Row) (calm bool) {
 	growth := math.Log(row.Content/r.Content) / float64(r.Length)
 	jump := projection * c.Residence * growth
 	// Births and losses of n particles in the round scatter the growth.
-	noise := projection * c.Residence / float64(r.Length) *
+	chance := projection * c.Residence / float64(r.Length) *
 		math.Sqrt(2*float64(r.Length)/c.Residence/float64(row.Ions))
 	jump = math.Max(-largestJump, math.Min(largestJump, jump))
-	if math.Abs(jump) < math.Max(0.02, 2*noise) {
-		c.Round.Calm++
-	} else {
-		c.Round.Calm = 0
-	}
 	content := row.Content
-	if r.Number > 1 && c.Round.Calm < 2 { // the first round sees the start's own transient
+	switch calm := math.Abs(jump) < math.Max(leastJump, 2*chance); {
+	case r.Number == 1: // sees the start's own transient
+	case calm:
+		done = r.Length >= int(c.Residence/lastRounds)
+		c.Round.Doubled++
+	default:
 		m.sim.ScaleWeight(math.Exp(jump))
 		m.rebase()
 		content *= math.Exp(jump)
 		c.Event = fmt.Sprintf("density projected by %+.1f %%", 100*math.Expm1(jump))
 	}
-	done := c.Round.Calm >= 2 || r.Number >= mostRounds
 	c.startRound(content)
-	return done
+	return done || r.Number >= mostRounds
 }
 
 // watched is a quantity whose drift is tested, with the drift that would not matter.
