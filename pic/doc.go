@@ -13,6 +13,8 @@
 //	momentum conserving   field at nodes, (phi[j-1]-phi[j+1])/(2 dx), linear in the cell
 //	energy conserving     field constant in the cell, (phi[j]-phi[j+1])/dx
 //
+// The powered electrode follows a drive or is isolated: circuit.go.
+//
 // Ions may be sub-cycled: moved once every K electron steps by the field averaged over them.
 // The move is made half-way between the two times it joins, so that the density they show in
 // between belongs, on average, to the time of the step.

@@ -20,6 +20,8 @@ func Levels() Rules {
 		Levels: map[string]int{
 			"cmd/ionfall":         7,
 			"bench/speed":         7,
+			"bench/benchmark":     7,
+			"bench/validation":    7,
 			"examples":            7,
 			"internal/scan":       6,
 			"internal/run":        5,
