@@ -3,6 +3,7 @@
 //
 //	go run ./bench/benchmark --case 1 [--helium FILE [--database NAME]] [--set NAME|all]
 //	    [--scheme NAME] [--periods N] [--start-density N] [--cores N] [--seed N] [--json]
+//	go run ./bench/benchmark --record testdata/validation/benchmark.json RESULT.json ...
 //
 // The answer goes to stdout, progress to stderr. The benchmark prescribes a set of cross sections
 // that is not among the bundled ones; --helium reads it from a download in the exchange form.
@@ -32,6 +33,8 @@ type options struct {
 	cores        int
 	seed         uint64
 	json         bool
+	record       string   // file of validation rows; then no run is made
+	results      []string // to record
 }
 
 const (
@@ -71,6 +74,8 @@ func parse(args []string, help io.Writer) (*options, error) {
 		"density of the start in 1/m3 (0: as published), with the published weight of particles")
 	f.IntVar(&o.cores, "cores", runtime.GOMAXPROCS(0), "workers; the result does not depend on it")
 	f.Uint64Var(&o.seed, "seed", 1, "seed of the random numbers")
+	f.StringVar(&o.record, "record", "",
+		"merge finished results, JSON files given as arguments, into this file of validation rows")
 	f.BoolVar(&o.json, "json", false, "print JSON, with the complete profiles")
 	if err := f.Parse(args); err != nil {
 		return nil, err
@@ -79,6 +84,10 @@ func parse(args []string, help io.Writer) (*options, error) {
 	if o.scheme, ok = findScheme(*scheme); !ok {
 		return nil, fmt.Errorf("--scheme: got %q, want %s or %s", *scheme,
 			pic.MomentumConserving, pic.EnergyConserving)
+	}
+	if o.record != "" {
+		o.results = f.Args()
+		return o, o.check(nil)
 	}
 	return o, o.check(f.Args())
 }
@@ -122,6 +131,9 @@ const maxStartDensity = 1e17
 
 // run makes the runs that are asked for and prints them.
 func run(o *options, out, progress io.Writer) error {
+	if o.record != "" {
+		return recordRows(o.record, o.results)
+	}
 	c, err := findCase(o.number)
 	if err != nil {
 		return err
