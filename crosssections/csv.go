@@ -44,9 +44,9 @@ var (
 // rows. The name is for messages.
 func ReadTable(name string, data []byte) (*TableFile, error) {
 	r := tableReader{complaints: complaints{file: name}, seen: map[string]int{}}
-	if len(data) > maxTableFileBytes {
+	if len(data) > MaxTableFileBytes {
 		r.add(0, 0, "", fmt.Sprintf("%d bytes", len(data)),
-			fmt.Sprintf("at most %d", maxTableFileBytes))
+			fmt.Sprintf("at most %d", MaxTableFileBytes))
 		return nil, r.err()
 	}
 	line := 0

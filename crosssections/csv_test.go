@@ -124,7 +124,7 @@ func TestReadTableLimits(t *testing.T) {
 		!strings.HasSuffix(err.Error(), "and 80 more") {
 		t.Errorf("bad rows: got %v, want 100 errors and no more", err)
 	}
-	long := sampleTable + strings.Repeat("#\n", maxTableFileBytes/2)
+	long := sampleTable + strings.Repeat("#\n", MaxTableFileBytes/2)
 	if _, err := ReadTable("t.csv", []byte(long)); err == nil ||
 		!strings.Contains(err.Error(), "want at most 4194304") {
 		t.Errorf("large file: got %v", err)

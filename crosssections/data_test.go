@@ -244,7 +244,7 @@ func TestNoOrphans(t *testing.T) {
 		}
 	}
 	err = fs.WalkDir(bundled, "data", func(name string, d fs.DirEntry, err error) error {
-		if err == nil && !d.IsDir() && !strings.HasSuffix(name, gasFileName) && !used[name] {
+		if err == nil && !d.IsDir() && !strings.HasSuffix(name, GasFileName) && !used[name] {
 			t.Errorf("%s belongs to no set", name)
 		}
 		return err

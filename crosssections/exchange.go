@@ -77,6 +77,23 @@ func (x *Exchange) Only(database string) *Exchange {
 // holds the species from several databases, as their cross sections must not be mixed: choose
 // with Only.
 func (x *Exchange) Gas(species string) (*Imported, error) {
+	blocks, warnings, err := x.of(species)
+	if err != nil {
+		return nil, err
+	}
+	gas := &Imported{Species: species, Mass: massOf(blocks), Warnings: warnings}
+	for i, name := range processNamesOf(blocks) {
+		p := blocks[i].process()
+		p.Name = name
+		gas.Processes = append(gas.Processes, p)
+	}
+	gas.Processes, warnings = splitEffective(gas.Processes)
+	gas.Warnings = append(gas.Warnings, warnings...)
+	return gas, nil
+}
+
+// of is the blocks of a species to be used together, and what a user should know about them.
+func (x *Exchange) of(species string) ([]Block, []string, error) {
 	of := &Exchange{}
 	for _, b := range x.Blocks {
 		if b.Target == species {
@@ -84,37 +101,46 @@ func (x *Exchange) Gas(species string) (*Imported, error) {
 		}
 	}
 	if len(of.Blocks) == 0 {
-		return nil, unknown("species", species, x.Species())
+		return nil, nil, unknown("species", species, x.Species())
 	}
 	if d := of.Databases(); len(d) > 1 {
-		return nil, fmt.Errorf("species %s is in the databases %s: want one of them", species,
+		return nil, nil, fmt.Errorf("species %s is in the databases %s: want one of them", species,
 			strings.Join(d, ", "))
 	}
 	blocks, err := of.oneElastic(species)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
-	gas := &Imported{Species: species, Warnings: slices.Clone(x.Warnings)}
+	warnings := slices.Clone(x.Warnings)
 	if len(blocks) < len(of.Blocks) {
-		gas.Warnings = append(gas.Warnings, species+": the file has an elastic and an effective "+
+		warnings = append(warnings, species+": the file has an elastic and an effective "+
 			"cross section; the effective one is left out")
 	}
-	names := map[string]int{}
+	return blocks, warnings, nil
+}
+
+// massOf is the mass of the neutral from the mass ratio of the blocks [kg], 0 if they have none.
+func massOf(blocks []Block) float64 {
 	for i := range blocks {
-		b := &blocks[i]
-		if b.MassRatio > 0 {
-			gas.Mass = phys.ElectronMass / b.MassRatio
+		if ratio := blocks[i].MassRatio; ratio > 0 {
+			return phys.ElectronMass / ratio
 		}
-		p := b.process()
-		if names[p.Name]++; names[p.Name] > 1 {
-			p.Name = fmt.Sprintf("%s (%d)", p.Name, names[p.Name])
-		}
-		gas.Processes = append(gas.Processes, p)
 	}
-	var warnings []string
-	gas.Processes, warnings = splitEffective(gas.Processes)
-	gas.Warnings = append(gas.Warnings, warnings...)
-	return gas, nil
+	return 0
+}
+
+// processNamesOf are names of the processes, each used once.
+func processNamesOf(blocks []Block) []string {
+	var list []string
+	seen := map[string]int{}
+	for i := range blocks {
+		name := blocks[i].process().Name
+		if seen[name]++; seen[name] > 1 {
+			name = fmt.Sprintf("%s (%d)", name, seen[name])
+		}
+		list = append(list, name)
+	}
+	return list
 }
 
 // oneElastic is the blocks without an effective one that an elastic one makes useless.

@@ -16,8 +16,8 @@ import (
 //go:embed data
 var bundled embed.FS
 
-// gasFileName is the file that makes a folder a gas.
-const gasFileName = "gas.yaml"
+// GasFileName is the file that makes a folder a gas.
+const GasFileName = "gas.yaml"
 
 // Library is a collection of gases, read and checked as a whole.
 type Library struct {
@@ -46,16 +46,29 @@ func OpenLibrary(fsys fs.FS) (*Library, error) {
 	if err != nil {
 		return nil, fmt.Errorf("cross-section library: %w", err)
 	}
+	var folders []string
+	for _, entry := range entries {
+		if entry.IsDir() && !strings.HasPrefix(entry.Name(), ".") {
+			folders = append(folders, entry.Name())
+		}
+	}
+	return openFolders(folders, func(name string) ([]byte, error) {
+		return fs.ReadFile(fsys, name)
+	})
+}
+
+// readFile gives the content of a file of a library by its path.
+type readFile func(name string) ([]byte, error)
+
+// openFolders reads the gases in the folders.
+func openFolders(folders []string, read readFile) (*Library, error) {
+	if len(folders) > MaxGases {
+		return nil, fmt.Errorf("cross-section library: more than %d gases", MaxGases)
+	}
 	var lib Library
 	var list inputerr.List
-	for _, entry := range entries {
-		if !entry.IsDir() || strings.HasPrefix(entry.Name(), ".") {
-			continue
-		}
-		if len(lib.gases) >= maxGases {
-			return nil, fmt.Errorf("cross-section library: more than %d gases", maxGases)
-		}
-		gas, err := readGas(fsys, entry.Name())
+	for _, folder := range folders {
+		gas, err := readGas(read, folder)
 		var some inputerr.List
 		switch {
 		case errors.As(err, &some):
@@ -71,7 +84,7 @@ func OpenLibrary(fsys fs.FS) (*Library, error) {
 	}
 	if len(lib.gases) == 0 {
 		return nil, errors.New("cross-section library: no gas: want a folder a gas, " +
-			"each with a " + gasFileName)
+			"each with a " + GasFileName)
 	}
 	return &lib, nil
 }
@@ -84,6 +97,23 @@ func (l *Library) Names() []string {
 	}
 	slices.Sort(names)
 	return names
+}
+
+// Has tells whether the library has a gas with the name, which may name a set.
+func (l *Library) Has(name string) bool {
+	gasName, _, _ := strings.Cut(name, "/")
+	return slices.ContainsFunc(l.gases, func(g libraryGas) bool { return g.name == gasName })
+}
+
+// Over is the library with those gases of the other one that it does not have itself.
+func (l *Library) Over(other *Library) *Library {
+	both := &Library{gases: slices.Clone(l.gases)}
+	for _, g := range other.gases {
+		if !l.Has(g.name) {
+			both.gases = append(both.gases, g)
+		}
+	}
+	return both
 }
 
 // Gas is the gas with the name: "He" with its default set, "He/phelps" with another one. The
@@ -126,9 +156,9 @@ func unknown(what, name string, known []string) error {
 }
 
 // readGas reads and checks the folder of a gas.
-func readGas(fsys fs.FS, folder string) (libraryGas, error) {
-	name := path.Join(folder, gasFileName)
-	data, err := fs.ReadFile(fsys, name)
+func readGas(read readFile, folder string) (libraryGas, error) {
+	name := path.Join(folder, GasFileName)
+	data, err := read(name)
 	if err != nil {
 		return libraryGas{}, fmt.Errorf("gas %q: %w", folder, err)
 	}
@@ -137,7 +167,7 @@ func readGas(fsys fs.FS, folder string) (libraryGas, error) {
 		return libraryGas{}, err
 	}
 	r.check(folder)
-	tables := r.readTables(fsys, folder)
+	tables := r.readTables(read, folder)
 	if err := r.err(); err != nil {
 		return libraryGas{}, err
 	}
@@ -146,7 +176,7 @@ func readGas(fsys fs.FS, folder string) (libraryGas, error) {
 }
 
 // readTables reads the tables of all processes, each file once.
-func (r *gasReader) readTables(fsys fs.FS, folder string) map[string]*TableFile {
+func (r *gasReader) readTables(read readFile, folder string) map[string]*TableFile {
 	tables := map[string]*TableFile{}
 	failed := map[string]bool{}
 	for i := range r.out.processes {
@@ -156,7 +186,7 @@ func (r *gasReader) readTables(fsys fs.FS, folder string) map[string]*TableFile 
 		}
 		name := path.Join(folder, p.file)
 		if tables[p.file] == nil {
-			data, err := fs.ReadFile(fsys, name)
+			data, err := read(name)
 			failed[p.file] = err != nil
 			if err != nil {
 				r.at(p.fileAt, "file", quoted(p.file)+", which is not there",

@@ -4,13 +4,16 @@ package crosssections
 // memory. They are an order of magnitude and more above the largest sets in use.
 const (
 	maxGasFileBytes      = 256 << 10 // gas.yaml: hand-written text
-	maxTableFileBytes    = 4 << 20   // a table of the project's own form
 	maxExchangeFileBytes = 64 << 20  // a whole database in exchange form
 	maxRows              = 100_000   // rows a table: 0.01 eV steps up to 1 keV
 	maxProcesses         = 10_000    // blocks of an exchange file
 	maxGasProcesses      = 1_000     // processes, ions or sets of one gas
-	maxGases             = 1_000     // gas folders of a library
 	maxErrors            = 100       // errors kept for one file; the cause is one of the first
+
+	// MaxTableFileBytes is the size of a table of the project's own form, the largest of the files.
+	MaxTableFileBytes = 4 << 20
+	// MaxGases is the number of gas folders of a library.
+	MaxGases = 1_000
 
 	// maxCrossSection [m2] is above any real cross section at the energies of a discharge;
 	// larger values are a wrong unit (cm2, 1e-20 m2).

@@ -57,6 +57,7 @@ func badInputs() []badInput {
 		{"bad-sum", false},
 		{"bad-fraction", true},
 		{"bad-gas-name", true},
+		{"bad-library", true},
 		{"no-substrate", false},
 		{"list-instead-of-mapping", true},
 		{"nothing", true},

@@ -33,6 +33,9 @@ type Gas struct {
 	Pressure float64
 	// Temperature of the mixture [K].
 	Temperature float64
+	// Library is a folder of gases as written, or "": its gases go before the bundled ones. It
+	// is relative to the folder of the input file.
+	Library string
 	// Mixture in the order of the file; the fractions sum to 1 within 1e-6.
 	Mixture []Component
 }

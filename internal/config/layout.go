@@ -68,6 +68,11 @@ func gasLayout(g *Gas) value {
 			doc: "Temperature of the gas. Default: 300 K.",
 		},
 		{
+			key: "library", value: folder{&g.Library},
+			doc: "Folder of gases of your own, relative to this file; a gas of the same name goes " +
+				"before the bundled one. Default: the bundled gases alone.",
+		},
+		{
 			key: "mixture", required: true, value: mixture{&g.Mixture},
 			doc: "Gases and their fractions of the molecules, which sum to 1.",
 		},

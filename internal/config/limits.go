@@ -9,6 +9,8 @@ const (
 	MaxFileBytes = 1 << 20
 	// maxTitle keeps a title on one line of a report.
 	maxTitle = 200
+	// maxPath is the longest name of a file that systems take.
+	maxPath = 4096
 	// maxGasName: names become parts of column names.
 	maxGasName = 32
 	// maxQuantity bounds the digits that have to be converted exactly.

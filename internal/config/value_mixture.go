@@ -13,6 +13,11 @@ import (
 // gasName is what a name of a gas may look like: it becomes a part of column names.
 const gasName = `^[A-Za-z][A-Za-z0-9()+_-]*$`
 
+// GasName tells whether a gas may have the name.
+func GasName(name string) bool {
+	return len(name) <= maxGasName && regexp.MustCompile(gasName).MatchString(name)
+}
+
 // mixture maps names of gases to fractions, in the order of the file.
 type mixture struct{ dst *[]Component }
 
@@ -52,8 +57,7 @@ func (v mixture) decode(d *decoder, n *yaml.Node, path string) {
 }
 
 func (v mixture) named(d *decoder, k *yaml.Node, path string) bool {
-	if k.Tag == "!!str" && len(k.Value) <= maxGasName &&
-		regexp.MustCompile(gasName).MatchString(k.Value) {
+	if k.Tag == "!!str" && GasName(k.Value) {
 		return true
 	}
 	d.fail(k, path, found(k)+" as the name of a gas",

@@ -84,6 +84,20 @@ func TestContractNames(t *testing.T) {
 	}
 }
 
+// TestSwarmNames: coefficients of swarms state their units; that of a rate coefficient is the
+// one that its column says.
+func TestSwarmNames(t *testing.T) {
+	for name, unit := range map[string]string{
+		"field_Td": "Td", "ionization_rate_m3ps": "m3/s", "townsend_m2": "m2",
+		"mobility_cm2pVps": "cm2/(V s)", "diffusion_transverse_pmps_se": "1/(m s)",
+	} {
+		c := Column{Name: name, Unit: unit, Doc: "doc", Float: []float64{}}
+		if errs := c.check(); len(errs) > 0 {
+			t.Errorf("%s: %v", name, errs)
+		}
+	}
+}
+
 // TestValidateFindsAll: one fault a case, so that a check that is missing shows.
 func TestValidateFindsAll(t *testing.T) {
 	float := func(name, unit string) Column {
@@ -113,6 +127,10 @@ func TestValidateFindsAll(t *testing.T) {
 		{
 			Column{Name: "t_s", Unit: "s", Doc: "doc", Text: []string{"a", "b"}},
 			`column "t_s": texts with the unit "s", want none`,
+		},
+		{
+			float("gap_m", "m3/s"),
+			`column "gap_m": name states the unit "m", the column has "m3/s"`,
 		},
 		{float("gap_m_se", "m"), `column "gap_m_se": standard error without its column "gap_m"`},
 		{

@@ -14,7 +14,17 @@ func units() map[string]string {
 		"m2ps": "1/(m2 s)", "m3ps": "1/(m3 s)",
 		"m2pseV": "1/(m2 s eV)", "m2pseVdeg": "1/(m2 s eV deg)",
 		"eVm32": "eV^-3/2",
+		"Td":    "Td", "m2": "m2", "pmps": "1/(m s)", "cm2pVps": "cm2/(V s)",
 	}
+}
+
+// rateCoefficient is what the suffix m3ps means where it is no rate in a volume; the unit of the
+// column tells which.
+const rateCoefficient = "m3/s"
+
+// means reports whether a name that states the one unit may belong to a column with the other.
+func means(stated, unit string) bool {
+	return stated == unit || stated == units()["m3ps"] && unit == rateCoefficient
 }
 
 // UnitOf returns the unit that the name of a column or a result states, "" when it states none.
@@ -49,5 +59,5 @@ func knownUnit(unit string) bool {
 			return true
 		}
 	}
-	return false
+	return unit == rateCoefficient
 }

@@ -78,7 +78,7 @@ func (c Column) checkUnit() error {
 		return fmt.Errorf("name states the unit %q, the column has none", stated[0])
 	case c.Unit != "" && len(stated) == 0:
 		return fmt.Errorf("name does not end in a unit, the column has %q", c.Unit)
-	case c.Unit != "" && stated[0] != c.Unit:
+	case c.Unit != "" && !means(stated[0], c.Unit):
 		return fmt.Errorf("name states the unit %q, the column has %q", stated[0], c.Unit)
 	}
 	return nil
