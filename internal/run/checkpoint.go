@@ -4,9 +4,12 @@ import (
 	"bytes"
 	"encoding/json"
 	"fmt"
+	"io/fs"
 	"math"
+	"strings"
 	"time"
 
+	"ionfall/crosssections"
 	"ionfall/internal/codec"
 	"ionfall/internal/store"
 )
@@ -31,6 +34,9 @@ func (m *machine) save() error {
 	enc.String("name", m.plan.Name)
 	enc.Bytes("input", m.plan.Input)
 	enc.String("gases", m.plan.gasHashes())
+	if err := m.saveOwn(enc); err != nil {
+		return err
+	}
 	enc.Bytes("control", control)
 	enc.Bytes("history", history)
 	m.sim.Save(enc, "sim.")
@@ -40,6 +46,35 @@ func (m *machine) save() error {
 	}
 	m.saved = time.Now()
 	return m.folder.WriteJSON("state.json", m.state())
+}
+
+// saveOwn keeps the user's gases, in the checkpoint and beside it.
+func (m *machine) saveOwn(enc *codec.Encoder) error {
+	if len(m.plan.ownFiles) == 0 {
+		return nil
+	}
+	files, err := json.Marshal(m.plan.ownFiles)
+	if err != nil {
+		return fmt.Errorf("run: the gas library cannot be written: %w", err)
+	}
+	enc.Bytes("library", files)
+	return m.plan.writeOwn(m.folder)
+}
+
+func restoreOwn(dec *codec.Decoder) (crosssections.Files, error) {
+	if !dec.Has("library") {
+		return nil, nil
+	}
+	var files crosssections.Files
+	if err := strictJSON(dec.Bytes("library"), &files); err != nil {
+		return nil, err
+	}
+	for name := range files {
+		if !fs.ValidPath(name) || strings.Count(name, "/") != 1 {
+			return nil, fmt.Errorf("the gas library in it has the file %q", name)
+		}
+	}
+	return files, dec.Err()
 }
 
 // gasHashes identifies the cross sections: a run must not go on with others.
@@ -77,7 +112,11 @@ func restore(folder *store.Run, o Options) (*machine, error) {
 	if err := dec.Err(); err != nil {
 		return nil, bad(err)
 	}
-	plan, err := PrepareBytes(name+".yaml", input)
+	own, err := restoreOwn(dec)
+	if err != nil {
+		return nil, bad(err)
+	}
+	plan, err := prepareKept(name, input, own)
 	if err != nil {
 		return nil, bad(err)
 	}

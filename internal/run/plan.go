@@ -5,12 +5,14 @@ import (
 	"encoding/hex"
 	"fmt"
 	"math"
+	"os"
 	"path/filepath"
 	"strings"
 
 	"ionfall/crosssections"
 	"ionfall/internal/config"
 	"ionfall/internal/inputerr"
+	"ionfall/internal/kernels"
 	"ionfall/internal/phys"
 	"ionfall/mcc"
 	"ionfall/pic"
@@ -22,6 +24,12 @@ type Plan struct {
 	Case  *config.Case
 	Input []byte
 	Gases []*crosssections.Gas // in the order of the mixture
+	// Kernels is the set of hot loops; the zero value is the fastest that works here.
+	Kernels kernels.Set
+
+	bundled  *crosssections.Library
+	own      *crosssections.Library // the user's, or nil
+	ownFiles crosssections.Files    // of the gases in use that are the user's
 }
 
 // Prepare reads and checks an input file.
@@ -30,16 +38,50 @@ func Prepare(path string) (*Plan, error) {
 	if err != nil {
 		return nil, err
 	}
-	return prepare(caseName(path), c, src)
+	p := &Plan{Name: caseName(path), Case: c, Input: src}
+	if err := p.ownLibrary(filepath.Dir(path)); err != nil {
+		return nil, err
+	}
+	return p.checked()
 }
 
-// PrepareBytes checks an input that is already in memory; name stands in messages.
+// PrepareBytes checks an input that is already in memory; name stands in messages, and its folder
+// is that of the input.
 func PrepareBytes(name string, src []byte) (*Plan, error) {
 	c, err := config.Parse(name, src)
 	if err != nil {
 		return nil, err
 	}
-	return prepare(caseName(name), c, src)
+	p := &Plan{Name: caseName(name), Case: c, Input: src}
+	if err := p.ownLibrary(filepath.Dir(name)); err != nil {
+		return nil, err
+	}
+	return p.checked()
+}
+
+// prepareKept checks an input with the files of the user's gases that were kept with it, if any.
+func prepareKept(name string, src []byte, files crosssections.Files) (*Plan, error) {
+	c, err := config.Parse(name+".yaml", src)
+	if err != nil {
+		return nil, err
+	}
+	p := &Plan{Name: name, Case: c, Input: src, ownFiles: files}
+	if len(files) > 0 {
+		if p.own, err = crosssections.OpenFiles(files); err != nil {
+			return nil, err
+		}
+	}
+	return p.checked()
+}
+
+// Kernels returns the set of hot loops that the environment variable IONFALL_KERNELS names
+// (portable, avx2, avx512), without it the fastest that works here. All give the same bits.
+func Kernels() (kernels.Set, error) {
+	set, err := kernels.Select(os.Getenv("IONFALL_KERNELS"))
+	if err != nil {
+		return set, fmt.Errorf("environment variable IONFALL_KERNELS: %w", err)
+	}
+	return set, nil
 }
 
 // caseName is the folder's name for an input called input.yaml, else the file's own.
@@ -53,27 +95,39 @@ func caseName(path string) string {
 	return base
 }
 
-func prepare(name string, c *config.Case, src []byte) (*Plan, error) {
-	p := &Plan{Name: name, Case: c, Input: src}
+// checked finds the gases of the mixture and everything that keeps them from being simulated.
+func (p *Plan) checked() (*Plan, error) {
+	var err error
+	if p.Kernels, err = Kernels(); err != nil {
+		return nil, err
+	}
 	library, err := crosssections.Bundled()
 	if err != nil {
 		return nil, err
 	}
+	p.bundled = library
+	if p.own != nil {
+		library = p.own.Over(library)
+	}
 	var bad inputerr.List
-	for _, part := range c.Gas.Mixture {
+	for _, part := range p.Case.Gas.Mixture {
 		gas, err := library.Gas(part.Gas)
 		if err != nil {
 			hint := ""
 			if near := inputerr.Nearest(part.Gas, library.Names()); near != "" {
 				hint = fmt.Sprintf("did you mean %q?", near)
 			}
-			bad = append(bad, c.Errorf("gas.mixture."+part.Gas, fmt.Sprintf("%q", part.Gas),
+			bad = append(bad, p.Case.Errorf("gas.mixture."+part.Gas, fmt.Sprintf("%q", part.Gas),
 				"one of "+strings.Join(library.Names(), ", "), hint))
 			continue
 		}
 		p.Gases = append(p.Gases, gas)
 	}
+	p.keepOwn()
 	bad = append(bad, p.missingCollisions()...)
+	if len(p.Gases) == len(p.Case.Gas.Mixture) {
+		bad = append(bad, p.unusable()...)
+	}
 	if len(bad) > 0 {
 		return nil, bad
 	}
@@ -88,8 +142,11 @@ func (p *Plan) missingCollisions() inputerr.List {
 		for _, ion := range own.Ions {
 			for _, other := range p.Gases {
 				if len(other.Processes(ion.Name)) == 0 {
-					bad = append(bad, p.Case.Errorf("gas.mixture."+other.Name,
-						fmt.Sprintf("%s together with %s", other.Name, own.Name),
+					got := other.Name
+					if other != own {
+						got += " together with " + own.Name
+					}
+					bad = append(bad, p.Case.Errorf("gas.mixture."+other.Name, got,
 						fmt.Sprintf("a gas whose collisions with %s are known", ion.Name), ""))
 				}
 			}
@@ -165,6 +222,7 @@ func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 	c := pic.Config{
 		Gap: p.Case.Gap, Cells: n.Cells, Period: p.period(), StepsPerPeriod: n.StepsPerPeriod,
 		Scheme: n.scheme(), Drive: p.drive(), Weight: weight, Chunks: n.Chunks, Seed: p.Case.Seed,
+		Kernels: p.Kernels,
 	}
 	for wall, e := range []config.Electrode{p.Case.Electrodes.Powered, p.Case.Electrodes.Grounded} {
 		c.Electrodes[wall] = pic.Electrode{

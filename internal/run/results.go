@@ -112,17 +112,13 @@ func (m *machine) filmResults(r map[string]any) {
 // provenance says where the numbers come from.
 func (m *machine) provenance() map[string]any {
 	c := &m.control
-	gases := map[string]any{}
-	for _, g := range m.plan.Gases {
-		gases[g.Name] = map[string]any{"set": g.Set, "sha256": g.SHA256}
-	}
 	n := c.Numerics
 	batches, length := m.rec.Batches()
 	return map[string]any{
 		"program": "ionfall", "version": m.options.version(), "go": runtime.Version(),
-		"platform": runtime.GOOS + "/" + runtime.GOARCH, "kernels": "portable",
+		"platform": runtime.GOOS + "/" + runtime.GOARCH, "kernels": m.sim.Config().Kernels.Name,
 		"cores": m.options.cores(), "seed": m.plan.Case.Seed,
-		"input_sha256": m.plan.InputSHA256(), "cross_sections": gases,
+		"input_sha256": m.plan.InputSHA256(), "cross_sections": m.plan.crossSections(),
 		"wall_s": c.Wall, "cpu_s": c.CPU, "particle_steps": c.Moved,
 		"periods": c.Periods, "averaged_periods": c.Averaged.Periods,
 		"batches": batches, "batch_periods": length,

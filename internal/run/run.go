@@ -163,6 +163,7 @@ func (m *machine) writeResolved() error {
 	c.Numerics.Cells, c.Numerics.StepsPerPeriod = n.Cells, n.StepsPerPeriod
 	c.Numerics.ParticlesPerCell, c.Numerics.Scheme = n.ParticlesPerCell, n.Scheme
 	c.Numerics.IonSubsteps = n.IonSubsteps
+	c.Gas.Library = m.plan.resolvedLibrary()
 	text, err := c.Resolved()
 	if err != nil {
 		return err
