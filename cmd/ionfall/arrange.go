@@ -134,6 +134,9 @@ func (s *sorter) take(args []string) []string {
 		}
 		value, rest = rest[0], rest[1:]
 	}
+	if q, ok := flag.(*quantityFlag); ok {
+		value, rest = q.withUnit(value, rest)
+	}
 	s.options = append(s.options, "--"+first+"="+value)
 	return rest
 }

@@ -19,7 +19,12 @@ func testApp() *cli.App {
 			&cli.BoolFlag{Name: "quiet"},
 			&cli.StringSliceFlag{Name: "set"},
 		}},
-		{Name: "gas", Subcommands: []*cli.Command{{Name: "list"}, {Name: "show"}}},
+		{Name: "gas", Subcommands: []*cli.Command{{Name: "list"}, {Name: "show"}, {
+			Name: "swarm", Flags: []cli.Flag{
+				&quantityFlag{&cli.StringFlag{Name: "field"}, []string{"Td"}},
+				&cli.BoolFlag{Name: "json"},
+			},
+		}}},
 		{Name: "version"},
 	}}
 }
@@ -129,6 +134,25 @@ func TestHasFlag(t *testing.T) {
 	} {
 		if got := hasFlag(strings.Fields(args), "json"); got != want {
 			t.Errorf("%q: got %t, want %t", args, got, want)
+		}
+	}
+}
+
+// Goal: a value with its unit may stand in several words, and takes no other word with it.
+// Method: command lines and what the flag gets, by hand.
+func TestArrangeQuantities(t *testing.T) {
+	for args, want := range map[string][]string{
+		"gas swarm --field 10,20 Td Ar":        {"--field=10,20 Td", "--", "Ar"},
+		"gas swarm Ar --field 10,20Td":         {"--field=10,20Td", "--", "Ar"},
+		"gas swarm --field 10, 20 , 30 Td Ar":  {"--field=10, 20 , 30 Td", "--", "Ar"},
+		"gas swarm --field=10,20 Td --json Ar": {"--field=10,20 Td", "--json=true", "--", "Ar"},
+		"gas swarm --field 10,20 Ar":           {"--field=10,20", "--", "Ar"},
+		"gas swarm --field 10, --json Ar":      {"--field=10,", "--json=true", "--", "Ar"},
+	} {
+		got, err := arrange(testApp(), strings.Fields(args))
+		want = append([]string{"gas", "swarm"}, want...)
+		if err != nil || !slices.Equal(got, want) {
+			t.Errorf("%q: got %q, %v, want %q", args, got, err, want)
 		}
 	}
 }

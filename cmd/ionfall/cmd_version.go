@@ -6,6 +6,8 @@ import (
 	"runtime/debug"
 
 	"github.com/urfave/cli/v2"
+
+	"ionfall/internal/run"
 )
 
 // version and commit are set by the linker: -ldflags "-X main.version=1.2.3 -X main.commit=abc".
@@ -17,10 +19,14 @@ type build struct {
 	Commit   string `json:"commit"`
 	Go       string `json:"go"`
 	Platform string `json:"platform"`
+	Kernels  string `json:"kernels"`
 }
 
 func thisBuild() build {
-	b := build{version, commit, runtime.Version(), runtime.GOOS + "/" + runtime.GOARCH}
+	b := build{
+		Version: version, Commit: commit, Go: runtime.Version(),
+		Platform: runtime.GOOS + "/" + runtime.GOARCH,
+	}
 	if info, ok := debug.ReadBuildInfo(); ok {
 		if b.Version == "" && info.Main.Version != "(devel)" {
 			b.Version = info.Main.Version
@@ -57,6 +63,11 @@ func (p *program) versionCommand() *cli.Command {
 				return err
 			}
 			b := thisBuild()
+			set, err := run.Kernels()
+			if err != nil {
+				return usagef("%v", err)
+			}
+			b.Kernels = set.Name
 			if p.asJSON {
 				text, err := encodeJSON(b, true)
 				if err != nil {
@@ -64,8 +75,8 @@ func (p *program) versionCommand() *cli.Command {
 				}
 				return p.print(text)
 			}
-			return p.print([]byte(fmt.Sprintf("ionfall %s (commit %s), %s, %s\n",
-				b.Version, b.Commit, b.Go, b.Platform)))
+			return p.print([]byte(fmt.Sprintf("ionfall %s (commit %s), %s, %s, kernels %s\n",
+				b.Version, b.Commit, b.Go, b.Platform, b.Kernels)))
 		},
 	}
 }

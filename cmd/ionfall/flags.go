@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -21,6 +22,29 @@ func coresFlag() cli.Flag {
 		Name:  "cores",
 		Usage: "use `N` processor cores (default: all); the results do not depend on it",
 	}
+}
+
+// quantityFlag is a flag whose value may stand in several words: --field 10,20 Td.
+type quantityFlag struct {
+	*cli.StringFlag
+	units []string
+}
+
+// withUnit adds to the value the words that belong to it: numbers after a comma, and the unit. It
+// returns the words after them, too.
+func (f *quantityFlag) withUnit(value string, rest []string) (string, []string) {
+	for len(rest) > 0 && !looksLikeFlag(rest[0]) {
+		if !strings.HasSuffix(value, ",") && !strings.HasPrefix(rest[0], ",") &&
+			!f.isUnit(rest[0]) {
+			break
+		}
+		value, rest = value+" "+rest[0], rest[1:]
+	}
+	return value, rest
+}
+
+func (f *quantityFlag) isUnit(word string) bool {
+	return slices.ContainsFunc(f.units, func(u string) bool { return strings.EqualFold(u, word) })
 }
 
 func quietFlag() cli.Flag {
@@ -65,9 +89,10 @@ func (v *values) text(flag, want string) string {
 // quantity reads a flag as the input file reads the same value: section is a mapping with %s in
 // place of it. So units, limits and messages are those of the input.
 func (v *values) quantity(flag, section string) *config.Case {
-	const rest = "gap: 40 mm\n" +
-		"gas: {pressure: 5 Pa, mixture: {Ar: 1}}\n" +
-		"drive: {tones: [{frequency: 13.56 MHz, amplitude: 250 V}]}\n"
+	rest := "gap: 40 mm\ndrive: {tones: [{frequency: 13.56 MHz, amplitude: 250 V}]}\n"
+	if !strings.HasPrefix(section, "gas:") {
+		rest += "gas: {pressure: 5 Pa, mixture: {Ar: 1}}\n"
+	}
 	if !v.c.IsSet(flag) {
 		return nil
 	}

@@ -10,8 +10,12 @@ import (
 // 100 columns. Method: golden files.
 func TestHelp(t *testing.T) {
 	app := newProgram(nil, nil).app()
-	for _, name := range append([]string{"ionfall"}, names(app.Commands)...) {
-		args := []string{name, "--help"}
+	list := append([]string{"ionfall"}, names(app.Commands)...)
+	for _, name := range names(find(app.Commands, "gas").Subcommands) {
+		list = append(list, "gas "+name)
+	}
+	for _, name := range list {
+		args := append(strings.Fields(name), "--help")
 		if name == "ionfall" {
 			args = args[1:]
 		}
@@ -19,7 +23,7 @@ func TestHelp(t *testing.T) {
 		if got.status != 0 || got.errOut != "" {
 			t.Errorf("%s: got status %d and %q on stderr", name, got.status, got.errOut)
 		}
-		golden(t, "help-"+name+".txt", got.out)
+		golden(t, "help-"+strings.ReplaceAll(name, " ", "-")+".txt", got.out)
 		contains(t, got.out, statusHelp)
 		for line := range strings.Lines(got.out) {
 			if n := utf8.RuneCountInString(strings.TrimRight(line, "\n")); n > 100 {
