@@ -66,8 +66,8 @@ func (r *result) rows() []validation.Row {
 	published.Source = "M. M. Turner et al., Phys. Plasmas 20, 013507 (2013)"
 	published.Status = "memory"
 	published.Limit, published.LimitKind = publishedLimit, validation.Relative
-	published.Note = "the benchmark prescribes a set of cross sections that is not bundled; the rows " +
-		"of the other sets show how much the set matters; " + cost
+	published.Note = "the benchmark prescribes a set of cross sections that is not bundled; the " +
+		"rows of the other sets show how much the set matters; " + cost
 	rows := []validation.Row{published.Judged()}
 	if value, ok := independent[fmt.Sprintf("%d %s", r.Case, name)]; ok {
 		same := base
