@@ -23,7 +23,8 @@ func BenchmarkPoisson(b *testing.B) {
 	}
 }
 
-// BenchmarkBarrier is one meeting of two workers that have nothing else to do, threads as in Advance.
+// BenchmarkBarrier is one meeting of two workers that have nothing else to do, threads as in
+// Advance.
 func BenchmarkBarrier(b *testing.B) {
 	bar := newBarrier(2)
 	var group sync.WaitGroup

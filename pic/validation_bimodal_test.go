@@ -208,10 +208,10 @@ func (r *radioSheath) evaluate(t *testing.T) width {
 // 4 % for helium: 5 % are allowed.
 //
 // The published formula, k e Vt/(omega s) sqrt(2 e Vbar/M), has k = 8/3 for the profile of Child
-// and Langmuir, and 2 for a uniform field. By the exact form, k = 2 E s/Vt, twice the capacitance of
-// the sheath in units of eps0/s, for which the collisionless theory of M. A. Lieberman, IEEE Trans.
-// Plasma Sci. 16, 638 (1988), has 1.23 to 1.6 with s the largest width, to which the ions see a
-// field. A result nearer to 8/3 than to 2 passes: within 12.5 %.
+// and Langmuir, and 2 for a uniform field. By the exact form, k = 2 E s/Vt, twice the
+// capacitance of the sheath in units of eps0/s, for which the collisionless theory of M. A.
+// Lieberman, IEEE Trans. Plasma Sci. 16, 638 (1988), has 1.23 to 1.6 with s the largest width,
+// to which the ions see a field. A result nearer to 8/3 than to 2 passes: within 12.5 %.
 func TestValidationBimodalEnergies(t *testing.T) {
 	if testing.Short() {
 		t.Skip("takes some ten seconds")

@@ -59,7 +59,8 @@ func report(runs int) ([]byte, error) {
 	if err := memory(&b); err != nil {
 		return nil, err
 	}
-	return b.Bytes(), pieces(&b)
+	err := pieces(&b)
+	return b.Bytes(), err
 }
 
 // loops times the conditions of the helium benchmark, case 1 (M. M. Turner et al., Phys. Plasmas
@@ -101,7 +102,7 @@ func heliumSpeed(workers, particles int) (float64, error) {
 		return 0, err
 	}
 	s.TakeLedger()
-	rec.Start(1)
+	rec.Start(4) // periods of a batch, as in a run
 	begin := time.Now()
 	moved := int64(0)
 	for range 8 {
