@@ -69,7 +69,7 @@ func TestValidationArgonResolved(t *testing.T) {
 		t.Skip("some minutes: give -validate")
 	}
 	checkArgon(t, "Debye length resolved", "numerics: {cells: 256, steps_per_period: 1200, "+
-		"particles_per_cell: 300, scheme: momentum_conserving, ion_substeps: 8}\n")
+		"particles_per_cell: 100, scheme: momentum_conserving, ion_substeps: 8}\n")
 }
 
 // Goal: the quoted error is the spread between seeds. Method: 20 short runs of a small helium

@@ -1,0 +1,108 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+	"path/filepath"
+	"slices"
+	"strings"
+
+	"ionfall/internal/validation"
+)
+
+// part is a file of rows and the tests that make it.
+type part struct {
+	file  string // in the folder of rows
+	title string
+	about string
+	// The tests that make the rows: package, pattern of their names, more flags.
+	pkg, pattern, flags string
+	takes               string
+	// command makes the rows instead of tests, if given.
+	command string
+	rows                []validation.Row
+}
+
+// repeat is the command that makes the rows anew.
+func (p *part) repeat() string {
+	if p.command != "" {
+		return p.command
+	}
+	return strings.Join(strings.Fields(fmt.Sprintf("go test %s -run %s -count 1 %s -validate "+
+		"-update", p.pkg, p.pattern, p.flags)), " ")
+}
+
+// parts are all parts, from the smallest piece of physics to the whole discharge.
+func parts() []part {
+	return []part{
+		{
+			file: "swarm.json", title: "Collisions: swarms in a uniform field",
+			about: "Electrons and ions in a uniform field, where collisions alone decide: exactly " +
+				"solved models, published solutions, an independent program, measured mobilities.",
+			pkg: "./mcc", pattern: "Validation", flags: "-timeout 1h", takes: "minutes",
+		},
+		{
+			file: "plasma.json", title: "Fields, motion and walls: plasmas with a known solution",
+			about: "Waves, space charge, sheaths and ion energies against theory; balances of a " +
+				"discharge.",
+			pkg: "./pic", pattern: "Validation", flags: "-timeout 1h", takes: "minutes",
+		},
+		{
+			file: "coverage.json", title: "Error bars: do they hold the true value?",
+			about: "Many runs that differ in the seed only, against one very long run with the same " +
+				"numerics. It tests the quoted statistical errors, not the numerics.",
+			pkg: "./internal/run", pattern: "ValidationCoverage", flags: "-timeout 1h",
+			takes: "some minutes",
+		},
+		{
+			file: "convergence.json", title: "Numerics: how far from the limit?",
+			about: "One argon discharge with cells, steps and particles each halved and doubled, for " +
+				"both field schemes, extrapolated; and the automatic choice against a much finer one.",
+			pkg: "./internal/run", pattern: "ValidationConvergence", flags: "-timeout 3h",
+			takes: "a quarter of an hour with two free processors",
+		},
+		{
+			file: "discharge.json", title: "Whole discharges",
+			about: "An argon discharge against an independent program with the same published cross " +
+				"sections, with the automatic numerics and with numerics that resolve the Debye length.",
+			pkg: "./internal/run", pattern: "Argon", flags: "-timeout 1h", takes: "some minutes",
+		},
+		{
+			file: "benchmark.json", title: "The published helium benchmark",
+			about: "Case 1 to its end, with each bundled set of cross sections. The published value " +
+				"belongs to another set.",
+			command: "go run ./bench/benchmark --case 1 --json >result.json; " +
+				"go run ./bench/benchmark --record testdata/validation/benchmark.json result.json",
+			takes: "a minute a run",
+		},
+	}
+}
+
+// readParts returns the parts that have rows. A file of rows that no part names is an error, as
+// nobody could tell how to repeat it.
+func readParts(folder string) ([]part, error) {
+	names, err := filepath.Glob(filepath.Join(folder, "*.json"))
+	if err != nil {
+		return nil, err
+	}
+	if len(names) == 0 {
+		return nil, fmt.Errorf("no rows (*.json) in %s: want to be in the folder of go.mod", folder)
+	}
+	var list []part
+	var bad []error
+	for _, p := range parts() {
+		path := filepath.Join(folder, p.file)
+		if p.rows, err = validation.Read(path); err != nil {
+			bad = append(bad, err)
+		}
+		names = slices.DeleteFunc(names, func(name string) bool { return name == path })
+		if len(p.rows) > 0 {
+			list = append(list, p)
+		}
+	}
+	for _, name := range names {
+		bad = append(bad, fmt.Errorf("%s: no part of the page says how to repeat these rows: "+
+			"want an entry in parts of bench/validation/parts.go", name))
+	}
+	return list, errors.Join(bad...)
+}
