@@ -20,7 +20,7 @@ type part struct {
 	takes               string
 	// command makes the rows instead of tests, if given.
 	command string
-	rows                []validation.Row
+	rows    []validation.Row
 }
 
 // repeat is the command that makes the rows anew.

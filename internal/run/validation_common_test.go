@@ -4,6 +4,8 @@ import (
 	"context"
 	"flag"
 	"fmt"
+	"math"
+	"os"
 	"path/filepath"
 	"strings"
 	"testing"
@@ -15,7 +17,11 @@ import (
 	"golang.org/x/sync/errgroup"
 )
 
-var update = flag.Bool("update", false, "keep the comparisons that were run as rows")
+var (
+	update   = flag.Bool("update", false, "keep the comparisons that were run as rows")
+	keptRuns = flag.String("runs", "", "folder in which the runs of long checks are kept, found "+
+		"again when finished and continued when not; for the same program only")
+)
 
 // rowsFolder holds the rows of comparisons, one file a test.
 const rowsFolder = "../../testdata/validation"
@@ -41,14 +47,17 @@ func runAll(t *testing.T, inputs []string) []*store.Summary {
 	for i, text := range inputs {
 		plans[i] = plan(t, text)
 	}
-	folder := t.TempDir()
+	folder := *keptRuns
+	if folder == "" {
+		folder = t.TempDir()
+	}
 	list := make([]*store.Summary, len(plans))
 	group, ctx := errgroup.WithContext(t.Context())
 	group.SetLimit(2)
 	for i, p := range plans {
 		group.Go(func() error {
 			var err error
-			list[i], err = runOne(ctx, p, filepath.Join(folder, fmt.Sprint(i)))
+			list[i], err = runOne(ctx, p, filepath.Join(folder, p.InputSHA256()[:16]))
 			return err
 		})
 	}
@@ -58,8 +67,20 @@ func runAll(t *testing.T, inputs []string) []*store.Summary {
 	return list
 }
 
+// runOne carries out a plan in the folder, or what is left to do of it there.
 func runOne(ctx context.Context, p *Plan, out string) (*store.Summary, error) {
-	s, _, err := Run(ctx, p, Options{Out: out, Cores: 1})
+	o := Options{Out: out, Cores: 1}
+	var s *store.Summary
+	_, err := os.Stat(out)
+	_, unfinished := os.Stat(out + ".running")
+	switch {
+	case err == nil:
+		s, err = store.ReadSummary(filepath.Join(out, store.SummaryFile))
+	case unfinished == nil:
+		s, _, err = Resume(ctx, out, o)
+	default:
+		s, _, err = Run(ctx, p, o)
+	}
 	if err != nil {
 		return nil, fmt.Errorf("%w, of the input:\n%s", err, p.Input)
 	}
@@ -107,9 +128,9 @@ func doubts(s *store.Summary) string {
 	return strings.Join(list, ", ")
 }
 
-// provenance returns a number of the provenance.
-func provenance(s *store.Summary, key string) float64 {
-	switch v := s.Provenance[key].(type) {
+// number reads a number that may come from memory or from a file.
+func number(v any) float64 {
+	switch v := v.(type) {
 	case int:
 		return float64(v)
 	case int64:
@@ -117,6 +138,35 @@ func provenance(s *store.Summary, key string) float64 {
 	case float64:
 		return v
 	default:
-		return 0
+		return math.NaN()
+	}
+}
+
+// Goal: with a folder for runs, a finished run is not made again, and gives the same. Method: the
+// same short run twice; its folder is looked at for changes.
+func TestKeptRunIsFoundAgain(t *testing.T) {
+	out := filepath.Join(t.TempDir(), "out")
+	first, err := runOne(t.Context(), plan(t, short), out)
+	if err != nil {
+		t.Fatal(err)
+	}
+	before, err := os.Stat(filepath.Join(out, store.SummaryFile))
+	if err != nil {
+		t.Fatal(err)
+	}
+	again, err := runOne(t.Context(), plan(t, short), out)
+	if err != nil {
+		t.Fatal(err)
+	}
+	after, err := os.Stat(filepath.Join(out, store.SummaryFile))
+	if err != nil || !after.ModTime().Equal(before.ModTime()) {
+		t.Errorf("the run was made again (%v)", err)
+	}
+	const path = "ion_flux_m2ps.grounded.all"
+	if a, b := lookup(t, first, path), lookup(t, again, path); a != b {
+		t.Errorf("%s: %v, found again as %v", path, a, b)
+	}
+	if a, b := chosenBy(t, first), chosenBy(t, again); a != b || a.cells != 32 {
+		t.Errorf("numerics %v, found again as %v", a, b)
 	}
 }

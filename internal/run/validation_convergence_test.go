@@ -211,8 +211,8 @@ func (s *schemeRuns) log(t *testing.T) {
 		}
 		te := lookup(t, s.runs[i], centreTemperature)
 		t.Logf("%scentre electron temperature %.3g ± %.1g; %g periods averaged, %.0f s; "+
-			"doubts: %s", line, te.Value, te.SE, provenance(s.runs[i], "averaged_periods"),
-			provenance(s.runs[i], "cpu_s"), doubts(s.runs[i]))
+			"doubts: %s", line, te.Value, te.SE, number(s.runs[i].Provenance["averaged_periods"]),
+			number(s.runs[i].Provenance["cpu_s"]), doubts(s.runs[i]))
 	}
 }
 
@@ -374,15 +374,15 @@ func chosenBy(t *testing.T, s *store.Summary) resolution {
 	if !ok {
 		t.Fatalf("numerics of the run are %v", s.Provenance["numerics"])
 	}
-	number := func(key string) int {
-		v, ok := n[key].(int)
-		if !ok {
+	whole := func(key string) int {
+		v := number(n[key])
+		if math.IsNaN(v) {
 			t.Fatalf("numerics of the run: %s is %v", key, n[key])
 		}
-		return v
+		return int(v)
 	}
 	return resolution{
-		fmt.Sprint(n["scheme"]), number("cells"), number("steps_per_period"),
-		number("particles_per_cell"), number("ion_substeps"),
+		fmt.Sprint(n["scheme"]), whole("cells"), whole("steps_per_period"),
+		whole("particles_per_cell"), whole("ion_substeps"),
 	}
 }

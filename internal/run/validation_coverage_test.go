@@ -133,7 +133,7 @@ func coverageOf(t *testing.T, name, path string, long store.Value, list []*store
 	t.Helper()
 	var held, heldT, bias, spread, quoted float64
 	n := float64(len(list))
-	batches := provenance(list[0], "batches")
+	batches := number(list[0].Provenance["batches"])
 	student := distuv.StudentsT{Sigma: 1, Nu: batches - 1}.Quantile(0.975)
 	for _, s := range list {
 		v := lookup(t, s, path)
