@@ -7,11 +7,11 @@ import (
 // tally counts what happened to the particles of a chunk since the last ledger. Sums of v^2
 // are in the species' units.
 type tally struct {
-	born, emitted, reflected [2]int64 // born: [0] only
-	absorbed                 [2]int64 // by wall
-	bornV2                   float64
-	emittedV2                float64
-	absorbedV2               [2]float64
+	born                         int64    // by collisions
+	emitted, reflected, absorbed [2]int64 // by wall
+	bornV2                       float64
+	emittedV2                    float64
+	absorbedV2                   [2]float64
 }
 
 // Ledger is the account of a stretch of steps: everything that changed the particles and the
@@ -69,7 +69,7 @@ func (sp *Species) takeLedger(weight float64) SpeciesLedger {
 		t := &ch.tally
 		l.Count += int64(len(ch.x))
 		l.Kinetic += joule * ch.v2()
-		l.Born += t.born[0]
+		l.Born += t.born
 		l.BornEnergy += joule * t.bornV2
 		l.EmitEnergy += joule * t.emittedV2
 		for w := range 2 {

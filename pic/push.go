@@ -72,14 +72,14 @@ func (h *halfKick) HalfKicks(index []int32, change []float64) {
 func (s *Simulation) bear(w *worker, electrons *Species, c, ion int, x float64, ve, vi [3]float64) {
 	ch := &electrons.chunks[c]
 	ch.add(x, ve[0], ve[1], ve[2])
-	ch.tally.born[0]++
+	ch.tally.born++
 	ch.tally.bornV2 += ve[0]*ve[0] + ve[1]*ve[1] + ve[2]*ve[2]
 	sp := &s.species[ion]
 	k := float64(sp.Every) / float64(electrons.Every)
 	vi = [3]float64{k * vi[0], k * vi[1], k * vi[2]}
 	ions := &sp.chunks[c]
 	ions.add(x, vi[0], vi[1], vi[2])
-	ions.tally.born[0]++
+	ions.tally.born++
 	ions.tally.bornV2 += vi[0]*vi[0] + vi[1]*vi[1] + vi[2]*vi[2]
 	if !sp.due(w.step) {
 		kernels.Deposit(ions.x[len(ions.x)-1:], w.deposit[(w.step+1)&1][ion])

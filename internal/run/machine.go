@@ -159,9 +159,11 @@ func (p *Plan) averagePeriods() int {
 func (m *machine) decidePilot(row *Row) error {
 	c := &m.control
 	if c.Projecting {
-		if q := m.guessPlasma(row); q.frequency()*m.plan.period() >
+		// From the number of ions alone.
+		density := peakOverMean * row.Content / m.plan.Case.Gap
+		if (plasma{Density: density}).frequency()*m.plan.period() >
 			1.5*pilotQuality.plasmaStep*float64(c.Numerics.StepsPerPeriod) {
-			return m.refinePilot(q)
+			return m.refinePilot(density)
 		}
 		if m.project(row) {
 			c.Projecting = false
@@ -173,13 +175,6 @@ func (m *machine) decidePilot(row *Row) error {
 		return nil
 	}
 	return m.toFinal()
-}
-
-// guessPlasma estimates the plasma from the number of ions alone.
-func (m *machine) guessPlasma(row *Row) plasma {
-	q, _ := m.plan.firstGuess()
-	q.Density = peakOverMean * row.Content / m.plan.Case.Gap
-	return q
 }
 
 // decideSettling projects the density once more, then waits for steadiness.

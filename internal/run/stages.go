@@ -96,8 +96,10 @@ func (m *machine) newRecorder() *diagnostics.Recorder {
 }
 
 // refinePilot goes on with shorter steps, since the density turned out higher than guessed.
-func (m *machine) refinePilot(q plasma) error {
+func (m *machine) refinePilot(density float64) error {
 	was := m.sim
+	q, _ := m.plan.firstGuess()
+	q.Density = density
 	n := m.plan.pilotNumerics(q)
 	n.Cells, n.ParticlesPerCell, n.Chunks = m.control.Numerics.Cells,
 		m.control.Numerics.ParticlesPerCell, m.control.Numerics.Chunks
