@@ -53,6 +53,8 @@ func Mean(series []float64) Estimate {
 			return e
 		}
 		e = fromBatches(batches(series, length), length)
+		// Of the whole series, also of what fills no batch: sums of tables agree with it.
+		e.Mean = mean(series)
 		if e.Lag < 2/math.Sqrt(float64(n)) {
 			return e
 		}

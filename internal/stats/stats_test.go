@@ -83,6 +83,17 @@ func TestDrift(t *testing.T) {
 	}
 }
 
+// Goal: the mean is that of every observation, whatever length the batches take.
+func TestMeanIsOfTheWholeSeries(t *testing.T) {
+	r := rand.New(rand.NewPCG(5, 5))
+	for _, n := range []int{10, 37, 83, 304, 601} {
+		series := autoregressive(r, n, 0.9)
+		if e, m := Mean(series), mean(series); math.Abs(e.Mean-m) > 1e-12 {
+			t.Errorf("%d observations, batches of %d: mean %v, want %v", n, e.Batch, e.Mean, m)
+		}
+	}
+}
+
 func TestFewBatchesHaveNoError(t *testing.T) {
 	if e := Mean([]float64{1, 2, 3}); !math.IsNaN(e.StdErr) || e.Mean != 2 {
 		t.Errorf("three values give %+v", e)
