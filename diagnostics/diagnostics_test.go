@@ -49,11 +49,11 @@ func floats(t *testing.T, tab *table.Table, name string) []float64 {
 
 // Goal: density, temperature and EEPF of a known plasma. Method: a uniform Maxwellian at 3 eV is
 // sampled at step 0 alone, before anything moves: 400 000 independent electrons, of which a
-// tenth is in the centre. Bounds are five standard errors (one false alarm in 1.7e6 each): 0.26
-// % for the temperature of 20 000 electrons (the relative error of an energy is sqrt(2/3) over
-// the root of their number), and the binomial one for the EEPF.
+// quarter is looked at and a tenth is in the centre. Bounds are five standard errors (one false
+// alarm in 1.7e6 each): the relative error of an energy is sqrt(2/3) over the root of their number,
+// that of the EEPF binomial.
 func TestKnownPlasma(t *testing.T) {
-	const particles, steps = 200_000, 400
+	const particles, seen, steps = 400_000, 400_000 / sampleParts, 400
 	s := quiet(t, particles, steps)
 	r := New(s, nil, 0)
 	s.SetObservers(&onlyFirst{r})
@@ -70,12 +70,12 @@ func TestKnownPlasma(t *testing.T) {
 
 	density := floats(t, r.Profiles(), "electron_density_m3")
 	for j, n := range density {
-		if math.Abs(n/1e14-1) > 0.005 { // the quiet start: half a particle of 5000 a cell, doubled at walls
+		if math.Abs(n/1e14-1) > 0.005 { // the quiet start: half a particle of 10 000 a cell, doubled at walls
 			t.Errorf("density at node %d is %.4g, want 1e14", j, n)
 		}
 	}
 	te := r.averages.centerEnergy[0] / r.averages.centerDensity[0] * 2 / 3
-	if want := 5 * math.Sqrt(2.0/3/(centerPart*particles)); math.Abs(te/3-1) > want {
+	if want := 5 * math.Sqrt(2.0/3/(centerPart*seen)); math.Abs(te/3-1) > want {
 		t.Errorf("temperature in the centre %.4f eV, want 3 within %.2g", te, want)
 	}
 	energy := floats(t, r.ElectronEnergy(), "energy_eV")
@@ -87,7 +87,7 @@ func TestKnownPlasma(t *testing.T) {
 		part := rootIntegral(r.eBins.edges[k], r.eBins.edges[k+1])
 		norm += f[gap+k] * part
 		want := 2 / math.Sqrt(math.Pi) * math.Pow(3, -1.5) * math.Exp(-energy[gap+k]/3)
-		expected := want * part * particles
+		expected := want * part * seen
 		if expected > 50 && math.Abs(f[gap+k]-want) > 5*want/math.Sqrt(expected)+0.002*want {
 			t.Errorf("EEPF at %.2f eV is %.4g, want %.4g", energy[gap+k], f[gap+k], want)
 		}
@@ -111,21 +111,22 @@ func copyPhase(r *Recorder, p int) {
 	}
 }
 
-// Goal: phases are not biased. Method: over Stride periods each step of the period must be due
-// exactly once, for periods with many and few divisors; and after periodsToSee every bin is seen.
+// Goal: phases and chunks are not biased. Method: over Stride x sampleParts periods each step of the
+// period must be due exactly once for every part of the chunks, for periods with many and few
+// divisors; and after periodsToSee every bin is seen.
 func TestSamplingCoversThePeriod(t *testing.T) {
-	for _, steps := range []int{20, 64, 100, 256, 400, 960, 1200, 1376, 4096} {
+	for _, steps := range []int{20, 25, 64, 100, 256, 400, 960, 1200, 1376, 4096} {
 		s := quiet(t, 100, steps)
 		r := New(s, nil, 0)
 		r.Start(1)
-		seen := make([]int, steps)
-		for n := range int64(steps) * r.stride {
+		seen := make([][sampleParts]int, steps)
+		for n := range int64(steps) * r.stride * sampleParts {
 			if r.Due(n) {
-				seen[n%int64(steps)]++
+				seen[n%int64(steps)][r.part(n)]++
 			}
 		}
 		for step, n := range seen {
-			if n != 1 {
+			if n != [sampleParts]int{1, 1, 1, 1} {
 				t.Fatalf("%d steps, stride %d: step %d is sampled %d times", steps, r.stride, step, n)
 			}
 		}

@@ -39,6 +39,7 @@ type Config struct {
 	Isolated   bool
 	Electrodes [2]Electrode // by Wall
 	Species    []Species
+	Relaxation Relaxation
 	Weight     float64 // W [1/m2]
 	Chunks     int
 	Seed       uint64
@@ -71,6 +72,10 @@ func (c *Config) check() error {
 		return fmt.Errorf("pic: %d chunks, want 1 to %d", c.Chunks, MaxChunks)
 	case len(c.Species) < 1 || len(c.Species) > MaxSpecies:
 		return fmt.Errorf("pic: %d species, want 1 to %d", len(c.Species), MaxSpecies)
+	}
+	if r := c.Relaxation; r.Pairs != nil && (r.Every < 1 || c.StepsPerPeriod%r.Every != 0) {
+		return fmt.Errorf("pic: electrons collide with each other every %d steps, which does not "+
+			"divide the %d of a period", r.Every, c.StepsPerPeriod)
 	}
 	if c.Isolated && (c.Drive.Bias != 0 || len(c.Drive.Tones) > 0) {
 		return fmt.Errorf("pic: an isolated electrode has no drive")

@@ -111,7 +111,7 @@ type discharge struct {
 	scheme    Scheme
 	seed      uint64
 	inert     bool // no collisions
-	plain     bool // no secondaries, no reflection
+	plain     bool // no secondaries, no reflection, no electrons colliding with each other
 }
 
 func smallDischarge() discharge {
@@ -131,6 +131,7 @@ func (d discharge) build(t testing.TB) *Simulation {
 		Weight: d.density * 0.02 / float64(d.particles),
 	}
 	if !d.plain {
+		c.Relaxation = Relaxation{Pairs: mcc.NewCoulomb(10, c.VelocityUnit(1)), Every: 4}
 		e := Electrode{IonSecondaryYield: 0.3, SecondaryEnergyEV: 2, ElectronReflection: 0.2}
 		c.Electrodes = [2]Electrode{e, e}
 	}

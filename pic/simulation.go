@@ -54,6 +54,7 @@ type worker struct {
 	frame          Frame
 	events         []Event
 	half           halfKick
+	pairs          pairing
 }
 
 // New returns an empty discharge at step 0. Fill it by Load or Add, then Advance.
@@ -243,6 +244,7 @@ func (s *Simulation) work(w *worker) {
 		s.observe(w)                // read-only: diagnostics
 		s.carryDensity(w)           // species that rest keep their deposit
 		for c := w.index; c < s.config.Chunks; c += len(s.workers) {
+			s.relax(w, c) // electrons with each other
 			for i := range s.species {
 				if s.species[i].due(w.step) {
 					s.collide(w, i, c) // null-collision Monte Carlo with the gas

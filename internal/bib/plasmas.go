@@ -4,6 +4,11 @@ package bib
 func plasmas() []Entry {
 	return []Entry{
 		{
+			Key:      "nanbu-1997",
+			Citation: "K. Nanbu, Phys. Rev. E 55, 4642 (1997)",
+			DOI:      "10.1103/PhysRevE.55.4642", Status: StatusMemory,
+		},
+		{
 			Key: "turner-2013",
 			Citation: "M. M. Turner, A. Derzsi, Z. Donko, D. Eremin, S. J. Kelly, T. Lafleur and " +
 				"T. Mussenbrock, Phys. Plasmas 20, 013507 (2013)",

@@ -20,6 +20,8 @@ type Case struct {
 	Film *Film
 	// IonEnergyThresholds are the energies above which the ion flux is asked for [eV].
 	IonEnergyThresholds []float64
+	// CoulombCollisions of the electrons with each other.
+	CoulombCollisions bool
 	// Seed selects the random numbers.
 	Seed     uint64
 	Numerics Numerics

@@ -50,6 +50,7 @@ func TestEveryKey(t *testing.T) {
 		Initial:             Initial{2.56e14, 2.5 * 1.602176634e-19 / 1.380649e-23},
 		Film:                &Film{0.3e-9, 5e28},
 		IonEnergyThresholds: []float64{20, 50},
+		CoulombCollisions:   true,
 		Seed:                math.MaxUint64,
 		Numerics: Numerics{
 			512, 4000, 200, "energy_conserving", 10, 5000, 1000,
@@ -122,8 +123,8 @@ func TestEqual(t *testing.T) {
 			t.Errorf("a change of %s makes no difference", path)
 		}
 	}, "")
-	if changed != 33 {
-		t.Errorf("%d fields were changed, want 33", changed)
+	if changed != 34 {
+		t.Errorf("%d fields were changed, want 34", changed)
 	}
 	same.IonEnergyThresholds = []float64{}
 	if !c.Equal(same) {

@@ -39,6 +39,11 @@ func layout(c *Case) mapping {
 			doc: "The ion flux above each of these energies is reported.",
 		},
 		{
+			key: "coulomb_collisions", value: boolean{&c.CoulombCollisions},
+			doc: "Electrons collide with each other, which fills the tail and cools the middle of " +
+				"their energies where the plasma is dense (Nanbu 1997). Default: false.",
+		},
+		{
 			key: "seed", value: seed{&c.Seed},
 			doc: "Selects the random numbers; the same seed gives the same bits. Default: 1.",
 		},

@@ -17,4 +17,6 @@ const (
 	Swarm Purpose = 5
 	// Refinement moves a state to another grid.
 	Refinement Purpose = 6
+	// Coulomb pairs electrons and turns their relative velocity.
+	Coulomb Purpose = 7
 )

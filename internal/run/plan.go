@@ -224,6 +224,7 @@ func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 		Scheme: n.scheme(), Drive: p.drive(), Weight: weight, Chunks: n.Chunks, Seed: p.Case.Seed,
 		Kernels: p.Kernels,
 	}
+	c.Relaxation = p.relaxation(&c)
 	for wall, e := range []config.Electrode{p.Case.Electrodes.Powered, p.Case.Electrodes.Grounded} {
 		c.Electrodes[wall] = pic.Electrode{
 			IonSecondaryYield: e.IonSecondaryYield, SecondaryEnergyEV: e.SecondaryElectronEnergy,

@@ -149,6 +149,9 @@ func (m *machine) references() []store.Reference {
 		why = append(why, [2]string{"lewis-1970", "energy-conserving field"},
 			[2]string{"powis-kaganovich-2024", "cells of several Debye lengths"})
 	}
+	if m.plan.Case.CoulombCollisions {
+		why = append(why, [2]string{"nanbu-1997", "collisions of electrons with each other"})
+	}
 	var list []store.Reference
 	for _, w := range why {
 		if e, ok := bib.Lookup(w[0]); ok {
