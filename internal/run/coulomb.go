@@ -14,15 +14,9 @@ const (
 	leastRelaxations = 4
 )
 
-// coulombLogarithm is that of the expected plasma, for the whole run: a factor of 3 in the density
-// changes it by 5 %.
-func (p *Plan) coulombLogarithm() float64 {
-	q, _ := p.firstGuess()
-	return mcc.CoulombLogarithm(q.Density, q.ElectronEV)
-}
-
 // relaxation returns the collisions of the electrons with each other, as often as the expected
-// plasma needs them.
+// plasma needs them. Its Coulomb logarithm holds for the whole run: a factor of 3 in the density
+// changes it by 5 %.
 func (p *Plan) relaxation(c *pic.Config) pic.Relaxation {
 	if !p.Case.CoulombCollisions {
 		return pic.Relaxation{}
