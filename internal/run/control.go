@@ -44,6 +44,7 @@ type round struct {
 	Number  int
 	Periods int     // made
 	Length  int     // to make
+	Last    bool    // of the greatest length: without growth, the last one
 	Content float64 // ions at its start [1/m2]
 	Doubled int     // times that the length was doubled
 }

@@ -29,10 +29,10 @@ const (
 
 // startRound begins to measure the growth of the density.
 func (c *control) startRound(content float64) {
-	length := int(c.Residence/firstRounds) << c.Round.Doubled
-	length = max(roundPeriods, min(length, int(c.Residence/lastRounds)))
+	length, longest := int(c.Residence/firstRounds)<<c.Round.Doubled, int(c.Residence/lastRounds)
 	c.Round = round{
-		Number: c.Round.Number + 1, Length: length, Content: content, Doubled: c.Round.Doubled,
+		Number: c.Round.Number + 1, Length: max(roundPeriods, min(length, longest)),
+		Last: length >= longest, Content: content, Doubled: c.Round.Doubled,
 	}
 }
 
@@ -57,7 +57,7 @@ func (m *machine) project(row *Row) (done bool) {
 	switch calm := math.Abs(jump) < math.Max(leastJump, 2*chance); {
 	case r.Number == 1: // sees the start's own transient
 	case calm:
-		done = r.Length >= int(c.Residence/lastRounds)
+		done = r.Last
 		c.Round.Doubled++
 	default:
 		m.sim.ScaleWeight(math.Exp(jump))
