@@ -27,7 +27,7 @@ func mustParse(t *testing.T, args ...string) *options {
 func results(t *testing.T, args ...string) []result {
 	t.Helper()
 	var out bytes.Buffer
-	if err := run(mustParse(t, append(args, "--json")...), &out, io.Discard); err != nil {
+	if err := carryOut(mustParse(t, append(args, "--json")...), &out, io.Discard); err != nil {
 		t.Fatal(err)
 	}
 	var list []result
@@ -187,7 +187,7 @@ func TestShortRun(t *testing.T) {
 	}
 	var out bytes.Buffer
 	o := mustParse(t, "--periods", "12", thin)
-	if err := run(o, &out, io.Discard); err != nil {
+	if err := carryOut(o, &out, io.Discard); err != nil {
 		t.Fatal(err)
 	}
 	for _, want := range []string{
@@ -212,6 +212,7 @@ func TestWrongCommandLines(t *testing.T) {
 		},
 		{"--start-density -1 more", "got the argument \"more\", want flags only\n" +
 			"--start-density: got -1 /m3, want 0 to 1e+17"},
+		{"--fast --set phelps", "--fast: want no --helium, --set, --periods and --start-density"},
 	} {
 		_, err := parse(strings.Fields(c.args), io.Discard)
 		if err == nil || err.Error() != c.want {
@@ -222,7 +223,7 @@ func TestWrongCommandLines(t *testing.T) {
 		"--set other":             "unknown set of He \"other\": want one of default, phelps",
 		"--helium /does/not/work": "--helium: open /does/not/work",
 	} {
-		err := run(mustParse(t, strings.Fields(args)...), io.Discard, io.Discard)
+		err := carryOut(mustParse(t, strings.Fields(args)...), io.Discard, io.Discard)
 		if err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("%s: %v, want %s", args, err, want)
 		}

@@ -3,6 +3,7 @@
 //
 //	go run ./bench/benchmark --case 1 [--helium FILE [--database NAME]] [--set NAME|all]
 //	    [--scheme NAME] [--periods N] [--start-density N] [--cores N] [--seed N] [--json]
+//	go run ./bench/benchmark --case 1 --fast [--cores N] [--seed N] [--json]
 //	go run ./bench/benchmark --record testdata/validation/benchmark.json RESULT.json ...
 //
 // The answer goes to stdout, progress to stderr. The benchmark prescribes a set of cross sections
@@ -33,6 +34,7 @@ type options struct {
 	cores        int
 	seed         uint64
 	json         bool
+	fast         bool
 	record       string   // file of validation rows; then no run is made
 	results      []string // to record
 }
@@ -51,7 +53,7 @@ func main() {
 		fmt.Fprintln(os.Stderr, "benchmark:", err)
 		os.Exit(exitUsage)
 	}
-	if err := run(o, os.Stdout, os.Stderr); err != nil {
+	if err := carryOut(o, os.Stdout, os.Stderr); err != nil {
 		fmt.Fprintln(os.Stderr, "benchmark:", err)
 		os.Exit(exitFailed)
 	}
@@ -76,6 +78,8 @@ func parse(args []string, help io.Writer) (*options, error) {
 	f.Uint64Var(&o.seed, "seed", 1, "seed of the random numbers")
 	f.StringVar(&o.record, "record", "",
 		"merge finished results, JSON files given as arguments, into this file of validation rows")
+	f.BoolVar(&o.fast, "fast", false,
+		"numerics and length as the program chooses them, instead of the published ones")
 	f.BoolVar(&o.json, "json", false, "print JSON, with the complete profiles")
 	if err := f.Parse(args); err != nil {
 		return nil, err
@@ -120,6 +124,9 @@ func (o *options) check(rest []string) error {
 	if o.cores < 1 {
 		list = append(list, fmt.Errorf("--cores: got %d, want at least 1", o.cores))
 	}
+	if o.fast && (o.file != "" || o.set != "" || o.periods != 0 || o.startDensity != 0) {
+		list = append(list, errors.New("--fast: want no --helium, --set, --periods and --start-density"))
+	}
 	if o.database != "" && o.file == "" {
 		list = append(list, errors.New("--database: want --helium with it"))
 	}
@@ -129,14 +136,21 @@ func (o *options) check(rest []string) error {
 // maxStartDensity keeps the particles of a start within the memory of a workstation.
 const maxStartDensity = 1e17
 
-// run makes the runs that are asked for and prints them.
-func run(o *options, out, progress io.Writer) error {
+// carryOut makes the runs that are asked for and prints them.
+func carryOut(o *options, out, progress io.Writer) error {
 	if o.record != "" {
 		return recordRows(o.record, o.results)
 	}
 	c, err := findCase(o.number)
 	if err != nil {
 		return err
+	}
+	if o.fast {
+		r, err := c.fast(o, progress)
+		if err != nil {
+			return err
+		}
+		return show(o, out, &c, []result{r})
 	}
 	gases, err := o.gases()
 	if err != nil {
@@ -155,8 +169,12 @@ func run(o *options, out, progress io.Writer) error {
 		}
 		list = append(list, r)
 	}
+	return show(o, out, &c, list)
+}
+
+func show(o *options, out io.Writer, c *benchmarkCase, list []result) error {
 	if o.json {
 		return printJSON(out, list)
 	}
-	return printText(out, &c, list)
+	return printText(out, c, list)
 }

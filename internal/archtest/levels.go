@@ -20,6 +20,7 @@ func Levels() Rules {
 		Levels: map[string]int{
 			"cmd/ionfall":         7,
 			"bench/speed":         7,
+			"bench/fastpath":      7,
 			"bench/benchmark":     7,
 			"bench/validation":    7,
 			"examples":            7,
