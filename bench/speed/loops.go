@@ -26,7 +26,7 @@ type discharge struct {
 	plasma       float64 // density [1/m3]
 }
 
-// helium are the conditions of the helium benchmark, case 1, with its numerics (M. M. Turner et al.,
+// helium are the conditions and numerics of the helium benchmark, case 1 (M. M. Turner et al.,
 // Phys. Plasmas 20, 013507 (2013)).
 func helium() discharge {
 	return discharge{
