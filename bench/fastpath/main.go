@@ -30,7 +30,8 @@ const resultsFile = "bench/fastpath.json"
 type discharge struct {
 	name, title string
 	input       string
-	cold        bool // the resolved run makes no projections of the density either
+	// resolved numerics with which the discharge is known; "" for finer ones than the automatic.
+	resolved string
 }
 
 func plates(gas, pressure, gap, frequency, amplitude string) string {
@@ -39,40 +40,46 @@ func plates(gas, pressure, gap, frequency, amplitude string) string {
 		"accuracy: {ion_energy: 1 %%, ion_flux: 1 %%}\n", gap, pressure, gas, frequency, amplitude)
 }
 
+// numerics are fully resolved ones, without projections of the density.
+func numerics(cells, steps, perCell int) string {
+	return fmt.Sprintf("{scheme: momentum_conserving, cells: %d, steps_per_period: %d, "+
+		"particles_per_cell: %d, ion_substeps: 1, density_extrapolation: off}", cells, steps, perCell)
+}
+
 // discharges are two for the time to an answer, and six further ones.
 func discharges() []discharge {
 	return []discharge{
 		{
 			"helium-4pa", "helium, 4 Pa, 67 mm, 450 V",
-			plates("He", "3.993 Pa", "67 mm", "13.56 MHz", "450 V"), true,
+			plates("He", "3.993 Pa", "67 mm", "13.56 MHz", "450 V"), numerics(128, 400, 512),
 		},
 		{
 			"argon-5pa", "argon, 5 Pa, 40 mm, 250 V",
-			plates("Ar", "5 Pa", "40 mm", "13.56 MHz", "250 V"), true,
+			plates("Ar", "5 Pa", "40 mm", "13.56 MHz", "250 V"), numerics(256, 1200, 400),
 		},
 		{
 			"argon-20pa", "argon, 20 Pa, 40 mm, 150 V",
-			plates("Ar", "20 Pa", "40 mm", "13.56 MHz", "150 V"), false,
+			plates("Ar", "20 Pa", "40 mm", "13.56 MHz", "150 V"), "",
 		},
 		{
 			"argon-27mhz", "argon, 5 Pa, 40 mm, 100 V at 27.12 MHz",
-			plates("Ar", "5 Pa", "40 mm", "27.12 MHz", "100 V"), false,
+			plates("Ar", "5 Pa", "40 mm", "27.12 MHz", "100 V"), "",
 		},
 		{
 			"helium-13pa", "helium, 13.3 Pa, 67 mm, 200 V",
-			plates("He", "13.3 Pa", "67 mm", "13.56 MHz", "200 V"), false,
+			plates("He", "13.3 Pa", "67 mm", "13.56 MHz", "200 V"), "",
 		},
 		{
 			"helium-40pa", "helium, 40 Pa, 67 mm, 150 V",
-			plates("He", "40 Pa", "67 mm", "13.56 MHz", "150 V"), false,
+			plates("He", "40 Pa", "67 mm", "13.56 MHz", "150 V"), "",
 		},
 		{
 			"argon-1pa", "argon, 1 Pa, 60 mm, 250 V",
-			plates("Ar", "1 Pa", "60 mm", "13.56 MHz", "250 V"), false,
+			plates("Ar", "1 Pa", "60 mm", "13.56 MHz", "250 V"), "",
 		},
 		{
 			"argon-100pa", "argon, 100 Pa, 25 mm, 120 V",
-			plates("Ar", "100 Pa", "25 mm", "13.56 MHz", "120 V"), false,
+			plates("Ar", "100 Pa", "25 mm", "13.56 MHz", "120 V"), "",
 		},
 	}
 }
@@ -129,7 +136,7 @@ func compare(only, dir string, cores int, auto bool) error {
 		if auto {
 			continue
 		}
-		side, err = d.run(filepath.Join(dir, d.name+"-resolved"), d.resolved(side), cores)
+		side, err = d.run(filepath.Join(dir, d.name+"-resolved"), d.finer(side), cores)
 		if err != nil {
 			return err
 		}
@@ -140,20 +147,18 @@ func compare(only, dir string, cores int, auto bool) error {
 	return nil
 }
 
-// resolved returns numerics with a quarter of the cell size, two thirds of the step, ions moved
-// every fourth step, and twice the particles of the automatic run, momentum conserving.
-func (d discharge) resolved(auto *Side) string {
+// finer returns the resolved numerics, or such with a quarter of the automatic cell size, two thirds
+// of the step, ions moved every fourth step, and twice the particles, momentum conserving.
+func (d discharge) finer(auto *Side) string {
+	if d.resolved != "" {
+		return d.resolved
+	}
 	get := func(key string) float64 { return auto.Numerics[key].(float64) }
 	cells := 4 * get("cells")
 	steps := 4 * int(1.5*get("steps_per_period")/4)
 	perCell := int(2*get("particles_per_cell")*get("cells")/cells + 0.5)
-	extrapolation := "auto"
-	if d.cold {
-		extrapolation = "off"
-	}
 	return fmt.Sprintf("{scheme: momentum_conserving, cells: %g, steps_per_period: %d, "+
-		"particles_per_cell: %d, ion_substeps: 4, density_extrapolation: %s}",
-		cells, steps, perCell, extrapolation)
+		"particles_per_cell: %d, ion_substeps: 4}", cells, steps, perCell)
 }
 
 // run makes one run, or reads it if it is there.

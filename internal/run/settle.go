@@ -13,10 +13,10 @@ const (
 	// firstRounds and lastRounds are how many rounds fit into the residence time of an ion: short
 	// ones find the density coarsely, longer ones finely.
 	firstRounds, lastRounds = 15, 4
-	// projection is the part of the residence time by which a round's growth is carried ahead.
-	projection = 0.4
+	// projection is the part of the way to where a round's growth leads that is gone at once.
+	projection = 0.8
 	// largestJump bounds ln(density) of one projection; below leastJump none is worth it.
-	largestJump, leastJump = 0.5, 0.005
+	largestJump, leastJump = 0.7, 0.005
 	// mostRounds ends the projection; from then on the steadiness test decides alone.
 	mostRounds = 60
 	// transitsToSettle is how many sheath transits of an ion the undisturbed settling lasts.
@@ -48,11 +48,10 @@ func (m *machine) project(row *Row) (done bool) {
 	}
 	r := c.Round
 	growth := math.Log(row.Content/r.Content) / float64(r.Length)
-	jump := projection * c.Residence * growth
+	jump := projected(projection * c.Residence * growth)
 	// Births and losses of n particles in the round scatter the growth.
 	chance := projection * c.Residence / float64(r.Length) *
 		math.Sqrt(2*float64(r.Length)/c.Residence/float64(row.Ions))
-	jump = math.Max(-largestJump, math.Min(largestJump, jump))
 	content := row.Content
 	switch calm := math.Abs(jump) < math.Max(leastJump, 2*chance); {
 	case r.Number == 1: // sees the start's own transient
@@ -67,6 +66,12 @@ func (m *machine) project(row *Row) (done bool) {
 	}
 	c.startRound(content)
 	return done || r.Number >= mostRounds
+}
+
+// projected returns ln(n*/n) for the way w = (n* - n)/n that is to be gone: births do not follow the
+// density much while losses do, so dn/dt = (n* - n)/T with the residence time T.
+func projected(w float64) float64 {
+	return math.Log(math.Max(math.Exp(-largestJump), math.Min(math.Exp(largestJump), 1+w)))
 }
 
 // watched is a quantity whose drift is tested, with the drift that would not matter.

@@ -132,7 +132,7 @@ func (m *machine) toFinal() error {
 	m.adopt(s, n)
 	m.control.Event = "final numerics"
 	m.control.Projecting = true
-	m.control.Round.Number, m.control.Round.Doubled = 1, 1 // no transient is to be expected
+	m.control.Round.Number, m.control.Round.Doubled = 1, 2 // no transient is to be expected
 	m.control.startRound(m.history[len(m.history)-1].Content)
 	return nil
 }
