@@ -147,8 +147,8 @@ func compare(only, dir string, cores int, auto bool) error {
 	return nil
 }
 
-// finer returns the resolved numerics, or such with a quarter of the automatic cell size, two thirds
-// of the step, ions moved every fourth step, and twice the particles, momentum conserving.
+// finer returns the resolved numerics, or such with a quarter of the automatic cell size, two
+// thirds of the step, ions moved every fourth step, and twice the particles, momentum conserving.
 func (d discharge) finer(auto *Side) string {
 	if d.resolved != "" {
 		return d.resolved

@@ -68,8 +68,8 @@ func (m *machine) project(row *Row) (done bool) {
 	return done || r.Number >= mostRounds
 }
 
-// projected returns ln(n*/n) for the way w = (n* - n)/n that is to be gone: births do not follow the
-// density much while losses do, so dn/dt = (n* - n)/T with the residence time T.
+// projected returns ln(n*/n) for the way w = (n* - n)/n that is to be gone: births do not follow
+// the density much while losses do, so dn/dt = (n* - n)/T with the residence time T.
 func projected(w float64) float64 {
 	return math.Log(math.Max(math.Exp(-largestJump), math.Min(math.Exp(largestJump), 1+w)))
 }
