@@ -110,7 +110,7 @@ func (m *machine) decide() error {
 	c := &m.control
 	row := &m.history[len(m.history)-1]
 	if row.Electrons == 0 || row.Ions == 0 {
-		return errors.New("the plasma has gone out: no charged particles are left at these settings")
+		return m.goneOut()
 	}
 	if m.fixedLength() {
 		m.decideFixed()

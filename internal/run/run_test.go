@@ -289,6 +289,30 @@ func TestAverageOverEverything(t *testing.T) {
 }
 
 // Goal: unknown gases and mixtures without data are errors with a place.
+// Goal: a plasma that the numerics have lost is told from one that cannot burn. Method: a step
+// that does not resolve the plasma frequency; a voltage below that of breakdown.
+func TestPlasmaGoesOut(t *testing.T) {
+	for _, c := range []struct{ input, want string }{
+		{
+			strings.NewReplacer("8e14", "8e16", "steps_per_period: 480", "steps_per_period: 96",
+				"periods: 24, average_periods: 20", "periods: 400").Replace(short),
+			"the numerics have done it",
+		},
+		{
+			strings.NewReplacer("200 V", "15 V", "periods: 24, average_periods: 20", "periods: 4000").
+				Replace(short),
+			"the plasma has gone out: no charged particles are left at these settings",
+		},
+	} {
+		_, _, err := Run(context.Background(), plan(t, c.input), Options{
+			Out: filepath.Join(t.TempDir(), "r"), Cores: 1,
+		})
+		if err == nil || !strings.Contains(err.Error(), c.want) {
+			t.Errorf("got %v, want an error with %q", err, c.want)
+		}
+	}
+}
+
 func TestUnknownGas(t *testing.T) {
 	for _, c := range []struct{ text, want string }{
 		{"{Arr: 1}", `case.yaml:1:33: gas.mixture.Arr: got "Arr", want one of Ar, He; did you mean "Ar"?`},
