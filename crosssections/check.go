@@ -24,6 +24,7 @@ func (r *gasReader) check(folder string) {
 		names[p.name] = true
 		r.checkProcess(p)
 	}
+	r.checkPairs()
 	r.checkSets()
 }
 
@@ -38,9 +39,12 @@ func (r *gasReader) checkIons() {
 			r.at(ion.at, "ions.charge", fmt.Sprintf("%d for %q", ion.charge, ion.name),
 				fmt.Sprintf("%d, as the name ends", chargeOf(ion.name)))
 		}
-		if ion.massU == 0 && strings.TrimRight(ion.name, "+-") != r.out.name {
-			r.at(ion.at, "ions.mass_u", "nothing",
-				"a mass: only the ion of the gas itself can do without")
+		if ion.massU == 0 && strings.TrimRight(ion.name, "+-") != r.formula() {
+			if _, known := formulaMass(ion.name); !known {
+				r.at(ion.at, "ions.mass_u", "nothing",
+					"a mass: only the ion of the gas itself, or one whose name is a formula, can "+
+						"do without")
+			}
 		}
 	}
 }
@@ -53,11 +57,26 @@ func (r *gasReader) checkProcess(p *processEntry) {
 		r.at(p.at, "threshold_eV", fmt.Sprintf("%g eV", p.threshold),
 			"none: "+p.kind.String()+" has no threshold")
 	}
-	if !p.kind.OfElectron() && !r.isIon(p.projectile) {
+	if p.section == "ion" && !r.isIon(p.projectile) {
 		r.atUnknown(p.at, "projectile", "", p.projectile, "one of the ions of the gas",
 			r.ionNames())
 	}
+	if p.section == "neutral" && chargeOf(p.projectile) != 0 {
+		r.at(p.at, "projectile", quoted(p.projectile), "a neutral")
+	}
+	if p.kind != Reaction && (p.defect != 0 || p.kineticPart != 0) {
+		r.at(p.at, "defect_eV", "an energy defect of "+p.kind.String(), "one of a reaction")
+	}
+	if p.law != nil && p.law.langevin && p.law.mobility == 0 && p.target == "" &&
+		r.out.polarizability.Value == 0 {
+		r.at(p.at, "langevin", "no polarizability of the gas",
+			"the key polarizability, or mobility_cm2pVs")
+	}
 	r.checkProducts(p)
+	r.checkBranches(p)
+	if p.law != nil {
+		return
+	}
 	if p.file != path.Base(p.file) || path.Ext(p.file) != ".csv" {
 		r.at(p.fileAt, "file", quoted(p.file), "a .csv file in the folder of the gas")
 	}
@@ -66,7 +85,7 @@ func (r *gasReader) checkProcess(p *processEntry) {
 // checkProducts demands what the kind needs and the balance of charge.
 func (r *gasReader) checkProducts(p *processEntry) {
 	if len(p.products) == 0 {
-		if p.kind.needsProducts() {
+		if p.kind.needsProducts() && len(p.branches) == 0 {
 			r.at(p.at, "products", "nothing", "all products: "+p.kind.String()+" has its own")
 		}
 		return
@@ -85,11 +104,96 @@ func (r *gasReader) checkProducts(p *processEntry) {
 		r.at(p.productsAt, "products", fmt.Sprintf("charge %+d in all", sum),
 			fmt.Sprintf("%+d, that of the projectile", want))
 	}
-	want := map[Kind]int{Ionization: 2, Attachment: 0, Excitation: 1, Elastic: 1, Effective: 1}
+	want := map[Kind]int{
+		Ionization: 2, Attachment: 0, Excitation: 1, Elastic: 1, Effective: 1,
+		Rotation: 1, Vibration: 1, Dissociation: 1,
+	}
 	if n, fixed := want[p.kind]; fixed && electrons < n || p.kind == Attachment && electrons > 0 {
 		r.at(p.productsAt, "products", fmt.Sprintf("%d electrons", electrons),
 			fmt.Sprintf("%d for %s", n, p.kind))
 	}
+	if off := imbalance([]string{p.projectile, r.targetOf(p)}, p.products); off != "" {
+		r.at(p.productsAt, "products", off, "the atoms of "+p.projectile+" and "+r.targetOf(p))
+	}
+}
+
+// checkBranches demands of the branches what is demanded of products, and that they are all.
+func (r *gasReader) checkBranches(p *processEntry) {
+	if len(p.branches) == 0 {
+		return
+	}
+	if p.kind != Ionization && p.kind != Attachment {
+		r.at(p.at, "branches", "branches of "+p.kind.String(), "ionization or attachment")
+		return
+	}
+	sum := 0.0
+	lowest := p.branches[0].appearance
+	for _, b := range p.branches {
+		one := *p
+		one.branches, one.products, one.productsAt, one.at = nil, b.products, b.at, b.at
+		r.checkProducts(&one)
+		sum += b.part
+		lowest = min(lowest, b.appearance)
+		if b.appearance < p.threshold {
+			r.at(b.at, "branches.appearance_eV", fmt.Sprintf("%g eV", b.appearance),
+				fmt.Sprintf("at least the threshold, %g eV", p.threshold))
+		}
+	}
+	if sum < 1-branchTolerance || sum > 1+branchTolerance {
+		r.at(p.branches[0].at, "branches", fmt.Sprintf("parts with the sum %.6g", sum), "the sum 1")
+	}
+	if lowest > p.threshold {
+		r.at(p.at, "branches", fmt.Sprintf("no branch between %g and %g eV", p.threshold, lowest),
+			"one from the threshold on")
+	}
+}
+
+// branchTolerance is the rounding allowed of parts that sum to 1.
+const branchTolerance = 1e-6
+
+// checkPairs demands known reactants of opposite charge and the balance of charge and atoms.
+func (r *gasReader) checkPairs() {
+	for i := range r.out.pairs {
+		p := &r.out.pairs[i]
+		sum := 0
+		for _, name := range p.reactants {
+			if name != ElectronName && !r.isIon(name) {
+				r.atUnknown(p.at, "reactants", "", name, "e and the ions of the gas", r.ionNames())
+			}
+			sum += chargeOf(name)
+		}
+		if len(p.reactants) != 2 || chargeOf(p.reactants[0])*chargeOf(p.reactants[1]) >= 0 {
+			r.at(p.at, "reactants", strings.Join(p.reactants, ", "), "two of opposite charge")
+			continue
+		}
+		have := 0
+		for _, name := range p.products {
+			have += chargeOf(name)
+		}
+		if have != sum || sum != 0 {
+			r.at(p.at, "products", fmt.Sprintf("charge %+d in all", have),
+				"0, from reactants of charge 0 in all")
+		}
+		if off := imbalance(p.reactants, p.products); off != "" {
+			r.at(p.at, "products", off, "the atoms of "+strings.Join(p.reactants, " and "))
+		}
+	}
+}
+
+// targetOf is the formula of the gas that a process collides with.
+func (r *gasReader) targetOf(p *processEntry) string {
+	if p.target != "" {
+		return p.target
+	}
+	return r.formula()
+}
+
+// formula is that of the gas: its name, unless another is given.
+func (r *gasReader) formula() string {
+	if r.out.formula != "" {
+		return r.out.formula
+	}
+	return r.out.name
 }
 
 func (r *gasReader) checkSets() {
@@ -160,14 +264,20 @@ func (r *gasReader) checkMembers(set *setEntry, members []processEntry, at *yaml
 		"1")
 }
 
-// checkTable demands that nothing happens below the threshold.
-func checkTable(p *processEntry, t *TableFile, c *complaints) {
+// checkTable demands that nothing happens below the threshold, which is factor times higher in
+// the frame of the table, and something above it.
+func checkTable(p *processEntry, t *TableFile, factor float64, c *complaints) {
+	threshold := p.cost() * factor
 	for i, e := range t.Table.Energy {
-		if q := t.Table.CrossSection[i]; e < p.threshold && q != 0 {
+		if q := t.Table.CrossSection[i]; e < threshold*(1-1e-9) && q != 0 {
 			c.add(t.lines[i], 1, "cross_section_m2", fmt.Sprintf("%g m2 at %g eV", q, e),
-				fmt.Sprintf("0 below the threshold of %g eV", p.threshold))
+				fmt.Sprintf("0 below the threshold of %g eV", threshold))
 			return
 		}
+	}
+	if last := len(t.lines) - 1; threshold > t.Table.Energy[last] {
+		c.add(t.lines[last], 1, "energy_eV", fmt.Sprintf("the last row at %g eV", t.Table.Max()),
+			fmt.Sprintf("rows above the threshold of %g eV", threshold))
 	}
 }
 

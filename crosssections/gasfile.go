@@ -13,17 +13,22 @@ import (
 // gasFile is a gas.yaml as written, with the places of what is checked later.
 type gasFile struct {
 	name, title, note string
+	formula           string  // empty for the name
 	massU             float64 // of the neutral [u]
 	ions              []ionEntry
 	processes         []processEntry
+	pairs             []pairEntry
 	sets              []setEntry
+
+	sharing, polarizability, diameter Datum
 }
 
 type ionEntry struct {
-	name   string
-	charge int
-	massU  float64 // [u]; 0 means the neutral without the missing electrons
-	at     *yaml.Node
+	name     string
+	charge   int
+	massU    float64 // [u]; 0 means the neutral without the missing electrons, or the formula's
+	affinity Datum
+	at       *yaml.Node
 }
 
 type processEntry struct {
@@ -32,9 +37,39 @@ type processEntry struct {
 	threshold        float64 // [eV]
 	products         []string
 	file             string
+	section          string // of gas.yaml
+	target           string // empty for the gas itself
+	law              *law   // instead of a file
+	source           Source // of the law
+	defect           float64
+	kineticPart      float64 // of a release
+	scattering       Scattering
+	branches         []branchEntry
 	at, fileAt       *yaml.Node
 	kindAt           *yaml.Node
 	productsAt       *yaml.Node
+}
+
+// cost is the energy that the process takes [eV].
+func (p *processEntry) cost() float64 { return max(p.threshold, p.defect) }
+
+// branchEntry is one of several sets of products.
+type branchEntry struct {
+	products   []string
+	part       float64
+	appearance float64 // [eV]
+	at         *yaml.Node
+}
+
+type pairEntry struct {
+	name      string
+	reactants []string
+	products  []string
+	file      string
+	law       *law
+	source    Source
+	at        *yaml.Node
+	fileAt    *yaml.Node
 }
 
 type setEntry struct {
@@ -47,10 +82,22 @@ type setEntry struct {
 const defaultSet = "default"
 
 var (
-	gasKeys     = []string{"name", "title", "note", "mass_u", "ions", "electron", "ion", "sets"}
-	ionKeys     = []string{"name", "charge", "mass_u"}
-	processKeys = []string{"name", "kind", "projectile", "threshold_eV", "products", "file"}
-	setKeys     = []string{"title", "processes"}
+	gasKeys = []string{
+		"name", "title", "note", "formula", "mass_u", "polarizability", "diameter",
+		"ionization_width", "ions", "electron", "ion", "neutral", "pairs", "sets",
+	}
+	ionKeys      = []string{"name", "charge", "mass_u", "electron_affinity"}
+	electronKeys = []string{
+		"name", "kind", "projectile", "threshold_eV", "products", "branches", "file",
+	}
+	heavyKeys = slices.Concat([]string{
+		"name", "kind", "projectile", "target", "defect_eV", "kinetic_part", "products", "scattering",
+		"file", "rate", "langevin",
+	}, sourceKeys)
+	pairKeys   = slices.Concat([]string{"name", "reactants", "products", "file", "rate"}, sourceKeys)
+	branchKeys = []string{"products", "part", "appearance_eV"}
+	setKeys    = []string{"title", "processes"}
+	sourceKeys = []string{"reference", "database", "date", "status", "bib", "note"}
 )
 
 // gasReader turns the nodes of a gas.yaml into a gasFile.
@@ -99,11 +146,22 @@ func (r *gasReader) gas(n *yaml.Node) {
 	for _, item := range r.items(m["ions"], "ions") {
 		r.ion(item)
 	}
-	for _, item := range r.items(m["electron"], "electron") {
-		r.process(item, "electron", ElectronName)
+	if m["formula"] != nil {
+		r.out.formula = r.text(m["formula"], "formula")
 	}
-	for _, item := range r.items(m["ion"], "ion") {
-		r.process(item, "ion", "")
+	r.out.polarizability = r.datum(m["polarizability"], "polarizability", "value_A3")
+	r.out.diameter = r.datum(m["diameter"], "diameter", "value_A")
+	r.out.sharing = r.datum(m["ionization_width"], "ionization_width", "value_eV")
+	for _, item := range r.items(m["electron"], "electron") {
+		r.electron(item)
+	}
+	for _, section := range []string{"ion", "neutral"} {
+		for _, item := range r.items(m[section], section) {
+			r.heavy(item, section)
+		}
+	}
+	for _, item := range r.items(m["pairs"], "pairs") {
+		r.pair(item)
 	}
 	r.sets(m["sets"])
 }
@@ -121,47 +179,28 @@ func (r *gasReader) ion(n *yaml.Node) {
 	if m["mass_u"] != nil {
 		ion.massU = r.number(m["mass_u"], "ions.mass_u")
 	}
+	ion.affinity = r.datum(m["electron_affinity"], "ions.electron_affinity", "value_eV")
 	r.out.ions = append(r.out.ions, ion)
 }
 
-// process reads an entry of the section; ions name their projectile, electrons do not.
-func (r *gasReader) process(n *yaml.Node, section, projectile string) {
-	required := []string{"name", "kind", "file"}
-	if projectile == "" {
-		required = append(required, "projectile")
+func (r *gasReader) kind(n *yaml.Node, section string) Kind {
+	fits := func(k Kind) bool {
+		switch section {
+		case "electron":
+			return k.OfElectron()
+		case "neutral":
+			return k == Isotropic
+		}
+		return !k.OfElectron()
 	}
-	m := r.mapping(n, section, processKeys, required...)
-	p := processEntry{
-		name: r.text(m["name"], section+".name"), file: r.text(m["file"], section+".file"),
-		projectile: projectile, at: n, fileAt: m["file"], kindAt: m["kind"],
-		productsAt: m["products"],
-	}
-	if t := m["threshold_eV"]; t != nil {
-		p.threshold = r.number(t, section+".threshold_eV")
-	}
-	for _, product := range r.items(m["products"], section+".products") {
-		p.products = append(p.products, r.text(product, section+".products"))
-	}
-	if given := m["projectile"]; given != nil && projectile != "" {
-		r.at(given, section+".projectile", quoted(given.Value), "no such key: it is the electron")
-	} else if given != nil {
-		p.projectile = r.text(given, section+".projectile")
-	}
-	if k := m["kind"]; k != nil {
-		p.kind = r.kind(k, section, p.projectile == ElectronName)
-	}
-	r.out.processes = append(r.out.processes, p)
-}
-
-func (r *gasReader) kind(n *yaml.Node, section string, electron bool) Kind {
 	var names []string
 	for k := range kindNames {
-		if Kind(k).OfElectron() == electron {
+		if fits(Kind(k)) {
 			names = append(names, Kind(k).String())
 		}
 	}
 	kind, ok := parseKind(n.Value)
-	if !ok || kind.OfElectron() != electron {
+	if !ok || !fits(kind) {
 		r.at(n, section+".kind", quoted(n.Value), "one of "+strings.Join(names, ", "))
 	}
 	return kind

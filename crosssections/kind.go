@@ -5,7 +5,7 @@ import "fmt"
 // Kind is what happens in a collision.
 type Kind int
 
-// The kinds of collision. The first five are collisions of electrons, the others of ions.
+// The kinds of collision.
 const (
 	// Elastic scattering, momentum-transfer cross section: scatter isotropically.
 	Elastic Kind = iota
@@ -25,12 +25,17 @@ const (
 	Backscatter
 	// Reaction of an ion with the target to other products.
 	Reaction
+	// Rotation, Vibration and Dissociation are excitations that say more about the target.
+	Rotation
+	Vibration
+	Dissociation
 )
 
 var kindNames = [...]string{
 	Elastic: "elastic", Effective: "effective", Excitation: "excitation",
 	Ionization: "ionization", Attachment: "attachment", Isotropic: "isotropic",
 	Backscatter: "backscatter", Reaction: "reaction",
+	Rotation: "rotation", Vibration: "vibration", Dissociation: "dissociation",
 }
 
 // String is the name of the kind in gas.yaml.
@@ -42,10 +47,13 @@ func (k Kind) String() string {
 }
 
 // OfElectron tells whether the projectile of the kind is an electron.
-func (k Kind) OfElectron() bool { return k >= Elastic && k <= Attachment }
+func (k Kind) OfElectron() bool { return k >= Elastic && k <= Attachment || k >= Rotation }
+
+// Excites tells whether the projectile goes on with the threshold energy less.
+func (k Kind) Excites() bool { return k == Excitation || k >= Rotation }
 
 // NeedsThreshold tells whether the kind always costs energy.
-func (k Kind) NeedsThreshold() bool { return k == Excitation || k == Ionization }
+func (k Kind) NeedsThreshold() bool { return k.Excites() || k == Ionization }
 
 // needsProducts tells whether the kind means nothing without its products.
 func (k Kind) needsProducts() bool {
@@ -54,7 +62,7 @@ func (k Kind) needsProducts() bool {
 
 // mayHaveThreshold tells whether a threshold makes sense for the kind.
 func (k Kind) mayHaveThreshold() bool {
-	return k.NeedsThreshold() || k == Attachment || k == Reaction
+	return k.NeedsThreshold() || k == Attachment
 }
 
 // parseKind is the kind with the name.

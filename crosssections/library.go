@@ -10,6 +10,8 @@ import (
 	"slices"
 	"strings"
 
+	"go.yaml.in/yaml/v4"
+
 	"ionfall/internal/inputerr"
 )
 
@@ -141,6 +143,8 @@ func (g Gas) clone() *Gas {
 	g.Ions = slices.Clone(g.Ions)
 	g.Electron = slices.Clone(g.Electron)
 	g.IonNeutral = slices.Clone(g.IonNeutral)
+	g.Neutral = slices.Clone(g.Neutral)
+	g.Pairs = slices.Clone(g.Pairs)
 	g.Sets = slices.Clone(g.Sets)
 	g.Warnings = slices.Clone(g.Warnings)
 	return &g
@@ -179,32 +183,45 @@ func readGas(read readFile, folder string) (libraryGas, error) {
 func (r *gasReader) readTables(read readFile, folder string) map[string]*TableFile {
 	tables := map[string]*TableFile{}
 	failed := map[string]bool{}
+	load := func(file string, at *yaml.Node) bool {
+		name := path.Join(folder, file)
+		if file == "" || file != path.Base(file) || failed[file] {
+			return false // noted before
+		}
+		if tables[file] != nil {
+			return true
+		}
+		data, err := read(name)
+		failed[file] = err != nil
+		if err != nil {
+			r.at(at, "file", quoted(file)+", which is not there",
+				"a file in the folder of the gas")
+			return false
+		}
+		table, err := ReadTable(name, data)
+		failed[file] = err != nil
+		if err != nil {
+			var list inputerr.List
+			errors.As(err, &list)
+			r.list = append(r.list, list...)
+			return false
+		}
+		tables[file] = table
+		return true
+	}
+	for i := range r.out.pairs {
+		if p := &r.out.pairs[i]; p.law == nil {
+			load(p.file, p.fileAt)
+		}
+	}
 	for i := range r.out.processes {
 		p := &r.out.processes[i]
-		if p.file == "" || p.file != path.Base(p.file) || failed[p.file] {
-			continue // noted before
+		if p.law != nil || !load(p.file, p.fileAt) {
+			continue
 		}
 		name := path.Join(folder, p.file)
-		if tables[p.file] == nil {
-			data, err := read(name)
-			failed[p.file] = err != nil
-			if err != nil {
-				r.at(p.fileAt, "file", quoted(p.file)+", which is not there",
-					"a file in the folder of the gas")
-				continue
-			}
-			table, err := ReadTable(name, data)
-			failed[p.file] = err != nil
-			if err != nil {
-				var list inputerr.List
-				errors.As(err, &list)
-				r.list = append(r.list, list...)
-				continue
-			}
-			tables[p.file] = table
-		}
 		c := complaints{file: name}
-		checkTable(p, tables[p.file], &c)
+		checkTable(p, tables[p.file], r.labFactor(p, tables[p.file].Frame), &c)
 		r.list = append(r.list, c.list...)
 	}
 	return tables

@@ -110,7 +110,8 @@ func TestUnknownNames(t *testing.T) {
 func TestGasFileErrors(t *testing.T) {
 	for _, c := range []struct{ old, changed, want string }{
 		{"title: inv", "titel: inv", "Xx/gas.yaml:2:1: got unknown key \"titel\", want one of " +
-			"name, title, note, mass_u, ions, electron, ion, sets; did you mean \"title\"?"},
+			"name, title, note, formula, mass_u, " +
+			"polarizability, diameter, ionization_width, ions, electron, ion, neutral, pairs, sets; did you mean \"title\"?"},
 		{"mass_u: 10", "mass_u: -10", `Xx/gas.yaml:3:9: mass_u: got "-10", want a number above 0`},
 		{"mass_u: 10", "mass_u: {", "Xx/gas.yaml:"},
 		{"name: Xx\n", "name: Xy\n", `Xx/gas.yaml:1:1: name: got "Xy", want the name of the fold`},

@@ -72,6 +72,7 @@ type writtenGas struct {
 	Name     string           `yaml:"name"`
 	Title    string           `yaml:"title"`
 	Note     string           `yaml:"note"`
+	Formula  string           `yaml:"formula,omitempty"`
 	MassU    float64          `yaml:"mass_u"`
 	Ions     []writtenIon     `yaml:"ions,omitempty"`
 	Electron []writtenProcess `yaml:"electron"`
@@ -110,6 +111,9 @@ func (w *gasWriter) write(blocks []Block) {
 		origin += ", database " + d
 	}
 	w.gas = writtenGas{Name: w.set.Name, Title: w.set.Species + ", imported", Note: origin + "."}
+	if w.set.Species != w.set.Name {
+		w.gas.Formula = w.set.Species
+	}
 	w.setMass(blocks)
 	for i, name := range processNamesOf(blocks) {
 		w.process(i+1, name, &blocks[i])

@@ -74,7 +74,7 @@ func (w *gasWriter) renameProducts(p *Process, from *Gas, projectile string) []s
 		case p.Projectile:
 			list[i] = projectile
 		case from.Name:
-			list[i] = w.set.Name
+			list[i] = w.set.Species
 		}
 	}
 	return list

@@ -129,6 +129,7 @@ func New(s *pic.Simulation, thresholds []float64, periods int) *Recorder {
 }
 
 func newSpeciesRecord(r *Recorder, c *pic.Config, sp *pic.Species) *speciesRecord {
+	electrons := len(r.species) == 0 && sp.Charge < 0
 	unit := c.VelocityUnit(sp.Every)
 	rec := &speciesRecord{
 		name: sp.Name, charge: sp.Charge, mass: sp.Mass, every: sp.Every, unit: unit,
@@ -146,13 +147,13 @@ func newSpeciesRecord(r *Recorder, c *pic.Config, sp *pic.Species) *speciesRecor
 		ch := &rec.chunks[k]
 		ch.moments, ch.field = make([]kernels.Moments, c.Cells), make([]kernels.Field, c.Cells)
 		ch.energy = make([]float64, block)
-		if sp.Charge < 0 {
+		if electrons {
 			ch.ionized = make([]int64, r.phases*(c.Cells+1))
 			ch.electrons = r.newSpectrum(rec.eVPerV2)
 			ch.moves = make([]int64, 2)
 		}
 	}
-	if sp.Charge > 0 {
+	if sp.Charge >= 0 {
 		ions := uniformBins(1.3*c.Drive.Largest()+30, ionEnergyBins)
 		for wall := range rec.impacts {
 			rec.impacts[wall] = newImpactRecord(ions, len(r.thresholds))
@@ -261,7 +262,7 @@ func (r *Recorder) Step(c pic.Circuit) {
 // Events implements pic.Observer: it counts ionizations on the nearest node.
 func (r *Recorder) Events(n int64, species, chunk int, x []float64, events []pic.Event) {
 	rec := r.species[species]
-	if !r.on || rec.charge >= 0 {
+	if !r.on || species != 0 || rec.charge >= 0 {
 		return
 	}
 	row := rec.chunks[chunk].ionized[r.phase(n)*(r.config.Cells+1):]

@@ -39,13 +39,33 @@ func (r *Recorder) Impact(i int, wall pic.Wall) Impact {
 
 // AllImpacts returns the estimates for all ions together at a wall.
 func (r *Recorder) AllImpacts(wall pic.Wall) Impact {
+	return r.impact(r.impactsOf(wall, func(charge int) bool { return charge > 0 }))
+}
+
+// NeutralImpacts returns the estimates for all fast neutrals together at a wall; false if none are
+// followed.
+func (r *Recorder) NeutralImpacts(wall pic.Wall) (Impact, bool) {
+	list := r.impactsOf(wall, func(charge int) bool { return charge == 0 })
+	if len(list) == 0 {
+		return Impact{}, false
+	}
+	return r.impact(list), true
+}
+
+// EnergeticImpacts returns the estimates for ions and fast neutrals together at a wall.
+func (r *Recorder) EnergeticImpacts(wall pic.Wall) Impact {
+	return r.impact(r.impactsOf(wall, func(charge int) bool { return charge >= 0 }))
+}
+
+// impactsOf are the records of the species whose charge is wanted.
+func (r *Recorder) impactsOf(wall pic.Wall, wanted func(charge int) bool) []*impactRecord {
 	var list []*impactRecord
 	for _, rec := range r.species {
-		if rec.impacts[wall] != nil {
+		if rec.impacts[wall] != nil && wanted(rec.charge) {
 			list = append(list, rec.impacts[wall])
 		}
 	}
-	return r.impact(list)
+	return list
 }
 
 func (r *Recorder) impact(list []*impactRecord) Impact {
@@ -183,7 +203,7 @@ func (r *Recorder) Sheath(wall pic.Wall) stats.Estimate {
 func (r *Recorder) Progress(wall pic.Wall) (energy, flux stats.Estimate) {
 	var counts, sum []float64
 	for _, rec := range r.species {
-		if im := rec.impacts[wall]; im != nil {
+		if im := rec.impacts[wall]; im != nil && rec.charge > 0 {
 			if counts == nil {
 				counts, sum = make([]float64, len(im.counts)), make([]float64, len(im.counts))
 			}

@@ -32,13 +32,13 @@ func TestRefusals(t *testing.T) {
 			"attachment", set,
 			[]Background{background(heavy, 300,
 				process("att", "e", crosssections.Attachment, 0, flat))},
-			`mcc: process "att" of e on X: attachment collisions are not implemented`,
+			`mcc: process "att" on X: the mass of a product is not known`,
 		},
 		{
 			"reaction", ion,
 			[]Background{background(heavy, 300,
 				process("swap", "X+", crosssections.Reaction, 0, flat))},
-			`mcc: process "swap" of X+ on X: reaction collisions are not implemented`,
+			`mcc: process "swap" on X: the mass of a product is not known`,
 		},
 		{
 			"electron kind of ion", ion,

@@ -3,6 +3,7 @@ package mcc
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"ionfall/crosssections"
 	"ionfall/internal/phys"
@@ -15,6 +16,18 @@ type Settings struct {
 	Unit       float64 // one unit of velocity [m/s]
 	TimeStep   float64 // dt of this species [s]
 	TopEnergy  float64 // largest projectile energy to tabulate [eV]; beyond, rates stay
+	// Charge of the projectile in elementary charges. For an ion whose elastic collisions with a gas
+	// are not known they are estimated; without it, that is an error.
+	Charge int
+	// Neutral is the projectile a fast neutral, of the Diameter [A] if it is known.
+	Neutral  bool
+	Diameter float64
+	// Recoil is the energy above which a target that was hit is reported [eV]; 0 for none.
+	Recoil float64
+	// Stop is the energy below which a projectile ends after a collision [eV]; 0 for none.
+	Stop       float64
+	Sharing    Sharing
+	Scattering Scattering
 }
 
 // Model collides one projectile species with the whole gas. It is read-only and may be shared
@@ -24,6 +37,9 @@ type Model struct {
 	channels []channel // all, in the order of Processes
 	groups   []group
 	rate     float64 // candidates a particle and step, nu_max dt
+	takes    bool    // some collisions end the projectile
+	recoils  bool    // targets that were hit or slow projectiles are to be noticed
+	stop2    float64 // square of the speed of Stop, caller's unit
 }
 
 // group is what is judged by one relative speed: the channels with one component of the gas.
@@ -32,6 +48,7 @@ type group struct {
 	first   int     // index of its first channel
 	upTo    float64 // cumulated share of candidates
 	thermal float64
+	recoil2 float64 // square of the speed of a target with the energy Recoil; 0 for none
 }
 
 // NewModel prepares the collisions of the projectile with every background.
@@ -39,22 +56,18 @@ func NewModel(set Settings, gas []Background) (*Model, error) {
 	m := &Model{settings: set}
 	top := math.Sqrt(2 * set.TopEnergy * phys.ElementaryCharge / set.Mass)
 	electrons := set.Projectile == "e"
+	square := func(energyEV, mass float64) float64 { // of a speed, in the caller's unit
+		return 2 * energyEV * phys.ElementaryCharge / mass / (set.Unit * set.Unit)
+	}
+	m.stop2 = square(set.Stop, set.Mass)
+	m.recoils = !electrons && (set.Recoil > 0 || set.Stop > 0)
 	for _, b := range gas {
 		first := len(m.channels)
-		list := b.Gas.IonNeutral
-		if electrons {
-			list = b.Gas.Electron
-		}
-		for i := range list {
-			p := &list[i]
-			if p.Projectile != set.Projectile {
-				continue
+		for _, p := range processesOf(&set, gas, b) {
+			if err := simulated(&set, p, b); err != nil {
+				return nil, err
 			}
-			if !supported(p.Kind, electrons) {
-				return nil, fmt.Errorf("mcc: process %q of %s on %s: %v collisions are not implemented",
-					p.Name, set.Projectile, b.Gas.Name, p.Kind)
-			}
-			m.channels = append(m.channels, newChannel(p, b, set.Mass, set.Unit))
+			m.channels = append(m.channels, newChannel(p, b, &set))
 		}
 		if len(m.channels) > first {
 			// The target adds its own speed to the fastest relative speed.
@@ -62,6 +75,7 @@ func NewModel(set Settings, gas []Background) (*Model, error) {
 			m.groups = append(m.groups, group{
 				table: newTable(m.channels[first:], top+reach, reach, set.Unit), first: first,
 				thermal: b.thermalSpeed() / set.Unit,
+				recoil2: square(set.Recoil, b.Gas.Mass),
 			})
 		}
 	}
@@ -71,15 +85,110 @@ func NewModel(set Settings, gas []Background) (*Model, error) {
 	return m, m.finish()
 }
 
+// Collisions are the collisions of the projectile with a component of the gas: those that are
+// published, and estimates where nothing is.
+func Collisions(set Settings, gas []Background, b Background) []*crosssections.Process {
+	return processesOf(&set, gas, b)
+}
+
+// Check tells whether the collisions of the projectile with a part of the gas can be simulated.
+func Check(set Settings, gas []Background, b Background) error {
+	for _, p := range processesOf(&set, gas, b) {
+		if err := simulated(&set, p, b); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+func simulated(set *Settings, p *crosssections.Process, b Background) error {
+	if !supported(p.Kind, set.Projectile == crosssections.ElectronName) {
+		return fmt.Errorf("mcc: process %q of %s on %s: %v collisions are not implemented",
+			p.Name, set.Projectile, b.Gas.Name, p.Kind)
+	}
+	return complete(p, b)
+}
+
+// processesOf are the collisions of the projectile with a component of the gas, estimated where
+// nothing is published.
+func processesOf(set *Settings, gas []Background, b Background) []*crosssections.Process {
+	var list []*crosssections.Process
+	if set.Projectile == crosssections.ElectronName {
+		for i := range b.Gas.Electron {
+			if p := &b.Gas.Electron[i]; p.Projectile == set.Projectile {
+				list = append(list, p)
+			}
+		}
+		return list
+	}
+	elastic := false
+	for _, from := range gas {
+		all := from.Gas.IonNeutral
+		if set.Neutral {
+			all = from.Gas.Neutral
+		}
+		for i := range all {
+			p := &all[i]
+			onThis := p.Target == b.Gas.Name || p.Target == "" && from.Gas == b.Gas
+			if p.Projectile == set.Projectile && onThis {
+				list = append(list, p)
+				elastic = elastic || p.Kind == crosssections.Isotropic ||
+					p.Kind == crosssections.Backscatter
+			}
+		}
+	}
+	if elastic {
+		return list
+	}
+	if p, ok := estimated(set, b, list); ok {
+		list = append(list, &p)
+	}
+	return list
+}
+
+// estimated is the elastic scattering of an ion or a fast neutral that nothing is published about.
+func estimated(set *Settings, b Background, known []*crosssections.Process) (
+	crosssections.Process, bool,
+) {
+	if set.Neutral {
+		return crosssections.DefaultNeutral(set.Projectile, set.Diameter, b.Gas)
+	}
+	if set.Charge == 0 {
+		return crosssections.Process{}, false
+	}
+	var reactions []crosssections.Process
+	for _, p := range known {
+		reactions = append(reactions, *p)
+	}
+	ion := crosssections.Ion{Name: set.Projectile, Mass: set.Mass, Charge: set.Charge}
+	return crosssections.DefaultElastic(ion, b.Gas, reactions)
+}
+
 func supported(k crosssections.Kind, electrons bool) bool {
 	switch k {
-	case crosssections.Elastic, crosssections.Excitation, crosssections.Ionization:
+	case crosssections.Elastic, crosssections.Ionization, crosssections.Attachment:
 		return electrons
-	case crosssections.Isotropic, crosssections.Backscatter:
+	case crosssections.Isotropic, crosssections.Backscatter, crosssections.Reaction:
 		return !electrons
 	default:
-		return false
+		return electrons && k.Excites()
 	}
+}
+
+// complete demands masses of all products of a reaction.
+func complete(p *crosssections.Process, b Background) error {
+	if p.Kind != crosssections.Attachment && p.Kind != crosssections.Reaction {
+		return nil
+	}
+	ok := len(p.Out) > 0
+	for _, out := range p.Out {
+		ok = ok && out.Mass > 0
+	}
+	if !ok {
+		return fmt.Errorf("mcc: process %q on %s: the mass of a product is not known", p.Name,
+			b.Gas.Name)
+	}
+	return nil
 }
 
 func (m *Model) finish() error {
@@ -93,6 +202,7 @@ func (m *Model) finish() error {
 	}
 	m.groups[len(m.groups)-1].upTo = 1
 	m.rate = total * m.settings.TimeStep
+	m.takes = m.stop2 > 0 || slices.ContainsFunc(m.channels, func(c channel) bool { return c.takes() })
 	if m.rate > maxCandidates {
 		return fmt.Errorf("mcc: %s: %.3g collision candidates a step, want at most %g: "+
 			"the time step %.3g s is too long for this gas density",
@@ -106,6 +216,15 @@ func (m *Model) Processes() []*crosssections.Process {
 	list := make([]*crosssections.Process, len(m.channels))
 	for i := range m.channels {
 		list[i] = m.channels[i].process
+	}
+	return list
+}
+
+// Targets names the gas of each channel, in the order of Processes.
+func (m *Model) Targets() []string {
+	list := make([]string, len(m.channels))
+	for i := range m.channels {
+		list[i] = m.channels[i].target
 	}
 	return list
 }

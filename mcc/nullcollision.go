@@ -18,7 +18,9 @@ type Birth struct {
 // Outcome collects what collisions did. Collide adds to it; nothing is allocated once Births
 // has grown.
 type Outcome struct {
-	Births []Birth
+	Births []Birth   // of ionization by electrons
+	Made   []Made    // other new particles
+	Gone   []int32   // particles that are no longer of the species, in increasing order
 	Counts []int64   // collisions by channel
 	Loss   []float64 // sum of v^2 the particles lost, by channel, in units squared
 	Events []Event   // non-elastic collisions and where they happened, if KeepEvents
@@ -77,6 +79,7 @@ func (c *candidates) draw(s *rng.Stream, gap float64) bool {
 func (m *Model) Collide(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
 	vy, vz = vy[:len(vx)], vz[:len(vx)]
 	gap := 1 / m.rate
+	takes := m.takes
 	c := &out.work
 	c.at, c.stop = s.Exponential()*gap, float64(len(vx))
 	if out.Advance == nil {
@@ -90,6 +93,9 @@ func (m *Model) Collide(s *rng.Stream, vx, vy, vz []float64, out *Outcome) {
 			c.v[k] = velocity{vx[i] + c.ahead[k], vy[i], vz[i]}
 		}
 		for k, i := range c.index[:c.n] {
+			if takes && len(out.Gone) > 0 && out.Gone[len(out.Gone)-1] == i {
+				continue
+			}
 			if k > 0 && c.index[k-1] == i { // may have collided a moment ago
 				c.v[k] = velocity{vx[i] + c.ahead[k], vy[i], vz[i]}
 			}
@@ -119,6 +125,14 @@ func (m *Model) tryOne(s *rng.Stream, v velocity, i int32, ahead float64, out *O
 		return v, false
 	}
 	c += gr.first
+	if m.channels[c].changing != nil {
+		before := out.Counts[c]
+		after, ok = m.change(s, v, target, i, int32(c), ahead, out)
+		if g > gr.table.end {
+			out.Beyond += out.Counts[c] - before
+		}
+		return after, ok
+	}
 	after, ok = m.channels[c].collide(s, v, target, i, int32(c), out)
 	if !ok {
 		return v, false
@@ -127,6 +141,9 @@ func (m *Model) tryOne(s *rng.Stream, v velocity, i int32, ahead float64, out *O
 		out.Beyond++
 	}
 	m.count(c, int(i), v.square()-after.square(), ahead, out)
+	if m.recoils {
+		return after, m.recoil(v, target, after, i, c, gr, out)
+	}
 	return after, true
 }
 
@@ -168,9 +185,13 @@ func (c *channel) collide(
 		return v, false
 	}
 	if c.process.Kind == crosssections.Ionization {
-		// Half of the excess energy each: mu (g^2 - loss2)/2 = 2 x m g'^2/2, with mu = share m.
-		speed := math.Sqrt(0.5 * c.share * rest)
-		born := target.plus(speed, direction(s))
+		// The parts of the excess energy: mu (g^2 - loss2)/2 = m (g1^2 + g2^2)/2, mu = share m.
+		part := 0.5
+		if c.sharing != EqualSharing {
+			part = c.sharing.share(s, c.width2/rest)
+		}
+		second, speed := math.Sqrt(part*c.share*rest), math.Sqrt((1-part)*c.share*rest)
+		born := target.plus(second, direction(s))
 		out.Births = append(out.Births, Birth{
 			Parent: i, Channel: index,
 			Electron: [3]float64{born.x, born.y, born.z},
@@ -178,8 +199,13 @@ func (c *channel) collide(
 		})
 		return target.plus(speed, direction(s)), true
 	}
-	turned := velocity{}.plus(math.Sqrt(rest), direction(s))
-	return v.plus(c.share, turned.minus(g)), true
+	var to velocity
+	if c.scattering == ScreenedCoulomb {
+		to = turned(s, g, math.Sqrt(rest), forwardness(c.energyEV(math.Sqrt(g.square()*c.unit2))))
+	} else {
+		to = velocity{}.plus(math.Sqrt(rest), direction(s))
+	}
+	return v.plus(c.share, to.minus(g)), true
 }
 
 // velocity is a velocity.

@@ -34,6 +34,9 @@ type SwarmSettings struct {
 	// default 0.1, an error of 0.1 %.
 	Step float64
 	Seed uint64
+	// Sharing and Scattering are the choices of the collision model of electrons.
+	Sharing    Sharing
+	Scattering Scattering
 	// Workers is the number of goroutines; default 1. Results do not depend on it.
 	Workers int
 }

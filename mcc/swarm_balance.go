@@ -53,6 +53,8 @@ func (m *Model) friction(energyEV, thermalEV float64) (momentum, loss float64) {
 			// A second particle shares the energy.
 			momentum += nu
 			loss += (c.process.Threshold + energyEV) * nu
+		case crosssections.Attachment, crosssections.Reaction:
+			momentum += nu // those that stay have not lost anything
 		default:
 			momentum += c.share * nu
 			loss += (part + c.process.Threshold) * nu

@@ -2,6 +2,7 @@ package mcc
 
 import (
 	"math"
+	"slices"
 
 	"ionfall/internal/rng"
 )
@@ -59,6 +60,21 @@ func (c *swarmChunk) add(vx, vy, vz, x, y, z float64) {
 	c.x, c.y, c.z = append(c.x, x), append(c.y, y), append(c.z, z)
 }
 
+// remove takes particle i out, the last one taking its place.
+func (c *swarmChunk) remove(i int) {
+	n := len(c.vx) - 1
+	c.vx[i], c.vy[i], c.vz[i] = c.vx[n], c.vy[n], c.vz[n]
+	c.x[i], c.y[i], c.z[i] = c.x[n], c.y[n], c.z[n]
+	c.cut(n)
+}
+
+// double adds a copy of every particle.
+func (c *swarmChunk) double() {
+	for k := range len(c.vx) {
+		c.add(c.vx[k], c.vy[k], c.vz[k], c.x[k], c.y[k], c.z[k])
+	}
+}
+
 // cut keeps the first n particles.
 func (c *swarmChunk) cut(n int) {
 	c.vx, c.vy, c.vz = c.vx[:n], c.vy[:n], c.vz[:n]
@@ -81,7 +97,10 @@ func (c *swarmChunk) block(m *Model, s *rng.Stream, half float64, steps, every i
 			p := b.Parent
 			c.add(b.Electron[0], b.Electron[1], b.Electron[2], c.x[p], c.y[p], c.z[p])
 		}
-		c.out.Births = c.out.Births[:0]
+		for _, i := range slices.Backward(c.out.Gone) {
+			c.remove(int(i))
+		}
+		c.out.Births, c.out.Made, c.out.Gone = c.out.Births[:0], c.out.Made[:0], c.out.Gone[:0]
 	}
 	for i, n := range c.out.Counts {
 		c.sums.counts[i] = float64(n)

@@ -66,13 +66,13 @@ func (w *swarm) measure(ctx context.Context) (SwarmResult, error) {
 	}
 }
 
-// growth returns the mean number of births a particle and step in the last block.
+// growth returns the mean number of births and losses a particle and step in the last block.
 func (w *swarm) growth() float64 {
 	var born, particleSteps float64
 	for i := range w.chunks {
 		particleSteps += w.chunks[i].sums.particleSteps
 		for k := range w.model.channels {
-			if w.model.channels[k].multiplies() {
+			if ch := &w.model.channels[k]; ch.multiplies() || ch.takes() {
 				born += w.chunks[i].sums.counts[k]
 			}
 		}
@@ -81,6 +81,9 @@ func (w *swarm) growth() float64 {
 }
 
 func (c *channel) multiplies() bool { return c.process.Kind == crosssections.Ionization }
+
+// takes tells whether the projectile is no more after a collision of the channel.
+func (c *channel) takes() bool { return c.changing != nil && c.changing.same < 0 }
 
 // window moves the swarm by one window from positions zero and adds what it saw.
 func (w *swarm) window(ctx context.Context, d *series, block, blocks int) error {
@@ -100,6 +103,7 @@ func (w *swarm) window(ctx context.Context, d *series, block, blocks int) error 
 			w.thin(w.set.Particles, all)
 			w.run.Thinnings++
 		}
+		w.replenish(w.set.Particles, all)
 		before := w.moments()
 		if err := w.advance(ctx, block, every); err != nil {
 			return err
@@ -205,11 +209,11 @@ func (w *swarm) result(d *series) SwarmResult {
 	}
 	grown := stats.Mean(d.growthDrift)
 	r.BulkDrift = r.FluxDrift
-	born := make([]float64, len(d.velocity))
+	born, taken := make([]float64, len(d.velocity)), make([]float64, len(d.velocity))
 	for c, counts := range d.counts {
 		ch := &w.model.channels[c]
 		r.Rates = append(r.Rates, SwarmRate{
-			Gas: w.gasOf(c), Process: ch.process.Name,
+			Gas: ch.target, Process: ch.process.Name,
 			Rate: scaled(stats.Ratio(counts, d.particleSteps), 1/(w.step*ch.density)),
 		})
 		if ch.multiplies() {
@@ -217,14 +221,24 @@ func (w *swarm) result(d *series) SwarmResult {
 				born[i] += n
 			}
 		}
+		if ch.takes() {
+			for i, n := range counts {
+				taken[i] += n
+			}
+		}
 	}
 	r.Ionization = scaled(stats.Ratio(born, d.particleSteps), 1/perN)
-	if r.Ionization.Mean > 0 {
+	r.Loss = scaled(stats.Ratio(taken, d.particleSteps), 1/perN)
+	for i, n := range taken {
+		born[i] -= n
+	}
+	r.Growth = scaled(stats.Ratio(born, d.particleSteps), 1/perN)
+	if r.Growth.Mean != 0 {
 		r.BulkDrift.Mean += grown.Mean
 		r.BulkDrift.StdErr = math.Hypot(r.BulkDrift.StdErr, grown.StdErr)
 		r.BulkDrift.N, r.BulkDrift.Batch, r.BulkDrift.Lag = grown.N, grown.Batch, grown.Lag
 	}
-	r.Townsend = townsendOf(r.BulkDrift, r.DiffusionLongitudinal, r.Ionization)
+	r.Townsend = townsendOf(r.BulkDrift, r.DiffusionLongitudinal, r.Growth)
 	if w.set.Field > 0 {
 		r.Mobility = scaled(r.FluxDrift, 1e4/(w.set.Field*townsend*loschmidt))
 	}
@@ -241,23 +255,6 @@ func ratios(a, b []float64) []float64 {
 		list[i] = a[i] / b[i]
 	}
 	return list
-}
-
-// gasOf returns the name of the gas of a channel.
-func (w *swarm) gasOf(channel int) string {
-	for _, b := range w.gas {
-		n := 0
-		for _, p := range b.Gas.Processes(w.set.Projectile) {
-			if p.Projectile == w.set.Projectile {
-				n++
-			}
-		}
-		if channel < n {
-			return b.Gas.Name
-		}
-		channel -= n
-	}
-	return ""
 }
 
 // energies turns the counts of speeds into the energy distribution: a bin of equal weight over

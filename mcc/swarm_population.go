@@ -66,6 +66,7 @@ func newSwarm(gas []Background, set SwarmSettings) (*swarm, error) {
 func (w *swarm) settings(topEV, step float64) Settings {
 	return Settings{
 		Projectile: w.set.Projectile, Mass: w.set.Mass, Unit: 1, TimeStep: step, TopEnergy: topEV,
+		Charge: w.set.Charge, Sharing: w.set.Sharing, Scattering: w.set.Scattering,
 	}
 }
 
@@ -167,6 +168,19 @@ func (w *swarm) count(part func(chunk int) bool) int {
 		}
 	}
 	return n
+}
+
+// replenish doubles the particles of the chunks that take part once half of them are lost.
+func (w *swarm) replenish(keep int, part func(chunk int) bool) {
+	if n := w.count(part); n == 0 || 2*n > keep {
+		return
+	}
+	for i := range w.chunks {
+		if part(i) {
+			w.chunks[i].double()
+		}
+	}
+	w.run.Doublings++
 }
 
 // thin keeps a random choice of the particles of the chunks that take part, every subset of the

@@ -66,15 +66,15 @@ func (w *swarm) relax(ctx context.Context) error {
 	return nil
 }
 
-// thinHalves thins each half on its own once it has doubled, and returns the largest growth a
-// step of a chunk in the block.
+// thinHalves thins each half on its own once it has doubled, and returns the largest growth or
+// loss a step of a chunk in the block.
 func (w *swarm) thinHalves() float64 {
 	growth := 0.0
 	for i := range w.chunks {
 		c := &w.chunks[i]
 		born := 0.0
 		for k := range w.model.channels {
-			if w.model.channels[k].multiplies() {
+			if ch := &w.model.channels[k]; ch.multiplies() || ch.takes() {
 				born += c.sums.counts[k]
 			}
 		}
@@ -86,6 +86,7 @@ func (w *swarm) thinHalves() float64 {
 		if w.count(part) > 2*keep {
 			w.thin(keep, part)
 		}
+		w.replenish(keep, part)
 	}
 	return growth
 }

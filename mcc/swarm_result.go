@@ -21,7 +21,9 @@ type SwarmResult struct {
 	// DiffusionTransverse and DiffusionLongitudinal are bulk diffusion coefficients times N
 	// [1/(m s)]: half the growth of the variance of positions, divided by time.
 	DiffusionTransverse, DiffusionLongitudinal stats.Estimate
-	Ionization                                 stats.Estimate // growth frequency over N [m3/s]
+	// Ionization is the births, Loss the particles taken by attachment or reactions, and Growth the
+	// difference, each a particle and time over N [m3/s].
+	Ionization, Loss, Growth stats.Estimate
 	// Townsend is the growth per length of a stationary beam over N [m2]; see townsendOf.
 	Townsend stats.Estimate
 	Rates    []SwarmRate

@@ -27,7 +27,7 @@ func newTable(channels []channel, top, reach, unit float64) table {
 		g := top * float64(r) / tableRows
 		sum := 0.0
 		for c, ch := range channels {
-			sum += ch.density * ch.process.Table.At(ch.energyEV(g)) * g
+			sum += ch.density * ch.crossSection(g) * g
 			t.rows[r*len(channels)+c] = sum
 			if ch.process.Table.Beyond(ch.energyEV(g)) {
 				t.end = math.Min(t.end, g/unit)
@@ -103,22 +103,53 @@ type channel struct {
 	loss2   float64 // g^2 lost to the threshold, 2 eps/mu in the caller's unit squared
 	thermal float64 // target's thermal speed, caller's unit
 	perG2   float64 // table energy [eV] over g^2 [m2/s2]
+
+	changing   *changing  // what attachment and reactions need; nil for others
+	target     string     // name of the gas
+	heavier    float64    // m/M
+	scattering Scattering // of elastic collisions
+	unit2      float64    // square of the caller's unit
+	sharing    Sharing    // of ionization
+	width2     float64    // of the sharing law, as 2 w/mu in the caller's unit squared
 }
 
-func newChannel(p *crosssections.Process, b Background, mass, unit float64) channel {
+func newChannel(p *crosssections.Process, b Background, set *Settings) channel {
+	mass, unit := set.Mass, set.Unit
 	mu := mass * b.Gas.Mass / (mass + b.Gas.Mass)
 	energyMass := mu
 	if p.Frame == crosssections.Lab {
 		energyMass = mass
 	}
-	return channel{
+	width := b.Gas.Sharing.Value
+	if width == 0 {
+		width = opalPart * p.Threshold
+	}
+	c := channel{
 		process: p,
 		density: b.Density,
 		share:   b.Gas.Mass / (mass + b.Gas.Mass),
 		loss2:   2 * p.Threshold * phys.ElementaryCharge / mu / (unit * unit),
 		thermal: b.thermalSpeed() / unit,
 		perG2:   0.5 * energyMass / phys.ElementaryCharge,
+
+		changing: newChanging(p, set, mu, unit), target: b.Gas.Name, heavier: mass / b.Gas.Mass,
+		unit2: unit * unit, sharing: set.Sharing,
+		width2: 2 * width * phys.ElementaryCharge / mu / (unit * unit),
 	}
+	if p.Kind == crosssections.Elastic {
+		c.scattering = set.Scattering
+	}
+	return c
+}
+
+// crossSection returns the total cross section at the relative speed g [m/s]: that of momentum
+// transfer, larger where the scattering is forward peaked.
+func (c *channel) crossSection(g float64) float64 {
+	q := c.process.Table.At(c.energyEV(g))
+	if c.scattering == ScreenedCoulomb {
+		q /= momentumPart(forwardness(c.energyEV(g)))
+	}
+	return q
 }
 
 // energyEV returns the energy at which the process is tabulated for relative speed g [m/s].

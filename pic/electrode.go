@@ -28,7 +28,7 @@ func (s *Simulation) leave(w *worker, i, c int, out []int32) {
 			kick.A += kick.D
 			depth = ch.x[p] - cells
 		}
-		if sp.Charge < 0 && s.config.Electrodes[wall].ElectronReflection > 0 &&
+		if i == 0 && sp.Charge < 0 && s.config.Electrodes[wall].ElectronReflection > 0 &&
 			stream.Float64() < s.config.Electrodes[wall].ElectronReflection {
 			if s.reflect(w, i, ch, p, wall, kick.A, depth) {
 				continue

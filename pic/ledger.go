@@ -8,6 +8,7 @@ import (
 // are in the species' units.
 type tally struct {
 	born                         int64    // by collisions
+	gone                         int64    // ended by collisions
 	emitted, reflected, absorbed [2]int64 // by wall
 	bornV2                       float64
 	emittedV2                    float64
@@ -31,12 +32,13 @@ type Ledger struct {
 type SpeciesLedger struct {
 	Count      int64      // particles at the end
 	Kinetic    float64    // energy at the end [J/m2]; velocities are half a step behind
-	Born       int64      // by ionization
+	Born       int64      // by collisions
+	Gone       int64      // ended by collisions: attached, neutralized, or of another species now
 	BornEnergy float64    // [J/m2]
 	Absorbed   [2]int64   // by Wall
 	WallEnergy [2]float64 // carried to it [J/m2]
 	Emitted    [2]int64   // electrons set free at the Wall by ions
-	EmitEnergy float64    // [J/m2]
+	EmitEnergy float64    // of these, and of electrons that ions set free in the gas [J/m2]
 	Reflected  [2]int64
 	Collisions []int64   // by channel
 	Losses     []float64 // energy lost to the gas by channel [J/m2]
@@ -70,6 +72,7 @@ func (sp *Species) takeLedger(weight float64) SpeciesLedger {
 		l.Count += int64(len(ch.x))
 		l.Kinetic += joule * ch.v2()
 		l.Born += t.born
+		l.Gone += t.gone
 		l.BornEnergy += joule * t.bornV2
 		l.EmitEnergy += joule * t.emittedV2
 		for w := range 2 {

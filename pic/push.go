@@ -33,6 +33,7 @@ func (s *Simulation) collide(w *worker, i, c int) {
 	}.Stream()
 	out := ch.outcome
 	out.Births, out.Events = out.Births[:0], out.Events[:0]
+	out.Made, out.Gone = out.Made[:0], out.Gone[:0]
 	w.half = halfKick{ch.x, w.kick[i]}
 	out.Advance = &w.half
 	sp.Collisions.Collide(&stream, ch.vx, ch.vy, ch.vz, out)
@@ -48,6 +49,9 @@ func (s *Simulation) collide(w *worker, i, c int) {
 	for b := range out.Births {
 		birth := &out.Births[b]
 		s.bear(w, sp, c, sp.ionOf[birth.Channel], ch.x[birth.Parent], birth.Electron, birth.Ion)
+	}
+	if len(out.Made)+len(out.Gone) > 0 {
+		s.change(w, i, c, out)
 	}
 }
 
@@ -65,24 +69,6 @@ func (h *halfKick) HalfKicks(index []int32, change []float64) {
 		j := int(x[i])
 		f := &kick[j]
 		change[k] = 0.5 * (f.A + (x[i]-float64(j))*f.D)
-	}
-}
-
-// bear adds an electron and an ion at x. The ion's velocity comes in the electrons' unit.
-func (s *Simulation) bear(w *worker, electrons *Species, c, ion int, x float64, ve, vi [3]float64) {
-	ch := &electrons.chunks[c]
-	ch.add(x, ve[0], ve[1], ve[2])
-	ch.tally.born++
-	ch.tally.bornV2 += ve[0]*ve[0] + ve[1]*ve[1] + ve[2]*ve[2]
-	sp := &s.species[ion]
-	k := float64(sp.Every) / float64(electrons.Every)
-	vi = [3]float64{k * vi[0], k * vi[1], k * vi[2]}
-	ions := &sp.chunks[c]
-	ions.add(x, vi[0], vi[1], vi[2])
-	ions.tally.born++
-	ions.tally.bornV2 += vi[0]*vi[0] + vi[1]*vi[1] + vi[2]*vi[2]
-	if !sp.due(w.step) {
-		kernels.Deposit(ions.x[len(ions.x)-1:], w.deposit[(w.step+1)&1][ion])
 	}
 }
 

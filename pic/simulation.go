@@ -7,7 +7,6 @@ import (
 
 	"golang.org/x/sync/errgroup"
 
-	"ionfall/crosssections"
 	"ionfall/internal/kernels"
 	"ionfall/internal/phys"
 )
@@ -75,6 +74,7 @@ func New(c Config) (*Simulation, error) {
 		move := c.TimeStep() * float64(sp.Every)
 		sp.kickPerE = float64(sp.Charge) * phys.ElementaryCharge / sp.Mass * move / unit
 		sp.energyPer = 0.5 * sp.Mass * unit * unit
+		sp.least2 = sp.Least * phys.ElementaryCharge / sp.energyPer
 		sp.chunks = make([]chunk, c.Chunks)
 		if err := s.linkBirths(sp); err != nil {
 			return nil, err
@@ -88,29 +88,6 @@ func New(c Config) (*Simulation, error) {
 	}
 	s.SetWorkers(1)
 	return s, nil
-}
-
-// linkBirths finds the species that each ionizing channel creates.
-func (s *Simulation) linkBirths(sp *Species) error {
-	if sp.Collisions == nil {
-		return nil
-	}
-	for _, p := range sp.Collisions.Processes() {
-		ion := -1
-		for _, product := range p.Products {
-			for i := range s.species {
-				if s.species[i].Name == product && s.species[i].Charge > 0 {
-					ion = i
-				}
-			}
-		}
-		if p.Kind == crosssections.Ionization && ion < 0 {
-			return fmt.Errorf("pic: process %q makes %v, and none of these is a species of the run",
-				p.Name, p.Products)
-		}
-		sp.ionOf = append(sp.ionOf, ion)
-	}
-	return nil
 }
 
 // Observe adds an observer, after those there are. Only between steps.

@@ -2,7 +2,7 @@ package pic
 
 import "ionfall/mcc"
 
-// Species is one kind of charged particle.
+// Species is one kind of charged particle, or of fast neutrals.
 type Species struct {
 	Name   string
 	Charge int     // in units of e
@@ -11,12 +11,20 @@ type Species struct {
 	Every int
 	// Collisions with the gas, in units of Config.VelocityUnit; nil for none.
 	Collisions *mcc.Model
+	// Least is the energy below which neutrals are not followed [eV].
+	Least float64
 
 	chunks    []chunk
 	ionOf     []int   // electrons: species born by each collision channel, -1 for none
+	madeOf    [][]int // species of each product of each channel, -1 for none
+	hitOf     []int   // species of the target of each channel, -1 for none
+	least2    float64 // square of the speed of Least
 	kickPerE  float64 // velocity gained a move from 1 V/m
 	energyPer float64 // J per unit of v^2: m/2 (dx/dt)^2
 }
+
+// FastPrefix before the name of a neutral makes that of the species of its fast ones.
+const FastPrefix = "fast "
 
 // chunk is a fixed part of a species' particles: positions [cells], velocities [cells/step].
 type chunk struct {

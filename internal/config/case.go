@@ -38,8 +38,16 @@ type Gas struct {
 	// Library is a folder of gases as written, or "": its gases go before the bundled ones. It
 	// is relative to the folder of the input file.
 	Library string
+	// FastNeutrals is nil where they are not followed.
+	FastNeutrals *FastNeutrals
 	// Mixture in the order of the file; the fractions sum to 1 within 1e-6.
 	Mixture []Component
+}
+
+// FastNeutrals asks for the molecules that ions hit to be followed to the walls.
+type FastNeutrals struct {
+	// Threshold is the energy above which they are followed [eV].
+	Threshold float64
 }
 
 // Component is one gas of a mixture.

@@ -123,8 +123,8 @@ func TestEqual(t *testing.T) {
 			t.Errorf("a change of %s makes no difference", path)
 		}
 	}, "")
-	if changed != 34 {
-		t.Errorf("%d fields were changed, want 34", changed)
+	if changed != 35 {
+		t.Errorf("%d fields were changed, want 35", changed)
 	}
 	same.IonEnergyThresholds = []float64{}
 	if !c.Equal(same) {

@@ -78,10 +78,27 @@ func gasLayout(g *Gas) value {
 				"before the bundled one. Default: the bundled gases alone.",
 		},
 		{
+			key: "fast_neutrals", value: pointer[FastNeutrals]{&g.FastNeutrals, fastNeutralsLayout},
+			doc: "Follow the molecules that ions hit to the walls. Default: not, as it costs time.",
+		},
+		{
 			key: "mixture", required: true, value: mixture{&g.Mixture},
 			doc: "Gases and their fractions of the molecules, which sum to 1.",
 		},
 	}}
+}
+
+func fastNeutralsLayout(f *FastNeutrals) value {
+	if f.Threshold == 0 {
+		f.Threshold = 1
+	}
+	return mapping{fields: []field{{
+		key: "threshold",
+		value: quantity{
+			dst: &f.Threshold, dim: energy(), low: minFastThreshold, high: maxFastThreshold,
+		},
+		doc: "Energy above which they are followed. Default: 1 eV.",
+	}}}
 }
 
 func driveLayout(d *Drive) value {

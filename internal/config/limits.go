@@ -24,6 +24,8 @@ const (
 	minGasTemperature, maxGasTemperature = "50 K", "3000 K"
 	// maxComponents: each gas adds a table of collisions for every species.
 	maxComponents = 20
+	// Below 0.2 eV the gas's own motion makes fast neutrals; above 100 eV few are left.
+	minFastThreshold, maxFastThreshold = "0.2 eV", "100 eV"
 	// fractionTolerance allows thirds written with six digits.
 	fractionTolerance = "1e-6"
 

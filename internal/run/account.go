@@ -32,12 +32,17 @@ func (m *machine) account(l *pic.Ledger) {
 	}
 	c.Event = ""
 	var energy, number [2]float64
+	negative := int64(0)
+	species := m.sim.Species()
 	for i := range l.Species {
 		sp := &l.Species[i]
 		w := work(sp, c.Kinetic[i], i == 0)
 		row.Power = append(row.Power, w/period)
 		c.Kinetic[i] = sp.Kinetic
-		if i == 0 {
+		if charge := species[i].Charge; charge <= 0 {
+			if i > 0 {
+				negative += int64(-charge) * sp.Count
+			}
 			continue
 		}
 		row.Ions += sp.Count
@@ -46,7 +51,7 @@ func (m *machine) account(l *pic.Ledger) {
 			energy[wall] += sp.WallEnergy[wall]
 		}
 	}
-	row.Content = l.Weight * float64(row.Ions)
+	row.Content = l.Weight * float64(row.Ions-negative)
 	for wall := range 2 {
 		row.Flux[wall] = number[wall] / period
 		if number[wall] > 0 {
@@ -61,14 +66,16 @@ func (m *machine) account(l *pic.Ledger) {
 		c.Residence += 0.05 * (now - c.Residence)
 	}
 	if c.Stage == StageAveraging {
-		c.Averaged.add(l, row, c.Field, period)
+		c.Averaged.add(l, row, species, c.Field, period)
 	}
 	c.Field = l.Field
 	c.Moved += l.Moved
 	m.history = append(m.history, row)
 }
 
-func (t *accountTotals) add(l *pic.Ledger, row Row, fieldBefore, period float64) {
+func (t *accountTotals) add(l *pic.Ledger, row Row, species []pic.Species,
+	fieldBefore, period float64,
+) {
 	if t.Periods == 0 {
 		t.FieldFrom = fieldBefore
 		t.Work = make([]float64, len(l.Species))
@@ -87,9 +94,9 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, fieldBefore, period float64)
 		}
 		t.Beyond += float64(sp.Beyond)
 		t.Moves[i] += float64(sp.Count) * float64(l.Steps)
-		if i > 0 {
+		if species[i].Charge > 0 {
 			t.Born += l.Weight * float64(sp.Born)
-			t.Lost += l.Weight * float64(sp.Absorbed[0]+sp.Absorbed[1])
+			t.Lost += l.Weight * float64(sp.Absorbed[0]+sp.Absorbed[1]+sp.Gone)
 		}
 	}
 }

@@ -69,12 +69,12 @@ type Row struct {
 	Stage       string
 	Weight      float64 // [1/m2]
 	Electrons   int64
-	Ions        int64
+	Ions        int64      // positive
 	Flux        [2]float64 // of ions by wall [1/(m2 s)]
 	Energy      [2]float64 // mean of ions by wall [eV]
 	Power       []float64  // by species [W/m2]
 	TotalPower  float64    // [W/m2]
-	Content     float64    // ions in the gap [1/m2]
+	Content     float64    // positive less negative ions in the gap [1/m2]
 	Event       string
 	FieldEnergy float64 // [J/m2]
 }

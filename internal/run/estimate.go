@@ -25,7 +25,7 @@ type estimate struct {
 func (p *Plan) estimate() estimate {
 	const ionCrossSection = 1e-18 // of momentum transfer at thermal energies, typical [m2]
 	gas := p.Gases[0]
-	ion := gas.Ions[0].Mass
+	ion := p.heavy[0].Mass
 	n := p.gasDensity()
 	gap, voltage := p.Case.Gap, 0.5*math.Max(20, p.drive().Largest())
 	omega := 2 * math.Pi * p.loudestFrequency()

@@ -6,7 +6,7 @@ import (
 	"fmt"
 	"io"
 	"io/fs"
-	"maps"
+	"math"
 	"os"
 	"path"
 	"path/filepath"
@@ -205,19 +205,22 @@ func (p *Plan) writeOwn(folder *store.Run) error {
 	return nil
 }
 
-// unusable finds what the program cannot simulate yet, before anything is started.
+// unusable finds what the program cannot simulate, before anything is started.
 func (p *Plan) unusable() inputerr.List {
 	var bad inputerr.List
-	ions, declared := 0, map[string]string{}
+	declared := map[string]declaration{}
 	for _, g := range p.Gases {
 		key := "gas.mixture." + g.Name
 		for _, ion := range g.Ions {
-			ions++
-			if other, twice := declared[ion.Name]; twice {
-				bad = append(bad, p.Case.Errorf(key, "a second gas with the ion "+ion.Name,
-					"each ion from one gas", "the other is "+other))
+			other, twice := declared[ion.Name]
+			if twice && math.Abs(ion.Mass/other.mass-1) > sameMass {
+				bad = append(bad, p.Case.Errorf(key,
+					fmt.Sprintf("%s with a mass of %.6g u", ion.Name, ion.Mass/phys.AtomicMass),
+					fmt.Sprintf("%.6g u, as in %s", other.mass/phys.AtomicMass, other.gas), ""))
 			}
-			declared[ion.Name] = g.Name
+			if !twice {
+				declared[ion.Name] = declaration{g.Name, ion.Mass}
+			}
 		}
 		for _, e := range g.Electron {
 			if e.Kind == crosssections.Ionization && productCharge(g, &e) != 1 {
@@ -226,12 +229,21 @@ func (p *Plan) unusable() inputerr.List {
 			}
 		}
 	}
-	if ions == 0 {
+	if !slices.ContainsFunc(p.heavy, func(h heavySpecies) bool { return h.Charge > 0 }) {
 		bad = append(bad, p.Case.Errorf("gas.mixture", "no gas with ions",
 			"at least one: a discharge needs them", ""))
 	}
 	return append(bad, p.unsimulated()...)
 }
+
+// declaration is where an ion was declared first.
+type declaration struct {
+	gas  string
+	mass float64
+}
+
+// sameMass is the largest relative difference between declarations of one ion.
+const sameMass = 1e-3
 
 // productCharge is the charge of the ions that a process makes.
 func productCharge(g *crosssections.Gas, e *crosssections.Process) int {
@@ -244,25 +256,18 @@ func productCharge(g *crosssections.Gas, e *crosssections.Process) int {
 	return sum
 }
 
-// unsimulated asks the collision model, for a species and a gas at a time, which kinds of
-// collision it does not have.
+// unsimulated asks the collision model which kinds of collision of a species it does not have.
 func (p *Plan) unsimulated() inputerr.List {
 	var bad inputerr.List
-	masses := map[string]float64{crosssections.ElectronName: phys.ElectronMass}
-	for _, g := range p.Gases {
-		for _, ion := range g.Ions {
-			masses[ion.Name] = ion.Mass
-		}
-	}
-	for _, b := range p.backgrounds() {
-		for _, name := range slices.Sorted(maps.Keys(masses)) {
-			if len(b.Gas.Processes(name)) == 0 {
+	electron := heavySpecies{Name: crosssections.ElectronName, Mass: phys.ElectronMass, Charge: -1}
+	gas := p.backgrounds()
+	for _, h := range append([]heavySpecies{electron}, p.heavy...) {
+		for _, b := range gas {
+			if len(mcc.Collisions(p.settings(h), gas, b)) == 0 {
 				continue // missingCollisions tells, where it matters
 			}
-			set := mcc.Settings{
-				Projectile: name, Mass: masses[name], Unit: 1, TimeStep: 1e-20, TopEnergy: 1,
-			}
-			if _, err := mcc.NewModel(set, []mcc.Background{b}); err != nil {
+			// The others are there for the processes with this gas that they bring.
+			if err := mcc.Check(p.settings(h), gas, b); err != nil {
 				bad = append(bad, p.Case.Errorf("gas.mixture."+b.Gas.Name, "", "", err.Error()))
 			}
 		}

@@ -244,16 +244,16 @@ func TestUnusableGases(t *testing.T) {
 	for name, c := range map[string]struct{ mixture, old, changed, want string }{
 		"attachment": {
 			"{Xx: 1}", "kind: excitation\n  threshold_eV: 15\n  products: [e, Xx*]",
-			"kind: attachment\n  products: [Xx-]", "attachment collisions are not implemented",
+			"kind: attachment\n  products: [Xx-]", "a gas whose collisions with Xx- are known",
 		},
 		"two electrons": {
 			"{Xx: 1}", "[e, e, Xx+]", "[e, e, e, Xx++]",
 			"ionization to one ion of charge 1: others are not simulated",
 		},
 		"same ion": {
-			"{Xx: 0.5, Yy: 0.5}", "", "",
-			"gas.mixture.Yy: got a second gas with the ion Xx+, want each ion from one gas; " +
-				"the other is Xx",
+			"{Xx: 0.5, Yy: 0.5}", "name: Xx+\n  charge: 1\n  mass_u: 5.4852505",
+			"name: Xx+\n  charge: 1\n  mass_u: 6",
+			"gas.mixture.Yy: got Xx+ with a mass of 5.48525 u, want 6 u, as in Xx",
 		},
 	} {
 		dir := inputFolder(t, with(c.mixture), "Xx", "Yy")

@@ -27,6 +27,7 @@ type Plan struct {
 	// Kernels is the set of hot loops; the zero value is the fastest that works here.
 	Kernels kernels.Set
 
+	heavy    []heavySpecies // ions and fast neutrals, in the order of the simulation's species
 	bundled  *crosssections.Library
 	own      *crosssections.Library // the user's, or nil
 	ownFiles crosssections.Files    // of the gases in use that are the user's
@@ -124,35 +125,15 @@ func (p *Plan) checked() (*Plan, error) {
 		p.Gases = append(p.Gases, gas)
 	}
 	p.keepOwn()
-	bad = append(bad, p.missingCollisions()...)
 	if len(p.Gases) == len(p.Case.Gas.Mixture) {
+		p.heavy = p.heavySpecies()
+		bad = append(bad, p.missingCollisions()...)
 		bad = append(bad, p.unusable()...)
 	}
 	if len(bad) > 0 {
 		return nil, bad
 	}
 	return p, nil
-}
-
-// missingCollisions finds ions whose collisions with a part of the mixture are not known: left out,
-// they would fall through the sheath as if that gas were not there.
-func (p *Plan) missingCollisions() inputerr.List {
-	var bad inputerr.List
-	for _, own := range p.Gases {
-		for _, ion := range own.Ions {
-			for _, other := range p.Gases {
-				if len(other.Processes(ion.Name)) == 0 {
-					got := other.Name
-					if other != own {
-						got += " together with " + own.Name
-					}
-					bad = append(bad, p.Case.Errorf("gas.mixture."+other.Name, got,
-						fmt.Sprintf("a gas whose collisions with %s are known", ion.Name), ""))
-				}
-			}
-		}
-	}
-	return bad
 }
 
 // InputSHA256 returns the hash of the input as given.
@@ -231,64 +212,32 @@ func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 			ElectronReflection: e.ElectronReflection,
 		}
 	}
-	electrons, err := p.collisions(&c, "e", phys.ElectronMass, 1)
-	if err != nil {
-		return nil, err
-	}
-	c.Species = []pic.Species{{
-		Name: "e", Charge: -1, Mass: phys.ElectronMass, Every: 1, Collisions: electrons,
-	}}
-	for _, g := range p.Gases {
-		for _, ion := range g.Ions {
-			model, err := p.collisions(&c, ion.Name, ion.Mass, n.IonSubsteps)
-			if err != nil {
-				return nil, err
-			}
-			c.Species = append(c.Species, pic.Species{
-				Name: ion.Name, Charge: ion.Charge, Mass: ion.Mass, Every: n.IonSubsteps,
-				Collisions: model,
-			})
+	electron := heavySpecies{Name: crosssections.ElectronName, Mass: phys.ElectronMass, Charge: -1}
+	for i, h := range append([]heavySpecies{electron}, p.heavy...) {
+		every := n.IonSubsteps
+		if i == 0 {
+			every = 1
 		}
+		model, err := p.collisions(&c, h, every)
+		if err != nil {
+			return nil, err
+		}
+		c.Species = append(c.Species, pic.Species{
+			Name: h.label(), Charge: h.Charge, Mass: h.Mass, Every: every, Collisions: model,
+			Least: p.leastNeutral(h),
+		})
 	}
 	return pic.New(c)
 }
 
 // collisions prepares a species' collisions, tabulated a little beyond the energies that the
 // drive can give.
-func (p *Plan) collisions(c *pic.Config, name string, mass float64, every int) (*mcc.Model, error) {
-	top := 1.3*c.Drive.Largest() + 50
-	if name == "e" {
-		top = max(top, 300)
+func (p *Plan) collisions(c *pic.Config, h heavySpecies, every int) (*mcc.Model, error) {
+	set := p.settings(h)
+	set.TopEnergy = 1.3*c.Drive.Largest() + 50
+	if h.Name == crosssections.ElectronName {
+		set.TopEnergy = max(set.TopEnergy, 300)
 	}
-	return mcc.NewModel(mcc.Settings{
-		Projectile: name, Mass: mass, Unit: c.VelocityUnit(every),
-		TimeStep: c.TimeStep() * float64(every), TopEnergy: top,
-	}, p.backgrounds())
-}
-
-// fill loads a uniform quasi-neutral plasma; the ions share the density by the gases' fractions.
-func (p *Plan) fill(s *pic.Simulation, particles int, electronTemperature float64) error {
-	uniform := make([]float64, s.Config().Cells+1)
-	for j := range uniform {
-		uniform[j] = 1
-	}
-	if err := s.Load(0, particles, uniform, electronTemperature); err != nil {
-		return err
-	}
-	loaded, species, whole := 0, 1, 0.0
-	for i, g := range p.Gases {
-		for k := range g.Ions {
-			whole += p.Case.Gas.Mixture[i].Fraction / float64(len(g.Ions))
-			upTo := min(particles, int(math.Round(whole*float64(particles))))
-			if i == len(p.Gases)-1 && k == len(g.Ions)-1 {
-				upTo = particles
-			}
-			if err := s.Load(species, upTo-loaded, uniform, p.Case.Gas.Temperature); err != nil {
-				return err
-			}
-			loaded = upTo
-			species++
-		}
-	}
-	return nil
+	set.Unit, set.TimeStep = c.VelocityUnit(every), c.TimeStep()*float64(every)
+	return mcc.NewModel(set, p.backgrounds())
 }
