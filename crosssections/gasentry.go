@@ -119,7 +119,7 @@ func (r *gasReader) crossSection(n *yaml.Node, m map[string]*yaml.Node, section 
 
 var (
 	rateKeys     = []string{"value_m3ps", "exponent", "falls_above_eV", "falls_as"}
-	langevinKeys = []string{"mobility_cm2pVs", "part", "floor_m2"}
+	langevinKeys = []string{"mobility_cm2pVs", "part", "floor_m2", "falls_above_eV", "falls_as"}
 )
 
 // rate reads a rate coefficient at 300 K: sigma = k/g, up to an energy if one is given.
@@ -127,12 +127,7 @@ func (r *gasReader) rate(n *yaml.Node, path string) *law {
 	m := r.mapping(n, path, rateKeys, "value_m3ps")
 	l := law{rate: r.number(m["value_m3ps"], path+".value_m3ps"), power: 1}
 	l.exponent = r.signed(m["exponent"], path+".exponent", -1, 1)
-	if m["falls_above_eV"] != nil {
-		l.falls = r.number(m["falls_above_eV"], path+".falls_above_eV")
-	}
-	if m["falls_as"] != nil {
-		l.power = r.number(m["falls_as"], path+".falls_as")
-	}
+	r.fall(&l, m, path)
 	if l.rate > maxRate {
 		r.at(m["value_m3ps"], path, fmt.Sprintf("%g m3/s", l.rate),
 			fmt.Sprintf("at most %g m3/s (1 cm3/s is 1e-6 m3/s)", maxRate))
@@ -145,7 +140,7 @@ const maxRate = 1e-11
 
 // langevin reads elastic scattering at a constant rate.
 func (r *gasReader) langevin(n *yaml.Node, path string) *law {
-	l := law{langevin: true, part: 1}
+	l := law{langevin: true, part: 1, power: 1}
 	if n.Kind == yaml.MappingNode && len(n.Content) == 0 {
 		return &l
 	}
@@ -159,7 +154,18 @@ func (r *gasReader) langevin(n *yaml.Node, path string) *law {
 	if m["floor_m2"] != nil {
 		l.floor = r.number(m["floor_m2"], path+".floor_m2")
 	}
+	r.fall(&l, m, path)
 	return &l
+}
+
+// fall reads how a law ends.
+func (r *gasReader) fall(l *law, m map[string]*yaml.Node, path string) {
+	if m["falls_above_eV"] != nil {
+		l.falls = r.number(m["falls_above_eV"], path+".falls_above_eV")
+	}
+	if m["falls_as"] != nil {
+		l.power = r.number(m["falls_as"], path+".falls_as")
+	}
 }
 
 // pair reads a reaction of two charged particles.

@@ -98,7 +98,7 @@ func TestUnknownNames(t *testing.T) {
 	for name, want := range map[string]string{
 		"ar":       "Ar",
 		"He/phelp": "phelps",
-		"zzz":      "want one of Ar, He",
+		"zzz":      "want one of Ar, CH4, CO2, H2, He, N2",
 	} {
 		if gas, err := lib.Gas(name); err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("%s: got %v, %v, want an error with %q", name, gas, err, want)

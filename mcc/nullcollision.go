@@ -128,7 +128,7 @@ func (m *Model) tryOne(s *rng.Stream, v velocity, i int32, ahead float64, out *O
 	if m.channels[c].changing != nil {
 		before := out.Counts[c]
 		after, ok = m.change(s, v, target, i, int32(c), ahead, out)
-		if g > gr.table.end {
+		if g > m.channels[c].end {
 			out.Beyond += out.Counts[c] - before
 		}
 		return after, ok
@@ -137,7 +137,7 @@ func (m *Model) tryOne(s *rng.Stream, v velocity, i int32, ahead float64, out *O
 	if !ok {
 		return v, false
 	}
-	if g > gr.table.end {
+	if g > m.channels[c].end {
 		out.Beyond++
 	}
 	m.count(c, int(i), v.square()-after.square(), ahead, out)

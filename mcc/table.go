@@ -15,13 +15,15 @@ type table struct {
 	rows     []float64 // (tableRows+1) x channels, cumulated over channels
 	ceiling  []float64 // of the sum, at any relative speed that a projectile of row r may have
 	max      float64   // nu_max [1/s]
-	end      float64   // speed beyond which a cross section is extrapolated or a rate held
 }
 
 // newTable tabulates the channels up to the speed top [m/s] each, for targets that move at reach
 // [m/s] at most.
 func newTable(channels []channel, top, reach, unit float64) table {
-	t := table{channels: len(channels), perSpeed: tableRows / (top / unit), end: top / unit}
+	t := table{channels: len(channels), perSpeed: tableRows / (top / unit)}
+	for c := range channels {
+		channels[c].end = top / unit
+	}
 	t.rows = make([]float64, (tableRows+1)*len(channels))
 	for r := range tableRows + 1 {
 		g := top * float64(r) / tableRows
@@ -30,7 +32,7 @@ func newTable(channels []channel, top, reach, unit float64) table {
 			sum += ch.density * ch.crossSection(g) * g
 			t.rows[r*len(channels)+c] = sum
 			if ch.process.Table.Beyond(ch.energyEV(g)) {
-				t.end = math.Min(t.end, g/unit)
+				channels[c].end = math.Min(channels[c].end, g/unit)
 			}
 		}
 		t.max = math.Max(t.max, sum)
@@ -107,6 +109,7 @@ type channel struct {
 	changing   *changing  // what attachment and reactions need; nil for others
 	target     string     // name of the gas
 	heavier    float64    // m/M
+	end        float64    // speed beyond which the cross section is extrapolated or the rate held
 	scattering Scattering // of elastic collisions
 	unit2      float64    // square of the caller's unit
 	sharing    Sharing    // of ionization

@@ -85,7 +85,7 @@ func (g *gases) from(name string) string {
 
 // processes are all of them of a gas, of electrons first.
 func processes(g *crosssections.Gas) []crosssections.Process {
-	return slices.Concat(g.Electron, g.IonNeutral)
+	return slices.Concat(g.Electron, g.IonNeutral, g.Neutral)
 }
 
 // statusText counts the processes of each status: "2 computed, 3 read".

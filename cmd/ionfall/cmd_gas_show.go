@@ -1,6 +1,7 @@
 package main
 
 import (
+	"cmp"
 	"fmt"
 	"slices"
 	"strings"
@@ -44,6 +45,7 @@ type shownGas struct {
 	Ions      []shownIon     `json:"ions"`
 	SHA256    string         `json:"sha256"`
 	Warnings  []string       `json:"warnings"`
+	Numbers   []shownNumber  `json:"numbers"`
 	Processes []shownProcess `json:"processes"`
 }
 
@@ -53,12 +55,24 @@ type shownIon struct {
 	MassU  float64 `json:"mass_u"`
 }
 
+// shownNumber is a number of the gas that is no cross section.
+type shownNumber struct {
+	Name   string  `json:"name"`
+	Value  float64 `json:"value"`
+	Unit   string  `json:"unit"`
+	Source string  `json:"source"`
+	Status string  `json:"status"`
+	Note   string  `json:"note"`
+}
+
 type shownProcess struct {
 	Name       string   `json:"name"`
 	Projectile string   `json:"projectile"`
+	Target     string   `json:"target"`
 	Kind       string   `json:"kind"`
 	Threshold  float64  `json:"threshold_eV"`
 	Products   []string `json:"products"`
+	Release    float64  `json:"release_eV"`
 	From       float64  `json:"rows_from_eV"`
 	To         float64  `json:"rows_to_eV"`
 	ValidTo    float64  `json:"valid_to_eV"`
@@ -123,14 +137,44 @@ func describeGas(g *crosssections.Gas, from string) *shownGas {
 	for _, q := range processes(g) {
 		t := &q.Table
 		s.Processes = append(s.Processes, shownProcess{
-			Name: q.Name, Projectile: q.Projectile, Kind: q.Kind.String(), Threshold: q.Threshold,
+			Name: q.Name, Projectile: q.Projectile, Target: cmp.Or(q.Target, g.Name),
+			Release: q.Release, Kind: q.Kind.String(), Threshold: q.Threshold,
 			Products: append([]string{}, q.Products...), From: t.Energy[0], To: t.Max(),
 			ValidTo: t.Limit(), Rows: len(t.Energy), Frame: q.Frame.String(),
 			Source: q.Source.Citation, Database: q.Source.Database, Date: q.Source.Date,
 			Status: q.Source.Status, Note: q.Source.Note, File: q.File, SHA256: q.SHA256,
 		})
 	}
+	for _, q := range g.Pairs {
+		t := &q.Table
+		s.Processes = append(s.Processes, shownProcess{
+			Name: q.Name, Projectile: q.Reactants[0], Target: q.Reactants[1], Kind: "pair",
+			Products: q.Products, From: t.Energy[0], To: t.Max(), ValidTo: t.Limit(),
+			Rows: len(t.Energy), Frame: crosssections.CenterOfMass.String(),
+			Source: q.Source.Citation, Database: q.Source.Database, Date: q.Source.Date,
+			Status: q.Source.Status, Note: q.Source.Note, File: q.File, SHA256: q.SHA256,
+		})
+	}
+	s.numbers(g)
 	return s
+}
+
+// numbers adds what is known of the molecule and its ions besides cross sections.
+func (s *shownGas) numbers(g *crosssections.Gas) {
+	s.Numbers = []shownNumber{}
+	add := func(name, unit string, d crosssections.Datum) {
+		if d.Value != 0 {
+			s.Numbers = append(s.Numbers, shownNumber{
+				name, d.Value, unit, d.Source.Citation, d.Source.Status, d.Source.Note,
+			})
+		}
+	}
+	add("polarizability", "A^3", g.Polarizability)
+	add("diameter", "A", g.Diameter)
+	add("width of energy sharing", "eV", g.Sharing)
+	for _, ion := range g.Ions {
+		add("electron affinity of "+strings.TrimRight(ion.Name, "-"), "eV", ion.Affinity)
+	}
 }
 
 // hashDigits of a hash tell tables apart on a screen; JSON has all.
@@ -154,7 +198,7 @@ func (s *shownGas) text() string {
 	}
 	b.WriteString("\n")
 	rows := [][]string{{
-		"process", "of", "kind", "threshold", "rows [eV]", "valid to", "frame", "status", "source",
+		"process", "of", "with", "kind", "threshold", "rows [eV]", "valid to", "frame", "status", "source",
 		"SHA-256",
 	}}
 	var sources []string
@@ -164,20 +208,30 @@ func (s *shownGas) text() string {
 			threshold = fmt.Sprintf("%g eV", q.Threshold)
 		}
 		rows = append(rows, []string{
-			q.Name, q.Projectile, q.Kind, threshold, fmt.Sprintf("%g to %g", q.From, q.To),
+			q.Name, q.Projectile, q.Target, q.Kind, threshold, fmt.Sprintf("%g to %g", q.From, q.To),
 			fmt.Sprintf("%g eV", q.ValidTo), strings.ReplaceAll(q.Frame, "_", " "), q.Status,
-			sourceNumber(&sources, &q), q.SHA256[:hashDigits],
+			sourceNumber(&sources, q.reference()), q.SHA256[:min(hashDigits, len(q.SHA256))],
 		})
 	}
 	b.WriteString(align(rows) + "\n")
+	numbers := [][]string{}
+	for _, n := range s.Numbers {
+		numbers = append(numbers, []string{
+			n.Name, fmt.Sprintf("%g %s", n.Value, n.Unit), n.Status,
+			sourceNumber(&sources, n.Source),
+		})
+	}
+	if len(numbers) > 0 {
+		b.WriteString(align(numbers) + "\n")
+	}
 	for i, text := range sources {
 		b.WriteString(wrap(fmt.Sprintf("[%d] %s", i+1, text)))
 	}
 	return b.String()
 }
 
-// sourceNumber is the number of the source in the list, which it joins if it is new.
-func sourceNumber(list *[]string, q *shownProcess) string {
+// reference is the source with its database and date.
+func (q *shownProcess) reference() string {
 	text := q.Source
 	if q.Database != "" {
 		text += "; database " + q.Database
@@ -185,6 +239,11 @@ func sourceNumber(list *[]string, q *shownProcess) string {
 	if q.Date != "" {
 		text += ", " + q.Date
 	}
+	return text
+}
+
+// sourceNumber is the number of the source in the list, which it joins if it is new.
+func sourceNumber(list *[]string, text string) string {
 	i := slices.Index(*list, text)
 	if i < 0 {
 		i = len(*list)

@@ -69,11 +69,12 @@ func TestGasList(t *testing.T) {
 	good(t, dir, "gas", "import", "xx.txt", "--as", "He", "--library", "mine")
 	var list []listedGas
 	out := good(t, dir, "gas", "list", "--json", "--library", "mine").out
-	if err := json.Unmarshal([]byte(out), &list); err != nil || len(list) != 2 {
+	if err := json.Unmarshal([]byte(out), &list); err != nil || len(list) != 8 {
 		t.Fatalf("%v: %s", err, out)
 	}
-	if list[0].Name != "Ar" || list[0].From != "bundled" || list[1].Name != "He" ||
-		list[1].From != "mine" || list[1].Processes != 3 || list[1].Status != "1 derived, 2 read" {
+	argon, helium := list[0], list[4]
+	if argon.Name != "Ar" || argon.From != "bundled" || helium.Name != "He" ||
+		helium.From != "mine" || helium.Processes != 3 || helium.Status != "1 derived, 2 read" {
 		t.Errorf("got %+v, want the bundled argon and the own helium", list)
 	}
 }
@@ -92,7 +93,8 @@ func TestGasShow(t *testing.T) {
 		t.Errorf("got %+v", shown)
 	}
 	got := call(t, dir, "gas", "show", "ar")
-	want := "ionfall: show: unknown gas \"ar\" (did you mean \"Ar\"?): want one of Ar, He\n"
+	want := "ionfall: show: unknown gas \"ar\" (did you mean \"Ar\"?): want one of Ar, CH4, CO2, " +
+		"H2, He, N2, O2, SiH4\n"
 	if got.status != 2 || got.errOut != want {
 		t.Errorf("got %d, %q, want 2, %q", got.status, got.errOut, want)
 	}
@@ -217,8 +219,8 @@ func TestGasImportErrors(t *testing.T) {
 			"one of Xx (see --species and --database)\n"},
 		{"", "", []string{"--as", "a b"}, "import: flag --as is given twice"},
 		{"", "", []string{"--mass", "-1", "--ions-from", "Hf"}, "--mass: got \"-1\", want a mass in u, " +
-			"above 0 and at most 10000\n--ions-from: unknown gas \"Hf\" (did you mean \"He\"?): want " +
-			"one of Ar, He\n"},
+			"above 0 and at most 10000\n--ions-from: unknown gas \"Hf\" (did you mean \"H2\"?): want " +
+			"one of Ar, CH4, CO2, H2, He, N2, O2, SiH4\n"},
 	} {
 		dir := folderWithExchange(t, c.old, c.changed)
 		if c.old == "" {

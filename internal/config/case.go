@@ -38,11 +38,24 @@ type Gas struct {
 	// Library is a folder of gases as written, or "": its gases go before the bundled ones. It
 	// is relative to the folder of the input file.
 	Library string
+	// IonizationSharing is EqualSharing, UniformSharing or OpalSharing.
+	IonizationSharing string
+	// ElectronScattering is IsotropicScattering or ForwardScattering.
+	ElectronScattering string
 	// FastNeutrals is nil where they are not followed.
 	FastNeutrals *FastNeutrals
 	// Mixture in the order of the file; the fractions sum to 1 within 1e-6.
 	Mixture []Component
 }
+
+// The words for the collision model of electrons.
+const (
+	EqualSharing        = "equal"
+	UniformSharing      = "uniform"
+	OpalSharing         = "opal"
+	IsotropicScattering = "isotropic"
+	ForwardScattering   = "forward"
+)
 
 // FastNeutrals asks for the molecules that ions hit to be followed to the walls.
 type FastNeutrals struct {

@@ -11,7 +11,10 @@ import (
 func TestDefaults(t *testing.T) {
 	want := &Case{
 		Gap: 0.04,
-		Gas: Gas{Pressure: 5, Temperature: 300, Mixture: []Component{{"Ar", 1}}},
+		Gas: Gas{
+			Pressure: 5, Temperature: 300, Mixture: []Component{{"Ar", 1}},
+			IonizationSharing: EqualSharing, ElectronScattering: IsotropicScattering,
+		},
 		Drive: Drive{
 			Tones: []Tone{{Frequency: 13.56e6, Amplitude: 250}},
 		},
@@ -35,7 +38,9 @@ func TestEveryKey(t *testing.T) {
 		Gap:   0.025,
 		Gas: Gas{
 			Pressure: 0.75 * 101325 / 760, Temperature: 523.15, Library: "../my gases",
-			Mixture: []Component{{"H2", 0.95}, {"SiH4", 0.0499}, {"NO", 1e-4}},
+			IonizationSharing: OpalSharing, ElectronScattering: ForwardScattering,
+			FastNeutrals: &FastNeutrals{2},
+			Mixture:      []Component{{"H2", 0.95}, {"SiH4", 0.0499}, {"NO", 1e-4}},
 		},
 		Drive: Drive{
 			Tones: []Tone{{13.56e6, 200, math.Pi / 2}, {2e6, 100, 0}},
@@ -123,8 +128,8 @@ func TestEqual(t *testing.T) {
 			t.Errorf("a change of %s makes no difference", path)
 		}
 	}, "")
-	if changed != 35 {
-		t.Errorf("%d fields were changed, want 35", changed)
+	if changed != 37 {
+		t.Errorf("%d fields were changed, want 37", changed)
 	}
 	same.IonEnergyThresholds = []float64{}
 	if !c.Equal(same) {

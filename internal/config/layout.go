@@ -55,6 +55,12 @@ func layout(c *Case) mapping {
 }
 
 func gasLayout(g *Gas) value {
+	if g.IonizationSharing == "" {
+		g.IonizationSharing = EqualSharing
+	}
+	if g.ElectronScattering == "" {
+		g.ElectronScattering = IsotropicScattering
+	}
 	return mapping{fields: []field{
 		{
 			key: "pressure", required: true,
@@ -80,6 +86,24 @@ func gasLayout(g *Gas) value {
 		{
 			key: "fast_neutrals", value: pointer[FastNeutrals]{&g.FastNeutrals, fastNeutralsLayout},
 			doc: "Follow the molecules that ions hit to the walls. Default: not, as it costs time.",
+		},
+		{
+			key: "ionization_sharing",
+			value: choice{
+				dst:     &g.IonizationSharing,
+				options: []string{EqualSharing, UniformSharing, OpalSharing},
+			},
+			doc: "How both electrons share what an ionization leaves: equal halves, uniform, or " +
+				"by the law of Opal, Peterson and Beaty (opal). Default: equal.",
+		},
+		{
+			key: "electron_scattering",
+			value: choice{
+				dst:     &g.ElectronScattering,
+				options: []string{IsotropicScattering, ForwardScattering},
+			},
+			doc: "Angles of elastic collisions of electrons: isotropic, or forward peaked as in a " +
+				"screened Coulomb field with the same momentum transfer. Default: isotropic.",
 		},
 		{
 			key: "mixture", required: true, value: mixture{&g.Mixture},

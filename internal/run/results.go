@@ -5,7 +5,6 @@ import (
 	"runtime"
 	"strings"
 
-	"ionfall/crosssections"
 	"ionfall/diagnostics"
 	"ionfall/internal/bib"
 	"ionfall/internal/phys"
@@ -65,6 +64,7 @@ func (m *machine) results() map[string]any {
 		r["ion_fraction_above"] = fractions
 	}
 	m.filmResults(r)
+	m.neutralResults(r)
 	return r
 }
 
@@ -128,7 +128,8 @@ func (m *machine) provenance() map[string]any {
 			"particles_per_cell": n.ParticlesPerCell, "scheme": n.Scheme,
 			"ion_substeps": n.IonSubsteps, "chunks": n.Chunks, "reasons": c.Reasons,
 		},
-		"ionization_energy_sharing": "equal",
+		"ionization_energy_sharing": m.plan.sharingName(),
+		"electron_scattering":       m.plan.scatteringName(),
 		"accuracy_reached":          c.Reached, "budget_spent": c.Spent,
 		"caution": "a simulated value is no interlock setting",
 	}
@@ -159,24 +160,9 @@ func (m *machine) references() []store.Reference {
 		}
 	}
 	for _, g := range m.plan.Gases {
-		list = append(list, sources(g, g.Electron)...)
-		list = append(list, sources(g, g.IonNeutral)...)
+		list = append(list, sources(g.Name, g.Electron)...)
 	}
-	return list
-}
-
-// sources lists where a gas's cross sections come from.
-func sources(g *crosssections.Gas, processes []crosssections.Process) []store.Reference {
-	var list []store.Reference
-	for _, p := range processes {
-		key := p.Source.Bib
-		if key == "" {
-			key = p.File
-		}
-		why := fmt.Sprintf("cross section of %s: %s (%s)", g.Name, p.Name, p.Source.Status)
-		list = append(list, store.Reference{Key: key, Citation: p.Source.Citation, Why: why})
-	}
-	return list
+	return append(list, m.plan.heavySources()...)
 }
 
 // historyTable is one row a period.

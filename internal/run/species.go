@@ -85,6 +85,7 @@ func sign(charge int) int {
 func (p *Plan) settings(h heavySpecies) mcc.Settings {
 	set := mcc.Settings{Projectile: h.Name, Mass: h.Mass, Charge: h.Charge, Unit: 1, TimeStep: 1e-20}
 	set.TopEnergy = 1
+	set.Sharing, set.Scattering = p.sharing(), p.scattering()
 	if threshold := p.fastThreshold(); threshold > 0 && h.Name != crosssections.ElectronName {
 		set.Recoil = threshold
 		if h.Charge == 0 {
