@@ -208,7 +208,8 @@ func (s *shownGas) text() string {
 			threshold = fmt.Sprintf("%g eV", q.Threshold)
 		}
 		rows = append(rows, []string{
-			q.Name, q.Projectile, q.Target, q.Kind, threshold, fmt.Sprintf("%g to %g", q.From, q.To),
+			q.Name, q.Projectile, q.Target, q.Kind, threshold,
+			fmt.Sprintf("%g to %g", q.From, q.To),
 			fmt.Sprintf("%g eV", q.ValidTo), strings.ReplaceAll(q.Frame, "_", " "), q.Status,
 			sourceNumber(&sources, q.reference()), q.SHA256[:min(hashDigits, len(q.SHA256))],
 		})
