@@ -41,7 +41,6 @@ func Levels() Rules {
 			"internal/rng":        0,
 			"internal/kernels":    0,
 			"internal/stats":      0,
-			"internal/surrogate":  0,
 			"internal/inputerr":   0,
 			"internal/bib":        0,
 			"internal/progress":   0,
