@@ -34,6 +34,7 @@ func Levels() Rules {
 			"internal/store":      2,
 			"internal/probe":      2,
 			"crosssections":       1,
+			"internal/surrogate":  1,
 			"internal/table":      1,
 			"internal/config":     1,
 			"internal/validation": 1,
