@@ -11,7 +11,7 @@ import (
 // work returns the energy that the field gave a species in the period of the ledger [J/m2]: what
 // it has more, and what it lost, less what came in with new particles from outside.
 func work(l *pic.SpeciesLedger, before float64, electrons bool) float64 {
-	e := l.Kinetic - before + l.WallEnergy[0] + l.WallEnergy[1]
+	e := l.Kinetic - before + l.WallEnergy[0] + l.WallEnergy[1] + l.GoneEnergy
 	for _, loss := range l.Losses {
 		e += loss
 	}
@@ -51,6 +51,7 @@ func (m *machine) account(l *pic.Ledger) {
 			energy[wall] += sp.WallEnergy[wall]
 		}
 	}
+	c.countNegative(species, l)
 	row.Content = l.Weight * float64(row.Ions-negative)
 	for wall := range 2 {
 		row.Flux[wall] = number[wall] / period
@@ -81,6 +82,7 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, species []pic.Species,
 		t.Work = make([]float64, len(l.Species))
 		t.Collisions = make([]float64, len(l.Species))
 		t.Moves = make([]float64, len(l.Species))
+		t.NegativeBorn, t.NegativeLost = make([]float64, len(l.Species)), make([]float64, len(l.Species))
 	}
 	t.Periods++
 	t.Electric += l.Electric
@@ -94,6 +96,10 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, species []pic.Species,
 		}
 		t.Beyond += float64(sp.Beyond)
 		t.Moves[i] += float64(sp.Count) * float64(l.Steps)
+		if i > 0 && species[i].Charge < 0 {
+			t.NegativeBorn[i] += float64(sp.Born)
+			t.NegativeLost[i] += float64(sp.Gone + sp.Absorbed[0] + sp.Absorbed[1])
+		}
 		if species[i].Charge > 0 {
 			t.Born += l.Weight * float64(sp.Born)
 			t.Lost += l.Weight * float64(sp.Absorbed[0]+sp.Absorbed[1]+sp.Gone)

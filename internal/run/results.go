@@ -79,6 +79,9 @@ func (m *machine) powers() map[string]any {
 	total := m.series(func(r *Row) float64 { return r.TotalPower }, n)
 	powers := map[string]any{"total": value(m.atLeast(stats.Mean(total)), "W/m2")}
 	for i, sp := range m.sim.Species() {
+		if sp.Charge == 0 {
+			continue // the field gives them nothing
+		}
 		name := sp.Name
 		if i == 0 {
 			name = "electron"
