@@ -22,6 +22,19 @@ func work(l *pic.SpeciesLedger, before float64, electrons bool) float64 {
 	return e - l.BornEnergy
 }
 
+// gasHeating returns the energy that collisions of a heavy species left in the gas [J/m2]: what it
+// lost, less what fast neutrals began with, which ions had lost before.
+func gasHeating(l *pic.SpeciesLedger, charge int) float64 {
+	sum := 0.0
+	for _, loss := range l.Losses {
+		sum += loss
+	}
+	if charge == 0 {
+		sum -= l.BornEnergy
+	}
+	return sum
+}
+
 // account enters a period's ledger into the history and, while averaging, into the totals.
 func (m *machine) account(l *pic.Ledger) {
 	c := &m.control
@@ -39,6 +52,9 @@ func (m *machine) account(l *pic.Ledger) {
 		w := work(sp, c.Kinetic[i], i == 0)
 		row.Power = append(row.Power, w/period)
 		c.Kinetic[i] = sp.Kinetic
+		if i > 0 {
+			row.GasHeating += gasHeating(sp, species[i].Charge) / period
+		}
 		if charge := species[i].Charge; charge <= 0 {
 			if i > 0 {
 				negative += int64(-charge) * sp.Count

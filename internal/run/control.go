@@ -77,6 +77,7 @@ type Row struct {
 	Energy      [2]float64 // mean of ions by wall [eV]
 	Power       []float64  // by species [W/m2]
 	TotalPower  float64    // [W/m2]
+	GasHeating  float64    // by ions and fast neutrals [W/m2]
 	Content     float64    // positive less negative ions in the gap [1/m2]
 	Event       string
 	FieldEnergy float64 // [J/m2]
