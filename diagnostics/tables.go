@@ -46,10 +46,13 @@ func (r *Recorder) gridColumns() []gridColumn {
 				first + gridDensity, ColumnName(rec.name) + "_density_m3", "1/m3",
 				"number density of " + rec.name,
 			},
-			gridColumn{
+		)
+		if rec.charge != 0 {
+			list = append(list, gridColumn{
 				first + gridPower, "power_" + ColumnName(rec.name) + "_Wpm3", "W/m3",
 				"power density from the field to " + rec.name,
 			})
+		}
 		if i == 0 {
 			list = append(list, gridColumn{
 				first + gridEnergy, "electron_temperature_eV", "eV",

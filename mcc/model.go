@@ -22,6 +22,9 @@ type Settings struct {
 	// Neutral is the projectile a fast neutral, of the Diameter [A] if it is known.
 	Neutral  bool
 	Diameter float64
+	// Haste multiplies the rates of attachment, for what is to come to its balance faster; below 1
+	// it is 1.
+	Haste float64
 	// Recoil is the energy above which a target that was hit is reported [eV]; 0 for none.
 	Recoil float64
 	// Stop is the energy below which a projectile ends after a collision [eV]; 0 for none.

@@ -139,6 +139,9 @@ func newChannel(p *crosssections.Process, b Background, set *Settings) channel {
 		unit2: unit * unit, sharing: set.Sharing,
 		width2: 2 * width * phys.ElementaryCharge / mu / (unit * unit),
 	}
+	if p.Kind == crosssections.Attachment && set.Haste > 1 {
+		c.density *= set.Haste
+	}
 	if p.Kind == crosssections.Elastic {
 		c.scattering = set.Scattering
 	}

@@ -40,9 +40,12 @@ type Config struct {
 	Electrodes [2]Electrode // by Wall
 	Species    []Species
 	Relaxation Relaxation
-	Weight     float64 // W [1/m2]
-	Chunks     int
-	Seed       uint64
+	// Pairs end each other once every PairEvery steps, a multiple of all species' sub-cycling.
+	Pairs     []Neutralization
+	PairEvery int
+	Weight    float64 // W [1/m2]
+	Chunks    int
+	Seed      uint64
 	// Kernels is the set of hot loops to use; the zero value is the fastest that works here. All
 	// give the same bits.
 	Kernels kernels.Set
@@ -79,6 +82,9 @@ func (c *Config) check() error {
 	}
 	if c.Isolated && (c.Drive.Bias != 0 || len(c.Drive.Tones) > 0) {
 		return fmt.Errorf("pic: an isolated electrode has no drive")
+	}
+	if err := c.checkPairs(); err != nil {
+		return err
 	}
 	for i, sp := range c.Species {
 		if !(sp.Mass > 0) {

@@ -11,6 +11,7 @@ type tally struct {
 	gone                         int64    // ended by collisions
 	emitted, reflected, absorbed [2]int64 // by wall
 	bornV2                       float64
+	goneV2                       float64 // of those that met another
 	emittedV2                    float64
 	absorbedV2                   [2]float64
 }
@@ -35,6 +36,7 @@ type SpeciesLedger struct {
 	Born       int64      // by collisions
 	Gone       int64      // ended by collisions: attached, neutralized, or of another species now
 	BornEnergy float64    // [J/m2]
+	GoneEnergy float64    // of those that met a particle of opposite charge [J/m2]
 	Absorbed   [2]int64   // by Wall
 	WallEnergy [2]float64 // carried to it [J/m2]
 	Emitted    [2]int64   // electrons set free at the Wall by ions
@@ -74,6 +76,7 @@ func (sp *Species) takeLedger(weight float64) SpeciesLedger {
 		l.Born += t.born
 		l.Gone += t.gone
 		l.BornEnergy += joule * t.bornV2
+		l.GoneEnergy += joule * t.goneV2
 		l.EmitEnergy += joule * t.emittedV2
 		for w := range 2 {
 			l.Absorbed[w] += t.absorbed[w]

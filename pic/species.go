@@ -24,7 +24,7 @@ type Species struct {
 }
 
 // FastPrefix before the name of a neutral makes that of the species of its fast ones.
-const FastPrefix = "fast "
+const FastPrefix = "fast_"
 
 // chunk is a fixed part of a species' particles: positions [cells], velocities [cells/step].
 type chunk struct {

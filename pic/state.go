@@ -124,21 +124,21 @@ func (c *chunk) restore(dec *codec.Decoder, name string, cells int) error {
 	return nil
 }
 
-const tallyCounts, tallySums = 8, 4
+const tallyCounts, tallySums = 8, 5
 
 func (t *tally) flat() ([]int64, []float64) {
 	return []int64{
 			t.born, t.emitted[0], t.emitted[1],
 			t.reflected[0], t.reflected[1], t.absorbed[0], t.absorbed[1], t.gone,
 		},
-		[]float64{t.bornV2, t.emittedV2, t.absorbedV2[0], t.absorbedV2[1]}
+		[]float64{t.bornV2, t.emittedV2, t.absorbedV2[0], t.absorbedV2[1], t.goneV2}
 }
 
 func (t *tally) restore(n []int64, f []float64) {
 	*t = tally{
 		born: n[0], emitted: [2]int64{n[1], n[2]},
 		reflected: [2]int64{n[3], n[4]}, absorbed: [2]int64{n[5], n[6]}, gone: n[7],
-		bornV2: f[0], emittedV2: f[1], absorbedV2: [2]float64{f[2], f[3]},
+		bornV2: f[0], emittedV2: f[1], absorbedV2: [2]float64{f[2], f[3]}, goneV2: f[4],
 	}
 }
 

@@ -96,9 +96,27 @@ func (t *sheet) electrodes(input *config.Case) {
 				"ion_fraction_above.%s."+name+"."+key)
 		}
 	}
+	t.neutrals()
 	t.at("film: ion energy per atom", "film_energy_per_atom_eV.%s")
 	t.at("film: ions per atom", "film_ions_per_atom.%s")
 	t.at("sheath width", "sheath_width_m.%s")
+}
+
+// neutrals are the rows of fast neutrals, where they were followed.
+func (t *sheet) neutrals() {
+	names := t.keys("neutral_mean_energy_eV", "grounded")
+	for _, name := range names {
+		label := name + ": "
+		if name == "all" {
+			label = "fast neutrals: "
+		} else if len(names) <= 2 {
+			continue // the only one
+		}
+		t.at(label+"mean energy", "neutral_mean_energy_eV.%s."+name)
+		t.at(label+"flux", "neutral_flux_m2ps.%s."+name)
+		t.at(label+"energy flux", "neutral_energy_flux_Wpm2.%s."+name)
+	}
+	t.at("ions and fast neutrals: energy flux", "energetic_energy_flux_Wpm2.%s")
 }
 
 func (t *sheet) plasma() {

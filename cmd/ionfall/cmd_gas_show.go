@@ -198,7 +198,8 @@ func (s *shownGas) text() string {
 	}
 	b.WriteString("\n")
 	rows := [][]string{{
-		"process", "of", "with", "kind", "threshold", "rows [eV]", "valid to", "frame", "status", "source",
+		"process", "of", "with", "kind", "threshold", "rows [eV]", "valid to", "frame", "status",
+		"source",
 		"SHA-256",
 	}}
 	var sources []string

@@ -19,4 +19,6 @@ const (
 	Refinement Purpose = 6
 	// Coulomb pairs electrons and turns their relative velocity.
 	Coulomb Purpose = 7
+	// Pairs lets charged particles end each other.
+	Pairs Purpose = 8
 )

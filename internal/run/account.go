@@ -11,7 +11,7 @@ import (
 // work returns the energy that the field gave a species in the period of the ledger [J/m2]: what
 // it has more, and what it lost, less what came in with new particles from outside.
 func work(l *pic.SpeciesLedger, before float64, electrons bool) float64 {
-	e := l.Kinetic - before + l.WallEnergy[0] + l.WallEnergy[1]
+	e := l.Kinetic - before + l.WallEnergy[0] + l.WallEnergy[1] + l.GoneEnergy
 	for _, loss := range l.Losses {
 		e += loss
 	}
@@ -20,6 +20,19 @@ func work(l *pic.SpeciesLedger, before float64, electrons bool) float64 {
 		return e - l.EmitEnergy
 	}
 	return e - l.BornEnergy
+}
+
+// gasHeating returns the energy that collisions of a heavy species left in the gas [J/m2]: what it
+// lost, less what fast neutrals began with, which ions had lost before.
+func gasHeating(l *pic.SpeciesLedger, charge int) float64 {
+	sum := 0.0
+	for _, loss := range l.Losses {
+		sum += loss
+	}
+	if charge == 0 {
+		sum -= l.BornEnergy
+	}
+	return sum
 }
 
 // account enters a period's ledger into the history and, while averaging, into the totals.
@@ -39,6 +52,9 @@ func (m *machine) account(l *pic.Ledger) {
 		w := work(sp, c.Kinetic[i], i == 0)
 		row.Power = append(row.Power, w/period)
 		c.Kinetic[i] = sp.Kinetic
+		if i > 0 {
+			row.GasHeating += gasHeating(sp, species[i].Charge) / period
+		}
 		if charge := species[i].Charge; charge <= 0 {
 			if i > 0 {
 				negative += int64(-charge) * sp.Count
@@ -51,6 +67,7 @@ func (m *machine) account(l *pic.Ledger) {
 			energy[wall] += sp.WallEnergy[wall]
 		}
 	}
+	c.countNegative(species, l)
 	row.Content = l.Weight * float64(row.Ions-negative)
 	for wall := range 2 {
 		row.Flux[wall] = number[wall] / period
@@ -81,6 +98,7 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, species []pic.Species,
 		t.Work = make([]float64, len(l.Species))
 		t.Collisions = make([]float64, len(l.Species))
 		t.Moves = make([]float64, len(l.Species))
+		t.NegativeBorn, t.NegativeLost = make([]float64, len(l.Species)), make([]float64, len(l.Species))
 	}
 	t.Periods++
 	t.Electric += l.Electric
@@ -94,6 +112,10 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, species []pic.Species,
 		}
 		t.Beyond += float64(sp.Beyond)
 		t.Moves[i] += float64(sp.Count) * float64(l.Steps)
+		if i > 0 && species[i].Charge < 0 {
+			t.NegativeBorn[i] += float64(sp.Born)
+			t.NegativeLost[i] += float64(sp.Gone + sp.Absorbed[0] + sp.Absorbed[1])
+		}
 		if species[i].Charge > 0 {
 			t.Born += l.Weight * float64(sp.Born)
 			t.Lost += l.Weight * float64(sp.Absorbed[0]+sp.Absorbed[1]+sp.Gone)

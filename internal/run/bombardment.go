@@ -4,6 +4,7 @@ import (
 	"fmt"
 
 	"ionfall/crosssections"
+	"ionfall/internal/stats"
 	"ionfall/internal/store"
 	"ionfall/mcc"
 	"ionfall/pic"
@@ -76,4 +77,10 @@ func sources(gas string, processes []crosssections.Process) []store.Reference {
 		list = append(list, store.Reference{Key: key, Citation: p.Source.Citation, Why: why})
 	}
 	return list
+}
+
+// gasHeating is the power that collisions of ions and fast neutrals leave in the gas.
+func (m *machine) gasHeating() store.Value {
+	series := m.series(func(r *Row) float64 { return r.GasHeating }, m.control.Averaged.Periods)
+	return value(m.atLeast(stats.Mean(series)), "W/m2")
 }

@@ -22,9 +22,10 @@ const (
 	mostNegative = 3.0
 )
 
-// composition estimates the ions from production by electrons of the temperature [eV], reactions
+// composition estimates the ions from production by electrons of the temperature [eV] and density
+// [1/m3], reactions
 // with the gas, and a life until the walls: N_i (1/life + sum_j nu_ij) = S_i + sum_j N_j nu_ji.
-func (p *Plan) composition(te float64) composition {
+func (p *Plan) composition(te, density float64) composition {
 	index := map[string]int{}
 	for i, h := range p.heavy {
 		index[h.Name] = i
@@ -56,7 +57,7 @@ func (p *Plan) composition(te float64) composition {
 		}
 		n = next
 	}
-	return p.parts(n)
+	return p.parts(n, p.negativeStart(te, density))
 }
 
 // conversions are the frequencies at which one species becomes another [1/s].
@@ -86,14 +87,16 @@ func (p *Plan) conversions(index map[string]int) [][]float64 {
 	return flow
 }
 
-// parts are the densities as parts of the positive ions, and the negative ones over the electrons:
-// they live until they meet a positive ion, of which there are as many as both together.
-func (p *Plan) parts(n []float64) composition {
+// parts are the densities as parts of the positive ions, and the negative ones, which are negative
+// times the electrons in all.
+func (p *Plan) parts(n []float64, negative float64) composition {
 	var c composition
-	sum := 0.0
+	sum, minus := 0.0, 0.0
 	for i, h := range p.heavy {
 		if h.Charge > 0 {
 			sum += n[i]
+		} else {
+			minus += n[i]
 		}
 	}
 	for i, h := range p.heavy {
@@ -105,12 +108,11 @@ func (p *Plan) parts(n []float64) composition {
 			}
 			c.positive = append(c.positive, part)
 		case h.Charge < 0:
-			// As many as are made while positive ions live; pair processes prolong or cut it.
 			part := 0.0
-			if sum > 0 {
-				part = n[i] / sum
+			if minus > 0 {
+				part = negative * n[i] / minus
 			}
-			c.negative = append(c.negative, math.Min(mostNegative, part))
+			c.negative = append(c.negative, part)
 		}
 	}
 	return c

@@ -28,8 +28,9 @@ type control struct {
 	Transit   float64   // of an ion through the sheath [periods]
 
 	Round      round
-	Projecting bool // the density is still projected ahead
-	Window     int  // periods of undisturbed settling
+	Negative   []negativeCount // by species
+	Projecting bool            // the density is still projected ahead
+	Window     int             // periods of undisturbed settling
 	Restarts   int
 	Averaged   accountTotals
 	Reached    bool // the asked-for errors
@@ -62,6 +63,8 @@ type accountTotals struct {
 	Moves      []float64 // by species
 	Beyond     float64
 	AllCollide float64
+	// NegativeBorn and NegativeLost are simulated particles by species.
+	NegativeBorn, NegativeLost []float64
 }
 
 // Row is one RF period of the history.
@@ -74,6 +77,7 @@ type Row struct {
 	Energy      [2]float64 // mean of ions by wall [eV]
 	Power       []float64  // by species [W/m2]
 	TotalPower  float64    // [W/m2]
+	GasHeating  float64    // by ions and fast neutrals [W/m2]
 	Content     float64    // positive less negative ions in the gap [1/m2]
 	Event       string
 	FieldEnergy float64 // [J/m2]

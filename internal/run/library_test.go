@@ -223,7 +223,7 @@ func TestLibraryErrors(t *testing.T) {
 		}, "Xx/e-01-elastic.csv: more than 4194304 bytes"},
 		"unknown": {
 			with("{Xy: 1}"), func(string) error { return nil },
-			`gas.mixture.Xy: got "Xy", want one of Ar, He, Xx; did you mean "Xx"?`,
+			`gas.mixture.Xy: got "Xy", want one of Ar, CH4, CO2, H2, He, N2, O2, SiH4, Xx; did you mean "Xx"?`,
 		},
 	} {
 		dir := inputFolder(t, c.input, "Xx")

@@ -28,6 +28,7 @@ type Plan struct {
 	Kernels kernels.Set
 
 	heavy    []heavySpecies // ions and fast neutrals, in the order of the simulation's species
+	haste    float64        // see pilotHaste; below 1 for none
 	bundled  *crosssections.Library
 	own      *crosssections.Library // the user's, or nil
 	ownFiles crosssections.Files    // of the gases in use that are the user's
@@ -227,6 +228,7 @@ func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 			Least: p.leastNeutral(h),
 		})
 	}
+	p.addPairs(&c, n)
 	return pic.New(c)
 }
 

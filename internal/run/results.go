@@ -54,6 +54,7 @@ func (m *machine) results() map[string]any {
 		"ion_mean_energy_eV": energy, "ion_flux_m2ps": flux, "ion_energy_flux_Wpm2": energyFlux,
 		"ion_energy_percentile_eV": percentiles, "sheath_width_m": sheath,
 		"power_Wpm2":                     m.powers(),
+		"gas_heating_Wpm2":               m.gasHeating(),
 		"self_bias_V":                    store.Value{Value: m.plan.Case.Drive.Bias, Unit: "V"},
 		"plasma_potential_V":             value(m.rec.PlasmaPotential(), "V"),
 		"electron_density_center_m3":     value(m.atLeast(m.rec.CenterDensity()), "1/m3"),
@@ -79,6 +80,9 @@ func (m *machine) powers() map[string]any {
 	total := m.series(func(r *Row) float64 { return r.TotalPower }, n)
 	powers := map[string]any{"total": value(m.atLeast(stats.Mean(total)), "W/m2")}
 	for i, sp := range m.sim.Species() {
+		if sp.Charge == 0 {
+			continue // the field gives them nothing
+		}
 		name := sp.Name
 		if i == 0 {
 			name = "electron"
@@ -198,6 +202,8 @@ func (m *machine) historyTable() *table.Table {
 	}
 	add("power_total_Wpm2", "W/m2", "delivered by the drive",
 		func(r *Row) float64 { return r.TotalPower })
+	add("gas_heating_Wpm2", "W/m2", "left in the gas by collisions of ions and fast neutrals",
+		func(r *Row) float64 { return r.GasHeating })
 	add("field_energy_Jpm2", "J/m2", "at the end of the period",
 		func(r *Row) float64 { return r.FieldEnergy })
 	t.AddText("event", "what the program did to the particles, if anything", event)

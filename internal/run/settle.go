@@ -64,6 +64,9 @@ func (m *machine) project(row *Row) (done bool) {
 		content *= math.Exp(jump)
 		c.Event = fmt.Sprintf("density projected by %+.1f %%", 100*math.Expm1(jump))
 	}
+	if m.balanceNegative() {
+		done = false
+	}
 	c.startRound(content)
 	return done || r.Number >= mostRounds
 }

@@ -85,6 +85,7 @@ func sign(charge int) int {
 func (p *Plan) settings(h heavySpecies) mcc.Settings {
 	set := mcc.Settings{Projectile: h.Name, Mass: h.Mass, Charge: h.Charge, Unit: 1, TimeStep: 1e-20}
 	set.TopEnergy = 1
+	set.Haste = p.haste
 	set.Sharing, set.Scattering = p.sharing(), p.scattering()
 	if threshold := p.fastThreshold(); threshold > 0 && h.Name != crosssections.ElectronName {
 		set.Recoil = threshold
@@ -197,7 +198,8 @@ func (p *Plan) fill(s *pic.Simulation, particles int, electronTemperature float6
 	if err := s.Load(0, particles, uniform, electronTemperature); err != nil {
 		return err
 	}
-	start := p.composition(electronTemperature * phys.Boltzmann / phys.ElementaryCharge)
+	density := s.Config().Weight * float64(particles) / p.Case.Gap
+	start := p.composition(electronTemperature*phys.Boltzmann/phys.ElementaryCharge, density)
 	all := 0.0 // negative ions over electrons
 	for _, part := range start.negative {
 		all += part

@@ -72,6 +72,8 @@ func (m *machine) simulation(n Numerics, weight float64) (*pic.Simulation, error
 		c := *p.Case
 		c.Seed ^= pilotSeed
 		p.Case = &c
+		q, _ := p.firstGuess()
+		p.haste = p.pilotHaste(q.ElectronEV)
 	}
 	return p.assemble(n, weight)
 }

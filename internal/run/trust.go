@@ -25,6 +25,8 @@ var (
 	balanceOfAll  = bounds{0.02, 0.05}
 	ionBalance    = bounds{0.02, 0.05}
 	tableEnd      = bounds{1e-4, 1e-2}
+	// By how much the number of negative ions is off is not known better than their data.
+	negativeBalance = bounds{0.15, 0.5}
 	// Turned round: below warn it is doubtful.
 	perCell     = bounds{50, 10}
 	perDebye    = bounds{20, 5}
@@ -61,6 +63,7 @@ func (m *machine) trust() []store.Check {
 	checks := m.resolutionChecks()
 	checks = append(checks, m.particleChecks()...)
 	checks = append(checks, m.balanceChecks()...)
+	checks = append(checks, m.negativeChecks()...)
 	return append(checks, m.statisticsChecks()...)
 }
 
