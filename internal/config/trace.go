@@ -61,6 +61,11 @@ func (t *Trace) Load(folder string) (*Waveform, error) {
 		bad.File = path
 		return nil, inputerr.List{bad}
 	}
+	return t.Read(path, src)
+}
+
+// Read is as Load, for the content of the file.
+func (t *Trace) Read(path string, src []byte) (*Waveform, error) {
 	list, err := readSamples(path, src)
 	if err != nil {
 		return nil, inputerr.List{err}
