@@ -63,7 +63,7 @@ func (r *Recorder) EndPeriod(weight float64) {
 		return
 	}
 	for _, rec := range r.species {
-		rec.flush(weight)
+		rec.flush(&r.config, weight)
 	}
 	r.flushIonization(weight)
 	r.centralValues()
@@ -77,7 +77,6 @@ func (r *Recorder) EndPeriod(weight float64) {
 func (r *Recorder) flushIonization(weight float64) {
 	nodes := r.config.Cells + 1
 	sum := r.grid[gridIonization]
-	perVolume := weight / r.config.CellSize()
 	for _, rec := range r.species {
 		for c := range rec.chunks {
 			counts := rec.chunks[c].ionized
@@ -85,11 +84,7 @@ func (r *Recorder) flushIonization(weight float64) {
 				if n == 0 {
 					continue
 				}
-				volume := perVolume
-				if j := i % nodes; j == 0 || j == nodes-1 {
-					volume *= 2
-				}
-				sum[i] += volume * float64(n)
+				sum[i] += weight / r.volume[i%nodes] * float64(n)
 				counts[i] = 0
 			}
 		}

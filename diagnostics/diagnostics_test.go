@@ -158,7 +158,7 @@ func TestHitsAreSorted(t *testing.T) {
 	}
 	r.Hits(1, 0, []pic.Hit{hit(10.05, 3.5, pic.Grounded), hit(30, 45.5, pic.Grounded)})
 	r.Hits(1, 3, []pic.Hit{hit(60, 0, pic.Grounded), hit(1e6, 89.9, pic.Grounded), hit(5, 10, pic.Powered)})
-	rec.flush(2)
+	rec.flush(&pic.Config{}, 2)
 	im := rec.impacts[pic.Grounded]
 	if im.counts[0] != 8 || math.Abs(im.energy[0]-2*(10.05+30+60+1e6)) > 1e-3 {
 		t.Errorf("%g ions, %g eV", im.counts[0], im.energy[0])

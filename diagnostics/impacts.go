@@ -79,12 +79,15 @@ func (r *Recorder) Hits(species, chunk int, hits []pic.Hit) {
 	}
 }
 
-// flush adds what the chunks counted in a period, with the weight that the particles had.
-func (rec *speciesRecord) flush(weight float64) {
+// flush adds what the chunks counted in a period, with the weight that the particles had per area of
+// the powered electrode, for the area of each.
+func (rec *speciesRecord) flush(config *pic.Config, weight float64) {
 	if rec.impacts[0] == nil {
 		return
 	}
+	whole := weight
 	for wall, r := range rec.impacts {
+		weight := whole / config.WallArea(pic.Wall(wall))
 		var count, energy float64
 		above := make([]float64, len(r.above))
 		for c := range rec.chunks {

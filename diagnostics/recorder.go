@@ -19,6 +19,7 @@ type Recorder struct {
 	phases  int     // bins of RF phase
 
 	thresholds []float64 // [eV]
+	volume     []float64 // of the nodes, per area of the powered electrode [m]
 	regions    []Region
 	eBins      *bins
 
@@ -110,8 +111,11 @@ func New(s *pic.Simulation, thresholds []float64, periods int) *Recorder {
 		}
 	}
 	r.regions = regionsOf(c.Gap)
-	r.eBins = electronBins(electronTop(c.Drive.Largest()))
+	r.eBins = electronBins(electronTop(c.LargestVoltage()))
 	nodes := c.Cells + 1
+	for j := range nodes {
+		r.volume = append(r.volume, c.NodeVolume(j))
+	}
 	list := s.Species()
 	for i := range list {
 		r.species = append(r.species, newSpeciesRecord(r, &c, &list[i]))
@@ -154,7 +158,7 @@ func newSpeciesRecord(r *Recorder, c *pic.Config, sp *pic.Species) *speciesRecor
 		}
 	}
 	if sp.Charge >= 0 {
-		ions := uniformBins(1.3*c.Drive.Largest()+30, ionEnergyBins)
+		ions := uniformBins(1.3*c.LargestVoltage()+30, ionEnergyBins)
 		for wall := range rec.impacts {
 			rec.impacts[wall] = newImpactRecord(ions, len(r.thresholds))
 			for k := range rec.chunks {
@@ -344,7 +348,6 @@ func (r *Recorder) Reduce(f *pic.Frame, worker, workers int) {
 		r.samples[p]++
 	}
 	base := p * nodes
-	dx := r.config.CellSize()
 	for j := from; j < to; j++ {
 		r.grid[gridPotential][base+j] += f.Phi[j]
 		r.grid[gridField][base+j] += f.E[j]
@@ -358,10 +361,7 @@ func (r *Recorder) Reduce(f *pic.Frame, worker, workers int) {
 		watt := 2 * rec.eVPerV2 * phys.ElementaryCharge / (r.config.TimeStep() * float64(rec.every))
 		share := r.share(rec, f.Step)
 		for j := from; j < to; j++ {
-			perVolume := f.Weight / dx
-			if j == 0 || j == nodes-1 {
-				perVolume *= 2
-			}
+			perVolume := f.Weight / r.volume[j]
 			var sumPower, sumEnergy float64
 			for c := r.part(f.Step); c < len(rec.chunks); c += r.parts() {
 				if m := rec.chunks[c].moments; j < len(m) {

@@ -214,7 +214,8 @@ func (r *Recorder) Progress(wall pic.Wall) (energy, flux stats.Estimate) {
 	return stats.Ratio(sum, counts), scaled(stats.Mean(counts), 1/r.config.Period)
 }
 
-// IonsWithin returns the positive ions between a wall and a distance from it [1/m2].
+// IonsWithin returns the positive ions between a wall and a distance from it, per area of the
+// powered electrode [1/m2].
 func (r *Recorder) IonsWithin(wall pic.Wall, distance float64) float64 {
 	dx := r.config.CellSize()
 	sum := 0.0
@@ -229,7 +230,7 @@ func (r *Recorder) IonsWithin(wall pic.Wall, distance float64) float64 {
 				at = r.config.Gap - at
 			}
 			if at <= distance {
-				sum += mean[j] * dx
+				sum += mean[j] * dx * r.config.Area(float64(j))
 			}
 		}
 	}

@@ -19,7 +19,8 @@ func (r *Recorder) sheathAt(p, wall int) float64 {
 			at = p*nodes + nodes - 1 - j
 		}
 		for i, rec := range r.species {
-			density := r.grid[gridFixed+gridPerSpecies*i+gridDensity][at]
+			density := r.grid[gridFixed+gridPerSpecies*i+gridDensity][at] *
+				r.config.Area(float64(at-p*nodes))
 			if i == 0 && rec.charge < 0 {
 				electrons[j] = density
 			} else {

@@ -10,67 +10,300 @@ import (
 
 // The potential of the powered electrode follows from what connects it to the grounded one.
 //
-//	driven     phi[0] = V(t), whatever current that takes
-//	isolated   no current: the surface charge sigma is what the electrode absorbed less what it
-//	           emitted, and Gauss's law at the wall gives phi[0]
+//	direct     phi[0] = V(t), whatever current that takes
+//	network    a capacitor, a resistance and an inductance in series with the voltage V(t)
+//	current    the drive is a current J(t) without a constant part
+//	isolated   no current
 //
-// Gauss's law reads eps0 (phi[0]-phi[1])/dx = sigma + q[0], with q[j] the charge per area at
-// node j. The difference form of Poisson's equation has the influence of a sheet at node j on the
-// electrode in closed form, so that no second solve is needed:
+// The surface charge sigma of the electrode changes by the current of the circuit, whose integral
+// is Q, and by what the electrode absorbs less what it emits. Gauss's law at the wall reads
 //
-//	phi[0] = L/eps0 (sigma + sum over j of q[j] (1 - j/Cells))
+//	eps0 Face[0] (phi[0]-phi[1])/dx = sigma + q[0]
+//
+// with q[j] the charge at node j, all per area of the powered electrode. With u[j] the potential of
+// the empty gap with 1 V at x = 0 and Cv its capacitance,
+//
+//	Cv phi[0] = sigma + sum over j of q[j] u[j]
+//
+// The loop L Q” + R Q' + Q/C = V - phi[0] is taken at the time of the potential, with
+// Q' = (3 Q - 4 Q1 + Q2)/(2 dt) and the same operator twice for Q”: a0 Q = V - phi[0] - K with K
+// from earlier Q. Both equations together give phi[0] in one step. They are stable for any step;
+// the resonance of L with the gap must be resolved.
 //
 // Ref: J. P. Verboncoeur, M. V. Alves, V. Vahedi and C. K. Birdsall, J. Comput. Phys. 104, 321
-// (1993), the open circuit.
+// (1993).
 
-// electrodePotential returns phi[0] at step n; the net charge numbers of the nodes are in w.
-func (s *Simulation) electrodePotential(w *worker, n int64) float64 {
-	if !s.config.Isolated {
-		return s.voltage[n%int64(len(s.voltage))]
+// Network is what connects the drive with the powered electrode, in series, per area of it. The
+// zero value is a wire.
+type Network struct {
+	Capacitance float64 // of the blocking capacitor [F/m2]; 0 for none, a wire
+	Resistance  float64 // [ohm m2]
+	Inductance  float64 // [H m2]
+}
+
+func (n Network) wire() bool { return n == Network{} }
+
+// connection is how the powered electrode is connected.
+type connection int
+
+const (
+	direct connection = iota
+	network
+	current
+	isolated
+)
+
+func (c *Config) connection() connection {
+	switch {
+	case c.Isolated:
+		return isolated
+	case c.CurrentDrive:
+		return current
+	case !c.Network.wire():
+		return network
 	}
-	cells := float64(s.config.Cells)
+	return direct
+}
+
+func (c *Config) checkCircuit() error {
+	n := c.Network
+	for _, v := range []float64{n.Capacitance, n.Resistance, n.Inductance} {
+		if !(v >= 0) || math.IsInf(v, 0) {
+			return fmt.Errorf("pic: network %+v, want values of 0 or more", n)
+		}
+	}
+	switch {
+	case c.Isolated && (c.Drive.Bias != 0 || len(c.Drive.Tones) > 0):
+		return fmt.Errorf("pic: an isolated electrode has no drive")
+	case (c.Isolated || c.CurrentDrive) && !n.wire():
+		return fmt.Errorf("pic: a network needs a voltage that drives it")
+	case c.CurrentDrive && c.Drive.Bias != 0:
+		return fmt.Errorf("pic: a current drive has no constant part")
+	}
+	return nil
+}
+
+// historyLength is how many earlier Q the loop needs.
+const historyLength = 4
+
+// loop holds the coefficients of the loop equation for the time step; its state is in the workers,
+// as each of them finds the potential.
+type loop struct {
+	a        [historyLength + 1]float64 // a0 .. a4 [m2/F]
+	vacuum   float64                    // Cv [F/m2]
+	of       []float64                  // influence of the nodes, times scale
+	scale    float64
+	byCharge bool // phi[0] follows from the charge
+}
+
+func newLoop(c *Config) loop {
+	l := loop{vacuum: c.VacuumCapacitance(), byCharge: c.connection() != direct}
+	l.of, l.scale = influence(c)
+	dt := c.TimeStep()
+	ind, res := c.Network.Inductance/(dt*dt), c.Network.Resistance/dt
+	l.a = [...]float64{
+		2.25*ind + 1.5*res, -6*ind - 2*res, 5.5*ind + 0.5*res, -2 * ind, 0.25 * ind,
+	}
+	if c.Network.Capacitance > 0 {
+		l.a[0] += 1 / c.Network.Capacitance
+	}
+	return l
+}
+
+// circuitState is the state of the circuit that a worker keeps.
+type circuitState struct {
+	surface float64                // sigma before the current of the step, what was absorbed included
+	passed  [historyLength]float64 // Q at the steps before, the latest first [C/m2]
+}
+
+// induced returns the charge on the electrode that the particles in the gap take from it, with
+// opposite sign [C/m2]; the net charge numbers of the nodes are in w.
+func (s *Simulation) induced(w *worker) float64 {
 	sum := 0.0
 	for j, z := range w.net {
-		sum += float64(z * (cells - float64(j)))
+		sum += float64(z * s.loop.of[j])
 	}
-	charge := w.surface + float64(phys.ElementaryCharge*s.config.Weight*(sum/cells))
-	return s.config.Gap / phys.Epsilon0 * charge
+	return float64(phys.ElementaryCharge * s.config.Weight * (sum / s.loop.scale))
 }
 
-// chargeElectrode adds what an isolated electrode absorbed in the step before to w's count of its
-// charge. Every worker adds the same numbers in the same order, so that all find the same bits.
-func (s *Simulation) chargeElectrode(w *worker) {
-	if s.config.Isolated {
-		w.surface += float64(phys.ElementaryCharge * s.config.Weight * float64(s.absorbedAt(w.step)))
+// electrodePotential returns phi[0] at step n.
+func (s *Simulation) electrodePotential(w *worker, n int64) float64 {
+	if !s.loop.byCharge {
+		return s.driveAt(n)
 	}
+	l := &s.loop
+	sum := w.circuit.surface + s.induced(w)
+	switch s.config.connection() {
+	case current:
+		sum += float64(s.meanCurrent(n) * s.config.TimeStep())
+	case network:
+		sum += (s.driveAt(n)-l.earlier(&w.circuit))/l.a[0] - w.circuit.passed[0]
+		return sum / (l.vacuum + 1/l.a[0])
+	}
+	if s.config.Geometry.Shape == Plates {
+		return s.config.Gap / phys.Epsilon0 * sum
+	}
+	return sum / l.vacuum
 }
 
-// SurfaceCharge returns the charge on an isolated powered electrode [C/m2]; 0 if it is driven,
-// when the drive supplies what the field needs.
-func (s *Simulation) SurfaceCharge() float64 {
-	if len(s.workers) == 0 {
+// earlier returns K, the part of the loop equation that is known [V].
+func (l *loop) earlier(c *circuitState) float64 {
+	k := 0.0
+	for i, q := range c.passed {
+		k += float64(l.a[i+1] * q)
+	}
+	return k
+}
+
+// driveAt returns the drive at step n.
+func (s *Simulation) driveAt(n int64) float64 {
+	return s.voltage[n%int64(len(s.voltage))]
+}
+
+// meanCurrent returns the mean of a current drive over the step that ends at n [A/m2].
+func (s *Simulation) meanCurrent(n int64) float64 {
+	if n == 0 {
 		return 0
 	}
-	return s.workers[0].surface
+	steps := int64(len(s.voltage))
+	return 0.5 * (s.voltage[(n-1)%steps] + s.voltage[n%steps])
 }
 
-func (s *Simulation) setSurfaceCharge(charge float64) {
-	for _, w := range s.workers {
-		w.surface = charge
+// passCurrent lets the current of step w.step flow, now that phi[0] is known. Every worker computes
+// the same numbers in the same order, so that all find the same bits.
+func (s *Simulation) passCurrent(w *worker) {
+	c := &w.circuit
+	switch s.config.connection() {
+	case current:
+		c.surface += float64(s.meanCurrent(w.step) * s.config.TimeStep())
+	case network:
+		q := (s.driveAt(w.step) - w.phi[0] - s.loop.earlier(c)) / s.loop.a[0]
+		c.surface += q - c.passed[0]
+		copy(c.passed[1:], c.passed[:historyLength-1])
+		c.passed[0] = q
 	}
 }
 
-// restoreSurface reads the charge of an isolated electrode.
-func (s *Simulation) restoreSurface(dec *codec.Decoder, prefix string) (float64, error) {
-	if !s.config.Isolated {
-		return 0, nil
+// chargeElectrode adds what the electrode absorbed in the step before to w's count of its charge.
+func (s *Simulation) chargeElectrode(w *worker) {
+	if s.loop.byCharge {
+		w.circuit.surface += float64(
+			phys.ElementaryCharge * s.config.Weight * float64(s.absorbedAt(w.step)))
+	}
+}
+
+// SurfaceCharge returns the charge on the powered electrode [C/m2] before the current of the next
+// step; 0 if it is connected directly, when the drive supplies what the field needs.
+func (s *Simulation) SurfaceCharge() float64 { return s.chargeNow().surface }
+
+// PassedCharge returns the charge that has passed through the network [C/m2].
+func (s *Simulation) PassedCharge() float64 { return s.chargeNow().passed[0] }
+
+func (s *Simulation) chargeNow() circuitState {
+	if len(s.workers) == 0 {
+		return circuitState{}
+	}
+	return s.workers[0].circuit
+}
+
+func (s *Simulation) setCharge(c circuitState) {
+	for _, w := range s.workers {
+		w.circuit = c
+	}
+}
+
+// ShiftBias moves the potential of the powered electrode by dv [V], as if the direct current of a
+// longer time had passed: the charge of the blocking capacitor and that on the electrode change
+// together, the particles stay. Without a capacitor that could keep it, it does nothing.
+func (s *Simulation) ShiftBias(dv float64) {
+	kind := s.config.connection()
+	if kind == direct || kind == network && s.config.Network.Capacitance == 0 {
+		return
+	}
+	c := s.chargeNow()
+	c.surface += s.loop.vacuum * dv
+	if kind == network {
+		for i := range c.passed {
+			c.passed[i] -= s.config.Network.Capacitance * dv
+		}
+	}
+	s.setCharge(c)
+	s.haveField = false
+}
+
+// scaleCharge follows a change of all densities by the factor. An isolated electrode's charge is in
+// proportion; one in a circuit keeps its potential and takes the image charge that needs.
+func (s *Simulation) scaleCharge(factor float64) {
+	if !s.loop.byCharge {
+		return
+	}
+	c := s.chargeNow()
+	if s.config.Isolated {
+		c.surface *= factor
+	} else {
+		w := s.workers[0]
+		s.sumCharge(w, s.step)
+		s.sumNet(w)
+		c.surface += (1 - factor) * s.induced(w)
+	}
+	s.setCharge(c)
+}
+
+// takeCharge takes over the circuit's state of a simulation whose time step may differ. The earlier
+// Q are the values of the cubic through the other's four.
+func (s *Simulation) takeCharge(from *Simulation) {
+	c := from.chargeNow()
+	old := c.passed
+	ratio := s.config.TimeStep() / from.config.TimeStep()
+	for i := range c.passed {
+		c.passed[i] = cubic(old, float64(i+1)*ratio-1)
+	}
+	c.surface += c.passed[0] - old[0]
+	s.setCharge(c)
+}
+
+// cubic returns the polynomial through q[0] at 0, q[1] at 1 ... at x.
+func cubic(q [historyLength]float64, x float64) float64 {
+	sum := 0.0
+	for i := range q {
+		term := q[i]
+		for k := range q {
+			if k != i {
+				term *= (x - float64(k)) / float64(i-k)
+			}
+		}
+		sum += term
+	}
+	return sum
+}
+
+func (s *Simulation) saveCharge(enc *codec.Encoder, prefix string) {
+	if s.loop.byCharge {
+		c := s.chargeNow()
+		enc.Float64s(prefix+"surface", append([]float64{c.surface}, c.passed[:]...))
+	}
+}
+
+// restoreCharge reads the state of the circuit.
+func (s *Simulation) restoreCharge(dec *codec.Decoder, prefix string) (circuitState, error) {
+	var c circuitState
+	if !s.loop.byCharge {
+		return c, nil
 	}
 	list := dec.Float64s(prefix + "surface")
 	if err := dec.Err(); err != nil {
-		return 0, err
+		return c, err
 	}
-	if len(list) != 1 || math.IsNaN(list[0]) || math.IsInf(list[0], 0) {
-		return 0, fmt.Errorf("pic: saved charge %g of the isolated electrode, want one number", list)
+	if len(list) != 1+historyLength {
+		return c, fmt.Errorf("pic: saved state of the circuit has %d numbers, want %d",
+			len(list), 1+historyLength)
 	}
-	return list[0], nil
+	for _, v := range list {
+		if math.IsNaN(v) || math.IsInf(v, 0) {
+			return c, fmt.Errorf("pic: saved charge %g of the circuit, want numbers", v)
+		}
+	}
+	c.surface = list[0]
+	copy(c.passed[:], list[1:])
+	return c, nil
 }

@@ -29,12 +29,17 @@ type Electrode struct {
 
 // Config describes a discharge and its numerics. Species[0] must be the electrons, if any.
 type Config struct {
+	Geometry       Geometry
 	Gap            float64 // [m]
 	Cells          int
 	Period         float64 // of the fundamental [s]
 	StepsPerPeriod int
 	Scheme         Scheme
 	Drive          Drive
+	// CurrentDrive takes the Drive for a current density [A/m2] instead of a voltage.
+	CurrentDrive bool
+	// Network connects a voltage Drive with the powered electrode: see circuit.go.
+	Network Network
 	// Isolated leaves the powered electrode unconnected: see circuit.go. It has no Drive then.
 	Isolated   bool
 	Electrodes [2]Electrode // by Wall
@@ -80,8 +85,11 @@ func (c *Config) check() error {
 		return fmt.Errorf("pic: electrons collide with each other every %d steps, which does not "+
 			"divide the %d of a period", r.Every, c.StepsPerPeriod)
 	}
-	if c.Isolated && (c.Drive.Bias != 0 || len(c.Drive.Tones) > 0) {
-		return fmt.Errorf("pic: an isolated electrode has no drive")
+	if err := c.Geometry.check(); err != nil {
+		return err
+	}
+	if err := c.checkCircuit(); err != nil {
+		return err
 	}
 	if err := c.checkPairs(); err != nil {
 		return err

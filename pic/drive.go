@@ -45,3 +45,35 @@ func (d Drive) Largest() float64 {
 	}
 	return v
 }
+
+// SetDrive changes the drive from the next step on; the potential of a directly connected electrode
+// jumps with it. Only between steps.
+func (s *Simulation) SetDrive(d Drive) error {
+	c := s.config
+	c.Drive = d
+	if err := c.checkCircuit(); err != nil {
+		return err
+	}
+	s.config.Drive = d
+	s.voltage = d.samples(c.StepsPerPeriod)
+	s.haveField = false
+	return nil
+}
+
+// LargestVoltage returns a bound of the voltage across the gap [V], for tables: behind a capacitor
+// the bias may add the amplitudes once more; a current drive has at most the voltage of the
+// empty gap.
+func (c *Config) LargestVoltage() float64 {
+	if c.CurrentDrive {
+		v := 0.0
+		for _, t := range c.Drive.Tones {
+			omega := 2 * math.Pi * float64(t.Harmonic) / c.Period
+			v += math.Abs(t.Amplitude) / (omega * c.VacuumCapacitance())
+		}
+		return v
+	}
+	if c.Network.Capacitance > 0 {
+		return 2 * c.Drive.Largest()
+	}
+	return c.Drive.Largest()
+}

@@ -69,6 +69,9 @@ func (c *chunk) take(p int, wall Wall, a, depth float64) {
 func (s *Simulation) reflect(
 	w *worker, i int, ch *chunk, p int, wall Wall, a, depth float64,
 ) bool {
+	if s.area != nil {
+		return s.mirror(w, i, ch, p, wall, depth)
+	}
 	u := ch.vx[p]
 	if wall == Grounded {
 		u, a = -u, -a

@@ -15,10 +15,8 @@ func (s *Simulation) sumCharge(w *worker, n int64) {
 	}
 }
 
-// solvePotential finds phi on the nodes from -phi” = rho/eps0 with phi[Cells] = 0 and phi[0]
-// as the circuit has it.
-func (s *Simulation) solvePotential(w *worker, n int64) {
-	scale := phys.ElementaryCharge * s.config.Weight * s.config.CellSize() / phys.Epsilon0
+// sumNet finds the net charge number of each node.
+func (s *Simulation) sumNet(w *worker) {
 	clear(w.net)
 	for i := range s.species {
 		z := float64(s.species[i].Charge)
@@ -26,6 +24,13 @@ func (s *Simulation) solvePotential(w *worker, n int64) {
 			w.net[j] += z * number
 		}
 	}
+}
+
+// solvePotential finds phi on the nodes from -phi” = rho/eps0 with phi[Cells] = 0 and phi[0]
+// as the circuit has it.
+func (s *Simulation) solvePotential(w *worker, n int64) {
+	scale := phys.ElementaryCharge * s.config.Weight * s.config.CellSize() / phys.Epsilon0
+	s.sumNet(w)
 	for j, z := range w.net {
 		w.rhs[j] = scale * z
 	}
@@ -37,7 +42,7 @@ func (s *Simulation) solvePotential(w *worker, n int64) {
 
 // differentiate finds E = -dphi/dx at nodes and the field that acts in each cell. At a wall,
 // Gauss's law for the half cell: E[0] = E[1/2] - sigma/eps0, sigma the charge at the wall's
-// node.
+// node. With shells the node's field is that of the mean flux through the faces beside it.
 func (s *Simulation) differentiate(w *worker) {
 	cells := s.config.Cells
 	dx := s.config.CellSize()
@@ -46,8 +51,12 @@ func (s *Simulation) differentiate(w *worker) {
 	e[0] = (phi[0]-phi[1])/dx - sheet*w.net[0]
 	e[cells] = (phi[cells-1]-phi[cells])/dx + sheet*w.net[cells]
 	half := 0.5 / dx
-	for j := 1; j < cells; j++ {
-		e[j] = (phi[j-1] - phi[j+1]) * half
+	if s.config.Geometry.Shape == Plates {
+		for j := 1; j < cells; j++ {
+			e[j] = (phi[j-1] - phi[j+1]) * half
+		}
+	} else {
+		s.shellField(w, sheet)
 	}
 	if s.config.Scheme == EnergyConserving {
 		for j := range w.fieldA {
@@ -62,6 +71,21 @@ func (s *Simulation) differentiate(w *worker) {
 	for i := range s.species {
 		s.scaleField(w, i)
 	}
+}
+
+// shellField finds the field at the nodes between shells.
+func (s *Simulation) shellField(w *worker, sheet float64) {
+	cells := s.config.Cells
+	dx := s.config.CellSize()
+	face, phi, e := s.poisson.face, w.phi, w.e
+	left := face[0] * (phi[0] - phi[1]) / dx
+	e[0] = left - sheet*w.net[0]
+	for j := 1; j < cells; j++ {
+		right := face[j] * (phi[j] - phi[j+1]) / dx
+		e[j] = 0.5 * (left + right) / s.area[j]
+		left = right
+	}
+	e[cells] = (left + sheet*w.net[cells]) / s.area[cells]
 }
 
 // scaleField turns the field into kicks of a species; for a sub-cycled one it adds to the sum

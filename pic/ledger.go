@@ -1,6 +1,8 @@
 package pic
 
 import (
+	"math"
+
 	"ionfall/internal/phys"
 )
 
@@ -118,6 +120,9 @@ func (s *Simulation) fieldEnergy() float64 {
 	sum := 0.0
 	for j := range s.config.Cells {
 		e := (w.phi[j] - w.phi[j+1]) / dx
+		if s.poisson.face != nil {
+			e *= math.Sqrt(s.poisson.face[j])
+		}
 		sum += e * e
 	}
 	return 0.5 * phys.Epsilon0 * sum * dx

@@ -35,7 +35,7 @@ func (s *Simulation) Load(species, count int, density []float64, temperature flo
 	sp := &s.species[species]
 	spread := math.Sqrt(phys.Boltzmann*temperature/sp.Mass) / s.config.VelocityUnit(sp.Every)
 	stream := rng.Key{Seed: s.config.Seed, Purpose: rng.Loading, Species: uint16(species)}.Stream()
-	place := newQuantiles(density)
+	place := newQuantiles(s.perLength(density))
 	stride := coprime(count)
 	for n := range count {
 		k := int(int64(n) * int64(stride) % int64(count))
@@ -51,6 +51,18 @@ func (s *Simulation) Load(species, count int, density []float64, temperature flo
 	}
 	s.redeposit()
 	return nil
+}
+
+// perLength turns a density per volume into one per length.
+func (s *Simulation) perLength(density []float64) []float64 {
+	if s.area == nil {
+		return density
+	}
+	list := make([]float64, len(density))
+	for j := range list {
+		list[j] = density[j] * s.area[j]
+	}
+	return list
 }
 
 // coprime returns a stride near the golden section of n that visits all of 0..n-1.

@@ -11,7 +11,7 @@ import (
 func BenchmarkPoisson(b *testing.B) {
 	for _, cells := range []int{128, 512} {
 		b.Run(fmt.Sprintf("%dcells", cells), func(b *testing.B) {
-			p := newPoisson(cells)
+			p := newPoisson(&Config{Cells: cells})
 			rhs, phi := make([]float64, cells+1), make([]float64, cells+1)
 			for j := range rhs {
 				rhs[j] = float64(j%7) - 3

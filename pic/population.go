@@ -10,10 +10,11 @@ import (
 )
 
 // ScaleWeight multiplies the weight of all particles: all densities change by the same factor,
-// charge densities stay in proportion, that on an isolated electrode, too.
+// charge densities stay in proportion, that on an isolated electrode, too; in a circuit the powered
+// electrode keeps its potential.
 func (s *Simulation) ScaleWeight(factor float64) {
+	s.scaleCharge(factor)
 	s.changeWeight(factor)
-	s.setSurfaceCharge(factor * s.SurfaceCharge())
 }
 
 // changeWeight multiplies the weight of all particles and leaves the charge on the wall.
@@ -181,7 +182,7 @@ func (s *Simulation) Transfer(from *Simulation, copies int) {
 		}
 	}
 	s.config.Weight = from.config.Weight
-	s.setSurfaceCharge(from.SurfaceCharge())
+	s.takeCharge(from)
 	if copies > 1 {
 		s.Multiply(copies, max(1, scale))
 	}

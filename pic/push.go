@@ -79,7 +79,13 @@ func (s *Simulation) push(w *worker, i, c int) {
 	if len(ch.out) < n { // births beyond what was reserved
 		ch.out = make([]int32, n+n/4)
 	}
-	left := s.config.Kernels.PushDeposit(ch.x, ch.vx, w.kick[i], w.deposit[(w.step+1)&1][i], ch.out)
+	acc := w.deposit[(w.step+1)&1][i]
+	var left int
+	if s.config.Geometry.Shape == Plates {
+		left = s.config.Kernels.PushDeposit(ch.x, ch.vx, w.kick[i], acc, ch.out)
+	} else {
+		left = s.pushShells(ch, w.kick[i], acc)
+	}
 	w.moved += int64(n)
 	ch.hits = ch.hits[:0]
 	if left > 0 {

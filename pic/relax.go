@@ -87,5 +87,11 @@ func (s *Simulation) electronDensity(w *worker, cell int) float64 {
 	if cell == s.config.Cells-1 {
 		right *= 2
 	}
+	if s.area != nil {
+		left, right = w.number[0][cell], w.number[0][cell+1]
+		dx := s.config.CellSize()
+		left *= dx / s.config.NodeVolume(cell)
+		right *= dx / s.config.NodeVolume(cell+1)
+	}
 	return 0.5 * (left + right) * s.config.Weight / s.config.CellSize()
 }

@@ -18,6 +18,8 @@ type Simulation struct {
 	species   []Species
 	observers []Observer
 	poisson   *poisson
+	loop      loop
+	area      []float64 // at the nodes, over the powered electrode's; nil for plates
 	voltage   []float64 // one period of the drive
 	workers   []*worker
 
@@ -40,8 +42,8 @@ type worker struct {
 	// deposit[side][species]: cell words of the worker's own particles. Side n&1 belongs to
 	// step n: while it is read, the other is written.
 	deposit  [2][][]uint64
-	absorbed [2]int64 // net charge number that the powered electrode took in a step
-	surface  float64  // charge on an isolated powered electrode at step [C/m2], as all workers'
+	absorbed [2]int64     // net charge number that the powered electrode took in a step
+	circuit  circuitState // of the circuit at step, as all workers'
 
 	number         [][]float64 // by species, all workers' particles at each node
 	net, rhs       []float64
@@ -68,7 +70,12 @@ func New(c Config) (*Simulation, error) {
 	}
 	s := &Simulation{
 		config: c, species: append([]Species(nil), c.Species...),
-		poisson: newPoisson(c.Cells), voltage: c.Drive.samples(c.StepsPerPeriod),
+		poisson: newPoisson(&c), loop: newLoop(&c), voltage: c.Drive.samples(c.StepsPerPeriod),
+	}
+	if c.Geometry.Shape != Plates {
+		for j := range c.Cells + 1 {
+			s.area = append(s.area, c.Area(float64(j)))
+		}
 	}
 	for i := range s.species {
 		sp := &s.species[i]
@@ -111,11 +118,11 @@ func (s *Simulation) SetObservers(list ...Observer) {
 func (s *Simulation) SetWorkers(n int) {
 	n = max(1, min(n, s.config.Chunks))
 	averages := s.pendingField()
-	absorbed, surface := s.absorbedNow(), s.SurfaceCharge()
+	absorbed, charge := s.absorbedNow(), s.chargeNow()
 	s.workers = make([]*worker, n)
 	for i := range s.workers {
 		s.workers[i] = newWorker(i, &s.config, len(s.species))
-		s.workers[i].step, s.workers[i].surface = s.step, surface
+		s.workers[i].step, s.workers[i].circuit = s.step, charge
 	}
 	s.setPendingField(averages)
 	s.workers[0].absorbed[s.step&1] = absorbed
@@ -218,7 +225,8 @@ func (s *Simulation) checkDeposits() error {
 func (s *Simulation) work(w *worker) {
 	for w.step < s.stop {
 		s.sumCharge(w, w.step)      // all workers' deposits -> rho
-		s.solvePotential(w, w.step) // -phi'' = rho/eps0, phi[0] from drive or wall charge
+		s.solvePotential(w, w.step) // -phi'' = rho/eps0, phi[0] as the circuit has it
+		s.passCurrent(w)            // through the circuit, to the electrode
 		s.differentiate(w)          // E = -dphi/dx
 		s.observe(w)                // read-only: diagnostics
 		s.carryDensity(w)           // species that rest keep their deposit
@@ -235,7 +243,7 @@ func (s *Simulation) work(w *worker) {
 		}
 		w.step++
 		s.sync.wait(w.index)
-		s.chargeElectrode(w) // isolated: what was absorbed stays
+		s.chargeElectrode(w) // what was absorbed stays, until a current takes it away
 	}
 }
 

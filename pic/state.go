@@ -15,9 +15,7 @@ func (s *Simulation) Save(enc *codec.Encoder, prefix string) {
 		int64(len(s.species)), int64(s.config.Chunks), int64(s.config.Cells),
 	})
 	enc.Float64s(prefix+"scalars", []float64{s.config.Weight, s.electric, s.lastE0, s.lastVoltage})
-	if s.config.Isolated {
-		enc.Float64s(prefix+"surface", []float64{s.SurfaceCharge()})
-	}
+	s.saveCharge(enc, prefix)
 	for i, p := range s.pendingField() {
 		enc.Int64(fmt.Sprintf("%s%d.summed", prefix, i), p.summed)
 		enc.Float64s(fmt.Sprintf("%s%d.field", prefix, i), p.flat())
@@ -52,7 +50,7 @@ func (s *Simulation) Restore(dec *codec.Decoder, prefix string) error {
 		n[6] != int64(s.config.Chunks) || n[7] != int64(s.config.Cells) {
 		return fmt.Errorf("pic: the saved state is of another case")
 	}
-	surface, err := s.restoreSurface(dec, prefix)
+	charge, err := s.restoreCharge(dec, prefix)
 	if err != nil {
 		return err
 	}
@@ -86,7 +84,7 @@ func (s *Simulation) Restore(dec *codec.Decoder, prefix string) error {
 		w.absorbed = [2]int64{}
 	}
 	s.workers[0].absorbed[s.step&1] = n[3]
-	s.setSurfaceCharge(surface)
+	s.setCharge(charge)
 	s.setPendingField(pending)
 	s.redeposit()
 	return nil

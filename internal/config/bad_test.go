@@ -61,6 +61,19 @@ func badInputs() []badInput {
 		{"no-substrate", false},
 		{"list-instead-of-mapping", true},
 		{"nothing", true},
+		{"area-ratio", true},
+		{"area-ratio-of-plates", false},
+		{"no-capacitor", false},
+		{"total-without-area", false},
+		{"voltage-and-power", false},
+		{"two-targets", false},
+		{"no-waveform", false},
+		{"two-waveforms", false},
+		{"bad-series", false},
+		{"current-and-voltage", false},
+		{"bias-behind-capacitor", false},
+		{"self-bias-without-capacitor", false},
+		{"limit-without-target", false},
 	}
 }
 

@@ -10,6 +10,7 @@ type Case struct {
 	Title string
 	// Gap is the distance between the electrodes [m]: x = 0 is the powered one.
 	Gap        float64
+	Geometry   Geometry
 	Gas        Gas
 	Drive      Drive
 	Electrodes Electrodes
@@ -71,20 +72,52 @@ type Component struct {
 	Fraction float64
 }
 
-// Drive is the voltage of the powered electrode: V(t) = bias + sum of cosines.
+// Geometry is the form of the electrodes.
+type Geometry struct {
+	// Shape is Planar, Cylindrical or Spherical.
+	Shape string
+	// AreaRatio is the area of the grounded electrode over that of the powered one.
+	AreaRatio float64
+}
+
+// The words that Geometry.Shape may hold.
+const (
+	Planar      = "planar"
+	Cylindrical = "cylindrical"
+	Spherical   = "spherical"
+)
+
+// Drive is what the generator gives: V(t) = bias + sum of cosines, and what connects it with the
+// powered electrode.
 type Drive struct {
-	// Tones has at least one element.
+	// Tones, unless there is a series or a trace.
 	Tones []Tone
+	// Series names tones; nil if they are listed.
+	Series *Series
+	// Trace is a measured waveform, or nil.
+	Trace *Trace
 	// Bias is the constant part [V].
 	Bias float64
+	// BlockingCapacitor [F], Resistance [ohm] and Inductance [H] are in series with the electrode.
+	BlockingCapacitor, Resistance, Inductance Amount
+	// Power [W] is what the electrode is to take, Current [A] the root mean square of its current,
+	// SelfBias [V] its mean voltage: one of them at most, which then finds the voltage.
+	Power, Current Amount
+	SelfBias       float64
+	// VoltageLimit is the largest sum of amplitudes to try [V]; 0 is the default.
+	VoltageLimit float64
 }
 
 // Tone is one term, amplitude * cos(2 pi frequency t + phase).
 type Tone struct {
 	// Frequency [Hz].
 	Frequency float64
-	// Amplitude, not peak to peak [V].
+	// Amplitude, not peak to peak [V]; 0 where a current or a target is given instead.
 	Amplitude float64
+	// Current is the amplitude of a given current density [A/m2]; 0 for a voltage.
+	Current float64
+	// Ratio of the amplitudes where a target finds them; 0 for 1.
+	Ratio float64
 	// Phase [rad].
 	Phase float64
 }
@@ -105,6 +138,8 @@ type Electrode struct {
 	ElectronReflection float64
 	// Substrate says that the film grows here.
 	Substrate bool
+	// Area of the electrode [m2]; 0 if not given. Only the powered one has it.
+	Area float64
 }
 
 // Accuracy is the relative standard error that ends a run when it is reached.
@@ -173,6 +208,7 @@ func newCase() *Case {
 	substrate := wall
 	substrate.Substrate = true
 	return &Case{
+		Geometry:   Geometry{Shape: Planar, AreaRatio: 1},
 		Gas:        Gas{Temperature: 300},
 		Electrodes: Electrodes{Powered: wall, Grounded: substrate},
 		Accuracy:   Accuracy{IonEnergy: 0.01, IonFlux: 0.01},

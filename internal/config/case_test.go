@@ -10,7 +10,7 @@ import (
 // Goal: what is left out has the documented default. Method: the shortest input, whole.
 func TestDefaults(t *testing.T) {
 	want := &Case{
-		Gap: 0.04,
+		Gap: 0.04, Geometry: Geometry{Shape: "planar", AreaRatio: 1},
 		Gas: Gas{
 			Pressure: 5, Temperature: 300, Mixture: []Component{{"Ar", 1}},
 			IonizationSharing: EqualSharing, ElectronScattering: IsotropicScattering,
@@ -34,8 +34,9 @@ func TestDefaults(t *testing.T) {
 // Goal: every key arrives in its field, in SI. Method: a sample with all keys, whole.
 func TestEveryKey(t *testing.T) {
 	want := &Case{
-		Title: "silane in hydrogen: two tones, 250 °C",
-		Gap:   0.025,
+		Title:    "silane in hydrogen: two tones, 250 °C",
+		Gap:      0.025,
+		Geometry: Geometry{Shape: "planar", AreaRatio: 1},
 		Gas: Gas{
 			Pressure: 0.75 * 101325 / 760, Temperature: 523.15, Library: "../my gases",
 			IonizationSharing: OpalSharing, ElectronScattering: ForwardScattering,
@@ -43,12 +44,20 @@ func TestEveryKey(t *testing.T) {
 			Mixture:      []Component{{"H2", 0.95}, {"SiH4", 0.0499}, {"NO", 1e-4}},
 		},
 		Drive: Drive{
-			Tones: []Tone{{13.56e6, 200, math.Pi / 2}, {2e6, 100, 0}},
-			Bias:  -12.5,
+			Tones: []Tone{
+				{Frequency: 13.56e6, Amplitude: 200, Phase: math.Pi / 2},
+				{Frequency: 2e6, Amplitude: 100},
+			},
+			Bias: -12.5,
 		},
 		Electrodes: Electrodes{
-			Powered:  Electrode{0.1, 0.5, 0.2, true},
-			Grounded: Electrode{0.05, 1, 0, true},
+			Powered: Electrode{
+				IonSecondaryYield: 0.1, SecondaryElectronEnergy: 0.5, ElectronReflection: 0.2,
+				Substrate: true,
+			},
+			Grounded: Electrode{
+				IonSecondaryYield: 0.05, SecondaryElectronEnergy: 1, Substrate: true,
+			},
 		},
 		Accuracy:            Accuracy{0.005, 0.01},
 		Budget:              Budget{600, 3000},
@@ -128,8 +137,8 @@ func TestEqual(t *testing.T) {
 			t.Errorf("a change of %s makes no difference", path)
 		}
 	}, "")
-	if changed != 37 {
-		t.Errorf("%d fields were changed, want 37", changed)
+	if changed != 55 {
+		t.Errorf("%d fields were changed, want 55", changed)
 	}
 	same.IonEnergyThresholds = []float64{}
 	if !c.Equal(same) {

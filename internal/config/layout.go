@@ -4,7 +4,7 @@ import "go.yaml.in/yaml/v4"
 
 // layout is the tree of all keys, bound to the fields of c. Its order is that of Resolved.
 func layout(c *Case) mapping {
-	return mapping{fields: []field{
+	return mapping{check: c.checkAreas, fields: []field{
 		{key: "title", value: line{&c.Title, maxTitle}, doc: "A line for people."},
 		{
 			key: "gap", required: true,
@@ -12,10 +12,14 @@ func layout(c *Case) mapping {
 			doc: "Distance between the electrodes; x = 0 is the powered one, " +
 				"x = gap the grounded one.",
 		},
+		{
+			key: "geometry", value: geometryLayout(&c.Geometry),
+			doc: "Form of the electrodes. Default: planar, of equal areas.",
+		},
 		{key: "gas", required: true, value: gasLayout(&c.Gas), doc: "The neutral background."},
 		{
 			key: "drive", required: true, value: driveLayout(&c.Drive),
-			doc: "Voltage of the powered electrode: V(t) = bias + sum of cosines.",
+			doc: "What drives the powered electrode, through what.",
 		},
 		{key: "electrodes", value: electrodesLayout(&c.Electrodes), doc: "The two walls."},
 		{
@@ -125,52 +129,11 @@ func fastNeutralsLayout(f *FastNeutrals) value {
 	}}}
 }
 
-func driveLayout(d *Drive) value {
-	tones := list[Tone]{dst: &d.Tones, max: maxTones, what: "tones", item: toneLayout}
-	tones.check = d.check
-	return mapping{fields: []field{
-		{
-			key: "tones", required: true, value: tones,
-			doc: "The cosines. Their frequencies are whole multiples of a common fundamental, " +
-				"which is at least 1/1000 of the highest.",
-		},
-		{
-			key:   "bias",
-			value: quantity{dst: &d.Bias, dim: voltage(), low: "-" + maxVoltage, high: maxVoltage},
-			doc:   "Constant voltage. Default: 0 V.",
-		},
-	}}
-}
-
-func toneLayout(t *Tone) value {
-	return mapping{fields: []field{
-		{
-			key: "frequency", required: true,
-			value: quantity{
-				dst: &t.Frequency, dim: frequency(), low: "0 Hz", high: maxFrequency,
-				above: true,
-			},
-			doc: "Frequency of the cosine.",
-		},
-		{
-			key: "amplitude", required: true,
-			value: quantity{dst: &t.Amplitude, dim: voltage(), low: "0 V", high: maxVoltage},
-			doc:   "Amplitude, not peak to peak. At least one tone has more than 0 V.",
-		},
-		{
-			key:   "phase",
-			value: quantity{dst: &t.Phase, dim: angle(), low: minPhase, high: maxPhase},
-			doc: "Phase: the voltage is amplitude * cos(2 pi frequency t + phase). " +
-				"Default: 0 deg.",
-		},
-	}}
-}
-
 func electrodesLayout(e *Electrodes) value {
 	return mapping{
 		fields: []field{
-			{key: "powered", value: electrodeLayout(&e.Powered), doc: "The wall at x = 0."},
-			{key: "grounded", value: electrodeLayout(&e.Grounded), doc: "The wall at x = gap."},
+			{key: "powered", value: electrodeLayout(&e.Powered, true), doc: "The wall at x = 0."},
+			{key: "grounded", value: electrodeLayout(&e.Grounded, false), doc: "The wall at x = gap."},
 		},
 		check: func(d *decoder, n *yaml.Node, path string) {
 			if !e.Powered.Substrate && !e.Grounded.Substrate {
@@ -181,8 +144,8 @@ func electrodesLayout(e *Electrodes) value {
 	}
 }
 
-func electrodeLayout(e *Electrode) value {
-	return mapping{fields: []field{
+func electrodeLayout(e *Electrode, powered bool) value {
+	fields := []field{
 		{
 			key: "ion_secondary_yield", value: number{dst: &e.IonSecondaryYield, high: maxYield},
 			doc: "Mean number of electrons set free by an arriving ion. Default: 0.",
@@ -205,7 +168,17 @@ func electrodeLayout(e *Electrode) value {
 			doc: "The film grows here; both electrodes may be substrates. " +
 				"Default: true for the grounded one.",
 		},
-	}}
+	}
+	if powered {
+		fields = append(fields, field{
+			key: "area",
+			value: quantity{
+				dst: &e.Area, dim: area(), low: "0 m2", high: maxArea, above: true, optional: true,
+			},
+			doc: "Area of the powered electrode, for what is given in total. Default: none.",
+		})
+	}
+	return mapping{fields: fields}
 }
 
 func accuracyLayout(a *Accuracy) value {

@@ -29,6 +29,14 @@ const (
 	// fractionTolerance allows thirds written with six digits.
 	fractionTolerance = "1e-6"
 
+	// maxAreaRatio: beyond it nearly all of the gap is far from the powered electrode.
+	maxAreaRatio = 1000
+	// maxArea: the largest panels are some m2.
+	maxArea = "100 m2"
+	// defaultVoltageLimit is above what capacitive reactors are driven with.
+	defaultVoltageLimit = 2000
+	// maxHarmonics of a series or trace: beyond it steps a period would have to be many.
+	maxHarmonics = 100
 	// maxTones is ten times what waveform tailoring uses.
 	maxTones = 100
 	// Above 10 GHz the field is no longer electrostatic at any gap allowed here.
@@ -37,6 +45,8 @@ const (
 	maxHarmonic = 1000
 	// Above 100 kV electrons at the wall are relativistic.
 	maxVoltage = "100 kV"
+	// maxCurrent: far above what any sheath carries.
+	maxCurrent = "1e6 A/m2"
 	// Ten turns; more is a wrong unit.
 	minPhase, maxPhase = "-3600 deg", "3600 deg"
 

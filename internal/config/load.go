@@ -47,7 +47,7 @@ func (disk) Names(folder string) []string {
 }
 
 func load(on files, path string) (*Case, []byte, error) {
-	src, bad := read(on, path)
+	src, bad := readFile(on, path, MaxFileBytes)
 	if bad != nil {
 		bad.File = path
 		return nil, nil, inputerr.List{bad}
@@ -56,9 +56,9 @@ func load(on files, path string) (*Case, []byte, error) {
 	return c, src, err
 }
 
-// read is the content of a regular file of at most MaxFileBytes. The file is looked at before it
-// is opened, because opening a pipe waits for its writer.
-func read(on files, path string) (src []byte, bad *inputerr.Error) {
+// readFile is the content of a regular file of at most the given size. The file is looked at before
+// it is opened, because opening a pipe waits for its writer.
+func readFile(on files, path string, most int64) (src []byte, bad *inputerr.Error) {
 	info, err := on.Stat(path)
 	switch {
 	case err != nil:
@@ -67,8 +67,8 @@ func read(on files, path string) (src []byte, bad *inputerr.Error) {
 		return nil, &inputerr.Error{Got: "a folder", Want: "an input file"}
 	case !info.Mode().IsRegular():
 		return nil, &inputerr.Error{Got: "a pipe or device", Want: "a regular file"}
-	case info.Size() > MaxFileBytes:
-		return nil, tooLarge(info.Size())
+	case info.Size() > most:
+		return nil, tooLarge(info.Size(), most)
 	}
 	f, err := on.Open(path)
 	if err != nil {
@@ -76,7 +76,7 @@ func read(on files, path string) (src []byte, bad *inputerr.Error) {
 	}
 	defer func() { _ = f.Close() }() // nothing was written
 	// The file may have grown since, or have no true size.
-	src, err = io.ReadAll(io.LimitReader(f, MaxFileBytes+1))
+	src, err = io.ReadAll(io.LimitReader(f, most+1))
 	if err != nil {
 		return nil, fileError(on, path, err)
 	}

@@ -42,7 +42,7 @@ func Parse(name string, src []byte) (*Case, error) {
 // checkText wants UTF-8 text of a reasonable size.
 func checkText(src []byte) *inputerr.Error {
 	if len(src) > MaxFileBytes {
-		return tooLarge(int64(len(src)))
+		return tooLarge(int64(len(src)), MaxFileBytes)
 	}
 	if bytes.HasPrefix(src, []byte{0xff, 0xfe}) || bytes.HasPrefix(src, []byte{0xfe, 0xff}) {
 		return &inputerr.Error{Line: 1, Col: 1, Got: "text in UTF-16", Want: "text in UTF-8"}
@@ -70,10 +70,10 @@ func checkText(src []byte) *inputerr.Error {
 	return nil
 }
 
-func tooLarge(size int64) *inputerr.Error {
+func tooLarge(size, most int64) *inputerr.Error {
 	return &inputerr.Error{
 		Got:  fmt.Sprintf("%d bytes", size),
-		Want: fmt.Sprintf("an input file of at most %d bytes", MaxFileBytes),
+		Want: fmt.Sprintf("an input file of at most %d bytes", most),
 	}
 }
 

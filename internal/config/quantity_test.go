@@ -138,6 +138,19 @@ func factors() map[string]map[string]float64 {
 			"Angstrom/s": 1e-10, "Angstrom/min": 1e-10 / 60,
 		},
 		"an energy": {"eV": 1, "meV": 1e-3, "keV": 1e3},
+		"an area":   {"m2": 1, "cm2": 1e-4, "mm2": 1e-6, "in2": 0.0254 * 0.0254},
+		"a capacitance per area": {
+			"F/m2": 1, "uF/m2": 1e-6, "nF/m2": 1e-9, "nF/cm2": 1e-5, "pF/cm2": 1e-8,
+		},
+		"a capacitance":            {"F": 1, "uF": 1e-6, "nF": 1e-9, "pF": 1e-12},
+		"a resistance times area":  {"ohm m2": 1, "ohm cm2": 1e-4},
+		"a resistance":             {"ohm": 1, "mohm": 1e-3},
+		"an inductance times area": {"H m2": 1, "uH m2": 1e-6, "nH m2": 1e-9, "uH cm2": 1e-10},
+		"an inductance":            {"H": 1, "uH": 1e-6, "nH": 1e-9},
+		"a power per area":         {"W/m2": 1, "kW/m2": 1e3, "W/cm2": 1e4, "mW/cm2": 10},
+		"a power":                  {"W": 1, "kW": 1e3},
+		"a current density":        {"A/m2": 1, "mA/cm2": 10},
+		"a current":                {"A": 1, "mA": 1e-3},
 	}
 }
 

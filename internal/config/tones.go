@@ -13,6 +13,12 @@ import (
 // frequencies are written with, so 0.1 and 0.3 Hz have 0.1 Hz; the multiple of a tone is
 // math.Round(tone/fundamental). It is 0 if there are no tones, or one is not above 0.
 func (d Drive) Fundamental() float64 {
+	switch {
+	case d.Series != nil:
+		return d.Series.Frequency
+	case d.Trace != nil:
+		return d.Trace.Frequency
+	}
 	var all *big.Rat
 	for _, t := range d.Tones {
 		f := asWritten(t.Frequency)
@@ -47,9 +53,9 @@ func common(x, y *big.Rat) *big.Rat {
 func (d *Drive) check(dec *decoder, n *yaml.Node, path string) {
 	loudest := 0.0
 	for _, t := range d.Tones {
-		loudest = max(loudest, t.Amplitude)
+		loudest = max(loudest, t.Amplitude, t.Current)
 	}
-	if loudest == 0 {
+	if loudest == 0 && !d.Targeted() {
 		dec.fail(n, path, "no amplitude above 0 V", "at least one tone with more than 0 V", "")
 	}
 	i, j := d.unrelated()

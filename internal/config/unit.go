@@ -61,7 +61,9 @@ func (d dimension) find(text string) (unit, bool) {
 func dimensions() []dimension {
 	return []dimension{
 		length(), pressure(), gasTemperature(), electronTemperature(), frequency(), voltage(),
-		angle(), ratio(), duration(), density(), speed(), energy(),
+		angle(), ratio(), duration(), density(), speed(), energy(), area(), capacitancePerArea(),
+		capacitance(), resistanceTimesArea(), resistance(), inductanceTimesArea(), inductance(),
+		powerPerArea(), power(), currentPerArea(), current(),
 	}
 }
 

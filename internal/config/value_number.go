@@ -19,6 +19,8 @@ type number struct {
 	above, below bool
 	// percent also accepts "5 %".
 	percent bool
+	// optional leaves the key out when the value is 0, which then means "not given".
+	optional bool
 }
 
 func (v number) wanted() string {
@@ -107,6 +109,9 @@ func plainHint(num, rest string) string {
 }
 
 func (v number) encode() *yaml.Node {
+	if v.optional && *v.dst == 0 {
+		return nil
+	}
 	return scalarNode("!!float", formatFloat(*v.dst))
 }
 

@@ -18,6 +18,8 @@ type quantity struct {
 	above bool
 	// optional leaves the key out when the value is 0, which then means "not given".
 	optional bool
+	// absent, if given, says when the key is left out.
+	absent func() bool
 }
 
 func (q quantity) wanted() string {
@@ -70,7 +72,7 @@ func (q quantity) negative() bool {
 }
 
 func (q quantity) encode() *yaml.Node {
-	if q.optional && *q.dst == 0 {
+	if q.optional && *q.dst == 0 || q.absent != nil && q.absent() {
 		return nil
 	}
 	return scalarNode("!!str", q.dim.format(*q.dst))

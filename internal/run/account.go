@@ -70,12 +70,12 @@ func (m *machine) account(l *pic.Ledger) {
 	c.countNegative(species, l)
 	row.Content = l.Weight * float64(row.Ions-negative)
 	for wall := range 2 {
-		row.Flux[wall] = number[wall] / period
+		row.Flux[wall] = number[wall] / period / m.wallArea(wall)
 		if number[wall] > 0 {
 			row.Energy[wall] = energy[wall] / number[wall] / phys.ElementaryCharge
 		}
 	}
-	if lost := (row.Flux[0] + row.Flux[1]) * period; lost > 0 {
+	if lost := (row.Flux[0] + row.Flux[1]*m.wallArea(1)) * period; lost > 0 {
 		now := row.Content / lost
 		if c.Residence == 0 {
 			c.Residence = now
@@ -157,6 +157,12 @@ func (m *machine) atLeast(e stats.Estimate) stats.Estimate {
 func (m *machine) progressAt(wall pic.Wall) (energy, flux stats.Estimate) {
 	energy, flux = m.rec.Progress(wall)
 	return energy, m.atLeast(flux)
+}
+
+// wallArea is the area of a wall over that of the powered electrode.
+func (m *machine) wallArea(wall int) float64 {
+	c := m.sim.Config()
+	return c.WallArea(pic.Wall(wall))
 }
 
 // rebase takes the kinetic energies afresh after the particles have been resized.

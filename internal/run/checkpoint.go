@@ -41,6 +41,10 @@ func (m *machine) save() error {
 	enc.Bytes("history", history)
 	m.sim.Save(enc, "sim.")
 	m.rec.Save(enc, "rec.")
+	m.meter.Save(enc, "meter.")
+	if m.plan.trace != nil {
+		enc.Bytes("trace", m.plan.trace.Source)
+	}
 	if err := m.folder.WriteCheckpoint(enc); err != nil {
 		return err
 	}
@@ -116,7 +120,11 @@ func restore(folder *store.Run, o Options) (*machine, error) {
 	if err != nil {
 		return nil, bad(err)
 	}
-	plan, err := prepareKept(name, input, own)
+	var trace []byte
+	if dec.Has("trace") {
+		trace = dec.Bytes("trace")
+	}
+	plan, err := prepareKept(name, input, own, trace)
 	if err != nil {
 		return nil, bad(err)
 	}
@@ -140,6 +148,9 @@ func restore(folder *store.Run, o Options) (*machine, error) {
 	if err != nil {
 		return nil, bad(err)
 	}
+	if err := m.resumeDrive(s); err != nil {
+		return nil, bad(err)
+	}
 	m.crew = newCrew(s, o.cores())
 	if err := s.Restore(dec, "sim."); err != nil {
 		return nil, bad(err)
@@ -147,6 +158,9 @@ func restore(folder *store.Run, o Options) (*machine, error) {
 	m.sim = s
 	m.rec = m.newRecorder()
 	if err := m.rec.Restore(dec, "rec."); err != nil {
+		return nil, bad(err)
+	}
+	if err := m.meter.Restore(dec, "meter."); err != nil {
 		return nil, bad(err)
 	}
 	return m, nil

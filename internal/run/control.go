@@ -33,6 +33,7 @@ type control struct {
 	Window     int             // periods of undisturbed settling
 	Restarts   int
 	Averaged   accountTotals
+	Reactor    reactorControl
 	Reached    bool // the asked-for errors
 	Spent      bool // the budget
 

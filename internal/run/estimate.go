@@ -27,8 +27,8 @@ func (p *Plan) estimate() estimate {
 	gas := p.Gases[0]
 	ion := p.heavy[0].Mass
 	n := p.gasDensity()
-	gap, voltage := p.Case.Gap, 0.5*math.Max(20, p.drive().Largest())
-	omega := 2 * math.Pi * p.loudestFrequency()
+	gap, voltage := p.Case.Gap, 0.5*math.Max(20, p.largestVoltage())
+	omega := 2 * math.Pi * float64(p.loudest().Harmonic) / p.period()
 	path := 1 / (n * ionCrossSection)
 	e := estimate{Sheath: 0.15 * gap}
 	for range 60 {
@@ -60,17 +60,6 @@ func childWidth(voltage, flux, ion, path float64) float64 {
 	free := math.Sqrt(0.823 * k * math.Pow(0.83*voltage, 1.5))
 	collisional := math.Pow(1.68*k*math.Pow(0.78*voltage, 1.5)*math.Sqrt(path), 0.4)
 	return math.Min(free, collisional)
-}
-
-// loudestFrequency returns the frequency of the tone that moves the most current [Hz].
-func (p *Plan) loudestFrequency() float64 {
-	best, frequency := 0.0, p.Case.Drive.Tones[0].Frequency
-	for _, t := range p.Case.Drive.Tones {
-		if t.Amplitude*t.Frequency > best {
-			best, frequency = t.Amplitude*t.Frequency, t.Frequency
-		}
-	}
-	return frequency
 }
 
 // balanceTemperature solves ionization rate x effective length = Bohm speed for Te [eV].

@@ -13,7 +13,7 @@ func (m *machine) goneOut() error {
 	for i := range m.history {
 		most = math.Max(most, m.history[i].Content)
 	}
-	q := plasma{Density: peakOverMean * most / m.plan.Case.Gap}
+	q := plasma{Density: peakOverMean * most / m.plan.volume()}
 	dt := m.plan.period() / float64(m.control.Numerics.StepsPerPeriod)
 	if step := q.frequency() * dt; step > largestPlasmaStep {
 		return fmt.Errorf("no charged particles are left, but the numerics have done it: at the "+

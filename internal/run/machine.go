@@ -43,6 +43,7 @@ type machine struct {
 	history []Row
 	sim     *pic.Simulation
 	rec     *diagnostics.Recorder
+	meter   *diagnostics.Meter
 
 	crew      crew
 	perStep   time.Duration // of the last segment
@@ -65,6 +66,9 @@ func (m *machine) loop(ctx context.Context) error {
 		m.control.Periods++
 		m.control.SimPeriods++
 		m.control.StagePeriods++
+		if err := m.steer(&l); err != nil {
+			return errors.Join(err, m.save())
+		}
 		if err := m.decide(); err != nil {
 			return errors.Join(err, m.save())
 		}
@@ -160,7 +164,7 @@ func (m *machine) decidePilot(row *Row) error {
 	c := &m.control
 	if c.Projecting {
 		// From the number of ions alone.
-		density := peakOverMean * row.Content / m.plan.Case.Gap
+		density := peakOverMean * row.Content / m.plan.volume()
 		if (plasma{Density: density}).frequency()*m.plan.period() >
 			1.5*pilotQuality.plasmaStep*float64(c.Numerics.StepsPerPeriod) {
 			return m.refinePilot(density)

@@ -126,7 +126,7 @@ func (p *Plan) chooseSteps(n *Numerics, q plasma, want quality,
 		collisionSteps := p.largestElectronRate() * p.period() / want.candidates
 		// Electrons at the energy of half the drive, of which there are few, cross two cells a
 		// step at most.
-		fast := math.Sqrt(phys.ElementaryCharge * p.drive().Largest() / phys.ElectronMass)
+		fast := math.Sqrt(phys.ElementaryCharge * p.largestVoltage() / phys.ElectronMass)
 		crossSteps := 0.5 * fast * p.period() * float64(n.Cells) / p.Case.Gap
 		grain := stepGrain
 		if n.IonSubsteps > 0 {

@@ -4,7 +4,6 @@ import (
 	"crypto/sha256"
 	"encoding/hex"
 	"fmt"
-	"math"
 	"os"
 	"path/filepath"
 	"strings"
@@ -32,6 +31,10 @@ type Plan struct {
 	bundled  *crosssections.Library
 	own      *crosssections.Library // the user's, or nil
 	ownFiles crosssections.Files    // of the gases in use that are the user's
+
+	trace     *config.Waveform // of the drive, or nil
+	band      int              // harmonics of it that are kept
+	amplitude float64          // sum of amplitudes that a target has found so far [V]; 0 at the start
 }
 
 // Prepare reads and checks an input file.
@@ -42,6 +45,9 @@ func Prepare(path string) (*Plan, error) {
 	}
 	p := &Plan{Name: caseName(path), Case: c, Input: src}
 	if err := p.ownLibrary(filepath.Dir(path)); err != nil {
+		return nil, err
+	}
+	if err := p.loadTrace(filepath.Dir(path), nil); err != nil {
 		return nil, err
 	}
 	return p.checked()
@@ -58,16 +64,23 @@ func PrepareBytes(name string, src []byte) (*Plan, error) {
 	if err := p.ownLibrary(filepath.Dir(name)); err != nil {
 		return nil, err
 	}
+	if err := p.loadTrace(filepath.Dir(name), nil); err != nil {
+		return nil, err
+	}
 	return p.checked()
 }
 
-// prepareKept checks an input with the files of the user's gases that were kept with it, if any.
-func prepareKept(name string, src []byte, files crosssections.Files) (*Plan, error) {
+// prepareKept checks an input with the files of the user's gases and the trace that were kept with
+// it, if any.
+func prepareKept(name string, src []byte, files crosssections.Files, trace []byte) (*Plan, error) {
 	c, err := config.Parse(name+".yaml", src)
 	if err != nil {
 		return nil, err
 	}
 	p := &Plan{Name: name, Case: c, Input: src, ownFiles: files}
+	if err := p.loadTrace("", trace); err != nil {
+		return nil, err
+	}
 	if len(files) > 0 {
 		if p.own, err = crosssections.OpenFiles(files); err != nil {
 			return nil, err
@@ -99,6 +112,7 @@ func caseName(path string) string {
 
 // checked finds the gases of the mixture and everything that keeps them from being simulated.
 func (p *Plan) checked() (*Plan, error) {
+	p.Case.Drive.Expand()
 	var err error
 	if p.Kernels, err = Kernels(); err != nil {
 		return nil, err
@@ -162,28 +176,6 @@ func (p *Plan) backgrounds() []mcc.Background {
 	return list
 }
 
-// drive returns the drive in harmonics of the fundamental.
-func (p *Plan) drive() pic.Drive {
-	d := pic.Drive{Bias: p.Case.Drive.Bias}
-	fundamental := p.Case.Drive.Fundamental()
-	for _, t := range p.Case.Drive.Tones {
-		d.Tones = append(d.Tones, pic.Tone{
-			Harmonic:  int(math.Round(t.Frequency / fundamental)),
-			Amplitude: t.Amplitude, Phase: t.Phase,
-		})
-	}
-	return d
-}
-
-// fastestHarmonic is the largest harmonic of the drive.
-func (p *Plan) fastestHarmonic() int {
-	most := 1
-	for _, t := range p.drive().Tones {
-		most = max(most, t.Harmonic)
-	}
-	return most
-}
-
 // substrates returns the walls on which the film grows; with none named, both.
 func (p *Plan) substrates() []pic.Wall {
 	var list []pic.Wall
@@ -203,9 +195,9 @@ func (p *Plan) substrates() []pic.Wall {
 func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 	c := pic.Config{
 		Gap: p.Case.Gap, Cells: n.Cells, Period: p.period(), StepsPerPeriod: n.StepsPerPeriod,
-		Scheme: n.scheme(), Drive: p.drive(), Weight: weight, Chunks: n.Chunks, Seed: p.Case.Seed,
-		Kernels: p.Kernels,
+		Scheme: n.scheme(), Weight: weight, Chunks: n.Chunks, Seed: p.Case.Seed, Kernels: p.Kernels,
 	}
+	p.reactor(&c)
 	c.Relaxation = p.relaxation(&c)
 	for wall, e := range []config.Electrode{p.Case.Electrodes.Powered, p.Case.Electrodes.Grounded} {
 		c.Electrodes[wall] = pic.Electrode{
@@ -236,7 +228,7 @@ func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 // drive can give.
 func (p *Plan) collisions(c *pic.Config, h heavySpecies, every int) (*mcc.Model, error) {
 	set := p.settings(h)
-	set.TopEnergy = 1.3*c.Drive.Largest() + 50
+	set.TopEnergy = 1.3*c.LargestVoltage() + 50
 	if h.Name == crosssections.ElectronName {
 		set.TopEnergy = max(set.TopEnergy, 300)
 	}

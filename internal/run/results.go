@@ -55,7 +55,6 @@ func (m *machine) results() map[string]any {
 		"ion_energy_percentile_eV": percentiles, "sheath_width_m": sheath,
 		"power_Wpm2":                     m.powers(),
 		"gas_heating_Wpm2":               m.gasHeating(),
-		"self_bias_V":                    store.Value{Value: m.plan.Case.Drive.Bias, Unit: "V"},
 		"plasma_potential_V":             value(m.rec.PlasmaPotential(), "V"),
 		"electron_density_center_m3":     value(m.atLeast(m.rec.CenterDensity()), "1/m3"),
 		"electron_density_peak_m3":       value(m.atLeast(m.rec.PeakDensity()), "1/m3"),
@@ -66,6 +65,7 @@ func (m *machine) results() map[string]any {
 	}
 	m.filmResults(r)
 	m.neutralResults(r)
+	m.meterResults(r)
 	return r
 }
 

@@ -91,6 +91,9 @@ func (m *machine) open() error {
 	if err := m.begin(); err != nil {
 		return err
 	}
+	if err := m.plan.writeTrace(m.folder); err != nil {
+		return err
+	}
 	if m.fixedLength() {
 		m.decideFixed()
 	}
@@ -153,7 +156,7 @@ func (m *machine) finish(ctx context.Context) (*store.Summary, string, error) {
 			fmt.Errorf("%w (the run is kept in %s.running: make room and continue with: "+
 				"ionfall resume %s)", err, dir, dir), m.folder.Close())
 	}
-	return s, dir, nil
+	return s, dir, m.targetError()
 }
 
 // writeResolved writes the input with everything filled in: run again, it gives the same bits.
@@ -203,6 +206,7 @@ func (p *Plan) Describe() (*Description, error) {
 	dx, dt := p.Case.Gap/float64(n.Cells), p.period()/float64(n.StepsPerPeriod)
 	add("gas density", "%.4g /m3", p.gasDensity())
 	add("fundamental", "%.6g MHz, period %.4g ns", p.Case.Drive.Fundamental()/1e6, 1e9*p.period())
+	d.Lines = append(d.Lines, p.circuitLines()...)
 	add("expected plasma", "density %.2g /m3, electron temperature %.2g eV, sheath %.2g mm, "+
 		"ion flux %.2g /m2/s (homogeneous model, within a factor of 3 or so)",
 		q.Density, q.ElectronEV, 1e3*q.Sheath, e.IonFlux)

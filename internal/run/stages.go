@@ -48,7 +48,7 @@ func (p *Plan) pilotNumerics(q plasma) Numerics {
 // startCold makes a simulation with a uniform plasma.
 func (m *machine) startCold(n Numerics, q plasma) error {
 	particles := n.Cells * n.ParticlesPerCell
-	weight := q.Density * m.plan.Case.Gap / float64(particles)
+	weight := q.Density * m.plan.volume() / float64(particles)
 	s, err := m.simulation(n, weight)
 	if err != nil {
 		return err
@@ -61,7 +61,8 @@ func (m *machine) startCold(n Numerics, q plasma) error {
 		return err
 	}
 	m.adopt(s, n)
-	m.control.startRound(q.Density * m.plan.Case.Gap)
+	m.guessBias()
+	m.control.startRound(q.Density * m.plan.volume())
 	return nil
 }
 
@@ -75,6 +76,7 @@ func (m *machine) simulation(n Numerics, weight float64) (*pic.Simulation, error
 		q, _ := p.firstGuess()
 		p.haste = p.pilotHaste(q.ElectronEV)
 	}
+	p.amplitude = m.builtFor()
 	return p.assemble(n, weight)
 }
 
@@ -93,7 +95,8 @@ func (m *machine) adopt(s *pic.Simulation, n Numerics) {
 // newRecorder returns a recorder that observes the present simulation, instead of any before.
 func (m *machine) newRecorder() *diagnostics.Recorder {
 	r := diagnostics.New(m.sim, m.plan.Case.IonEnergyThresholds, m.plan.averagePeriods())
-	m.sim.SetObservers(r)
+	m.meter = m.newMeter()
+	m.sim.SetObservers(r, m.meter)
 	return r
 }
 
@@ -157,7 +160,8 @@ func (m *machine) transit() float64 {
 		content := m.rec.IonsWithin(wall, m.rec.Sheath(wall).Mean)
 		flux := stats.Mean(m.series(func(r *Row) float64 { return r.Flux[wall] }, 20)).Mean
 		if flux > 0 {
-			longest = math.Max(longest, content/flux/m.plan.period())
+			c := m.sim.Config()
+			longest = math.Max(longest, content/(flux*c.WallArea(wall))/m.plan.period())
 		}
 	}
 	return longest

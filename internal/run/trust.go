@@ -64,6 +64,7 @@ func (m *machine) trust() []store.Check {
 	checks = append(checks, m.particleChecks()...)
 	checks = append(checks, m.balanceChecks()...)
 	checks = append(checks, m.negativeChecks()...)
+	checks = append(checks, m.reactorChecks()...)
 	return append(checks, m.statisticsChecks()...)
 }
 
@@ -94,7 +95,8 @@ func (m *machine) particleChecks() []store.Check {
 	t := &m.control.Averaged
 	q := m.measured()
 	weight := m.history[len(m.history)-1].Weight
-	dx := m.plan.Case.Gap / float64(n.Cells)
+	c := m.sim.Config()
+	dx := m.plan.Case.Gap / float64(n.Cells) * c.Area(0.5*float64(n.Cells))
 	center := m.rec.CenterDensity().Mean / weight
 	worst, name := 0.0, ""
 	for i, sp := range m.sim.Species() {
@@ -107,7 +109,7 @@ func (m *machine) particleChecks() []store.Check {
 			"collisions of a particle with the gas in a move, mean; largest for "+name),
 		below("particles_per_cell", center*dx, perCell,
 			"electrons in a cell in the middle of the gap"),
-		below("particles_per_debye_length", center*q.debye(), perDebye,
+		below("particles_per_debye_length", center*q.debye()*c.Area(0.5*float64(n.Cells)), perDebye,
 			"electrons in a Debye length in the middle of the gap"),
 		above("table_range", t.Beyond/math.Max(1, t.AllCollide), tableEnd,
 			"part of the collisions judged by a cross section beyond the end of its data"),

@@ -14,7 +14,7 @@ func units() map[string]string {
 		"m2ps": "1/(m2 s)", "m3ps": "1/(m3 s)",
 		"m2pseV": "1/(m2 s eV)", "m2pseVdeg": "1/(m2 s eV deg)",
 		"eVm32": "eV^-3/2",
-		"Td":    "Td", "m2": "m2", "pmps": "1/(m s)", "cm2pVps": "cm2/(V s)",
+		"Ohmm2": "Ohm m2", "Td": "Td", "m2": "m2", "pmps": "1/(m s)", "cm2pVps": "cm2/(V s)",
 	}
 }
 
