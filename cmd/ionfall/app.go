@@ -16,6 +16,7 @@ func (p *program) commands() []*cli.Command {
 		p.runCommand(),
 		p.checkCommand(),
 		p.resumeCommand(),
+		p.reportCommand(),
 		p.gasCommand(),
 		p.schemaCommand(),
 		p.versionCommand(),
