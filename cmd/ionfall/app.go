@@ -17,6 +17,7 @@ func (p *program) commands() []*cli.Command {
 		p.checkCommand(),
 		p.resumeCommand(),
 		p.reportCommand(),
+		p.plotCommand(),
 		p.gasCommand(),
 		p.schemaCommand(),
 		p.versionCommand(),

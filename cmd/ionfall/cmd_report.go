@@ -80,6 +80,10 @@ func openRuns(c *cli.Context) ([]*report.Run, error) {
 		return nil, usagef("%s: no results folder given; for example: ionfall %s results/argon",
 			c.Command.Name, c.Command.Name)
 	}
+	return openFolders(c, given)
+}
+
+func openFolders(c *cli.Context, given []string) ([]*report.Run, error) {
 	var runs []*report.Run
 	for _, dir := range given {
 		if dir == "" {
@@ -94,5 +98,8 @@ func openRuns(c *cli.Context) ([]*report.Run, error) {
 		}
 		runs = append(runs, r)
 	}
-	return runs, report.Distinguish(runs)
+	if err := report.Distinguish(runs); err != nil {
+		return nil, usagef("%s: %v", c.Command.Name, err)
+	}
+	return runs, nil
 }

@@ -54,6 +54,7 @@ type Series struct {
 	X     Numbers `json:"x"`
 	Y     Numbers `json:"y"`
 	SE    Numbers `json:"se"`    // empty for what has no error, such as a law
+	Key   string  `json:"key"`   // for the legend; "" is the label
 	Law   bool    `json:"law"`   // drawn thin and dotted: a comparison, no result
 	Steps bool    `json:"steps"` // a histogram, X being the middle of its bins
 	Dots  bool    `json:"dots"`  // measured points, not joined

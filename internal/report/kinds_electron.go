@@ -80,6 +80,7 @@ func eepf(t *table.Table, p part, run int) ([]Series, error) {
 	temperature := 2.0 / 3 * mean
 	law := Series{
 		Label: fmt.Sprintf("%s: Maxwellian, %.2f eV", p.keys[0], temperature), Run: run, Law: true,
+		Key: "Maxwellian of the same mean energy",
 	}
 	// Down to the smallest value that is shown of the measured one.
 	smallest := math.Inf(1)

@@ -59,7 +59,7 @@ func profileFigure(k Kind, runs []*Run, s Select, y Axis, take func(string) (str
 ) ([]Figure, error) {
 	f := Figure{
 		ID: k.ID, Title: k.Title, Runs: marks(runs), Y: y,
-		X: Axis{Name: "x_mm", Label: "distance from the powered electrode", Unit: "mm"},
+		X: Axis{Name: "x_mm", Label: "x from powered electrode", Unit: "mm"},
 	}
 	for i, r := range runs {
 		t, err := tableOf(r, "profiles")

@@ -56,7 +56,7 @@ func phaseFigures(k Kind, runs []*Run, value Axis, signed bool) ([]Figure, error
 			ID: k.ID, Title: k.Title, Runs: marks([]*Run{r}), Map: m,
 			X: Axis{Name: "phase_deg", Label: "phase", Unit: "deg"},
 			Y: Axis{
-				Name: "x_mm", Label: "distance from the powered electrode", Unit: "mm",
+				Name: "x_mm", Label: "x from powered electrode", Unit: "mm",
 			},
 		}
 		f.Alt = mapAlt(&f)

@@ -25,3 +25,29 @@ func (f *Figure) styles() []style {
 	}
 	return list
 }
+
+// key is an entry of the legend.
+type key struct {
+	name   string
+	series int
+	style  style
+}
+
+// keys are the entries of the legend. Laws that share one have one.
+func (f *Figure) keys() []key {
+	var list []key
+	shared := map[string]bool{}
+	for i, st := range f.styles() {
+		s := &f.Series[i]
+		name := f.Name(s.Label, s.Run)
+		if s.Key != "" {
+			name = s.Key
+			if shared[name] {
+				continue
+			}
+			shared[name] = true
+		}
+		list = append(list, key{name, i, st})
+	}
+	return list
+}

@@ -97,9 +97,9 @@ func (d *drawing) drawCurves() {
 // legend writes the names of the curves and returns the number of rows.
 func (d *drawing) legend() int {
 	x, row := leftEdge, 0
-	for i, st := range d.f.styles() {
-		s := &d.f.Series[i]
-		name := prettyUnit(d.f.Name(s.Label, s.Run))
+	for _, k := range d.f.keys() {
+		s, st := &d.f.Series[k.series], k.style
+		name := prettyUnit(k.name)
 		width := 34 + letterWidth*float64(len([]rune(name))) + 14
 		if x > leftEdge && x+width > d.right {
 			x, row = leftEdge, row+1

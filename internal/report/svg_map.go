@@ -57,8 +57,18 @@ func (d *drawing) colorBar() {
 		drawWidth-4, (d.top+d.y.from)/2, html.EscapeString(axisTitle(m.Value, power)))
 }
 
-// picture paints the map as PNG, every pixel in the colour of the bin it lies in.
+// picture paints the map as PNG.
 func (m *Map) picture(width, height int) ([]byte, error) {
+	var b bytes.Buffer
+	encoder := png.Encoder{CompressionLevel: png.BestCompression}
+	if err := encoder.Encode(&b, m.paint(width, height)); err != nil {
+		return nil, fmt.Errorf("painting a map: %w", err)
+	}
+	return b.Bytes(), nil
+}
+
+// paint gives every pixel the colour of the bin it lies in.
+func (m *Map) paint(width, height int) *image.Paletted {
 	palette := color.Palette{color.NRGBA{}}
 	for i := range mapColors {
 		palette = append(palette, mapColor(float64(i)/(mapColors-1)))
@@ -79,12 +89,7 @@ func (m *Map) picture(width, height int) ([]byte, error) {
 			picture.Pix[j*picture.Stride+i] = uint8(1 + at)
 		}
 	}
-	var b bytes.Buffer
-	encoder := png.Encoder{CompressionLevel: png.BestCompression}
-	if err := encoder.Encode(&b, picture); err != nil {
-		return nil, fmt.Errorf("painting a map: %w", err)
-	}
-	return b.Bytes(), nil
+	return picture
 }
 
 // pixelBins says which bin the middle of each pixel lies in.
