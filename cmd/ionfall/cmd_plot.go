@@ -25,9 +25,9 @@ func (p *program) plotCommand() *cli.Command {
 	return &cli.Command{
 		Name:  "plot",
 		Usage: "one figure for a paper, of one run or of several laid over each other",
-		ArgsUsage: "DIR... FIGURE --out FILE.svg|.pdf|.png [--electrode NAME] [--species NAME] " +
-			"[--measured FILE.csv]",
-		Description: `FIGURE is one of` + list + `
+		ArgsUsage: "DIR... FIGURE --out FILE [--electrode NAME] [--species NAME] " +
+			"[--measured FILE]",
+		Description: `FILE ends in .svg, .pdf or .png. FIGURE is one of` + list + `
 --measured lays points of a CSV file over it: x, y in the units of the axes and, if known, the
 standard error of y. It may be given several times. A run whose verdict is fail is stamped.`,
 		Flags: []cli.Flag{
