@@ -16,6 +16,8 @@ func (p *program) commands() []*cli.Command {
 		p.runCommand(),
 		p.checkCommand(),
 		p.resumeCommand(),
+		p.reportCommand(),
+		p.plotCommand(),
 		p.gasCommand(),
 		p.schemaCommand(),
 		p.versionCommand(),

@@ -2,12 +2,14 @@ package run
 
 import (
 	"fmt"
+	"path/filepath"
 	"runtime"
 	"strings"
 
 	"ionfall/diagnostics"
 	"ionfall/internal/bib"
 	"ionfall/internal/phys"
+	"ionfall/internal/report"
 	"ionfall/internal/stats"
 	"ionfall/internal/store"
 	"ionfall/internal/table"
@@ -239,5 +241,22 @@ func (m *machine) write() (*store.Summary, error) {
 	if err := m.folder.WriteJSON("state.json", m.state()); err != nil {
 		return nil, err
 	}
+	m.writePage()
 	return s, m.folder.Commit()
+}
+
+// writePage writes the report. The results can do without it, and it can be made again.
+func (m *machine) writePage() {
+	r, err := report.OpenFolder(m.folder.Path(""), filepath.Base(m.folder.Dir()))
+	var page []byte
+	if err == nil {
+		page, err = report.Page([]*report.Run{r})
+	}
+	if err == nil {
+		err = m.folder.WriteFile(report.File, page)
+	}
+	if err != nil {
+		m.options.log().Warn("the report was not written: make it with ionfall report",
+			"error", err)
+	}
 }
