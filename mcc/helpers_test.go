@@ -164,6 +164,7 @@ type collision struct {
 	before, after, target vector
 	channel               int
 	births                []Birth
+	made                  []Made
 }
 
 // single collides a particle of velocity v (in units) until exactly one collision takes place in
@@ -185,7 +186,7 @@ func single(m *Model, s *rng.Stream, v vector) collision {
 		}
 		return collision{
 			before: v, after: vector{x[0], y[0], z[0]}, target: replay(m, &again, v),
-			channel: channel, births: out.Births,
+			channel: channel, births: out.Births, made: out.Made,
 		}
 	}
 }

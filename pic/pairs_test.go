@@ -1,12 +1,14 @@
 package pic
 
 import (
+	"fmt"
 	"math"
 	"testing"
 
 	"ionfall/crosssections"
 	"ionfall/internal/phys"
 	"ionfall/internal/rng"
+	"ionfall/internal/validation"
 	"ionfall/mcc"
 )
 
@@ -69,6 +71,13 @@ func TestPairsDecay(t *testing.T) {
 		if want := n / (1 + k*n0*time); math.Abs(left/want-1) > 0.01 {
 			t.Errorf("after %.3g s: %g particles left, want %.0f", time, left, want)
 		}
+		validation.Record(t, "../testdata/validation/gases.json", *update, validation.Row{
+			Section:  "ions of opposite charge end each other, k = 1e-13 m3/s, n0 = 1e16 /m3",
+			Quantity: fmt.Sprintf("part left after %.3g s", time), Unit: "",
+			Reference: 1 / (1 + k*n0*time), Source: "n = n0/(1 + k n0 t)", Status: "exact",
+			Ours: left / n, OursError: math.Sqrt(left*(1-left/n)) / n, Limit: 0.01,
+			LimitKind: validation.Relative, Seed: 7,
+		})
 	}
 	l := s.TakeLedger()
 	if l.Species[0].Gone != n-l.Species[0].Count {

@@ -48,6 +48,15 @@ func parts() []part {
 			pkg: "./pic", pattern: "Validation", flags: "-timeout 1h", takes: "minutes",
 		},
 		{
+			file: "gases.json", title: "Gases of film deposition: ions that change, fast neutrals",
+			about: "Ions that become others, attachment, charged particles that end each other, and " +
+				"where the energy of the ions goes at a high pressure.",
+			command: "go test ./mcc -run 'HydrogenIonsReact|SilaneAttachment' -count 1 -validate " +
+				"-update; go test ./pic -run PairsDecay -count 1 -update; " +
+				"go test ./internal/run -run EnergyAtTheWalls -count 1 -update",
+			takes: "some minutes",
+		},
+		{
 			file: "coverage.json", title: "Error bars: do they hold the true value?",
 			about: "Many runs that differ in the seed only, against one very long run with the same " +
 				"numerics. It tests the quoted statistical errors, not the numerics.",
