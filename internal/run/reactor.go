@@ -226,7 +226,7 @@ func (m *machine) steerAmplitude(fine bool) (bool, error) {
 		now = math.Exp(r.LogSum / fineSteps)
 	}
 	r.Amplitude, m.plan.amplitude = now, now
-	return math.Abs(off) < closeToTarget || r.AtLimit > 0, m.sim.SetDrive(m.plan.drive())
+	return math.Abs(off) < closeToTarget, m.sim.SetDrive(m.plan.drive())
 }
 
 // amplitude is the sum of amplitudes in use [V].
