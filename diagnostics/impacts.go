@@ -79,8 +79,8 @@ func (r *Recorder) Hits(species, chunk int, hits []pic.Hit) {
 	}
 }
 
-// flush adds what the chunks counted in a period, with the weight that the particles had per area of
-// the powered electrode, for the area of each.
+// flush adds what the chunks counted in a period, with the weight that the particles had per area
+// of the powered electrode, for the area of each.
 func (rec *speciesRecord) flush(config *pic.Config, weight float64) {
 	if rec.impacts[0] == nil {
 		return

@@ -12,8 +12,8 @@ import (
 // Meter is a pic.Observer that reads what an instrument at the powered electrode shows, period by
 // period, whatever else is recorded.
 //
-// Components are those of cos(k w t) and -sin(k w t), so that a + i b is the phasor of harmonic k. A
-// current is a mean over the step before and counts at its middle.
+// Components are those of cos(k w t) and -sin(k w t), so that a + i b is the phasor of harmonic k.
+// A current is a mean over the step before and counts at its middle.
 type Meter struct {
 	harmonics []int
 	cos, sin  [][]float64 // by harmonic: one period of half steps
@@ -154,8 +154,8 @@ func (m *Meter) RMS(n int) stats.Estimate {
 	return e
 }
 
-// Reading is what the meter shows at one frequency. With V and J the phasors of voltage and current,
-// the phase is that of J before V, and V/J = Resistance + i Reactance.
+// Reading is what the meter shows at one frequency. With V and J the phasors of voltage and
+// current, the phase is that of J before V, and V/J = Resistance + i Reactance.
 type Reading struct {
 	Harmonic              int
 	Voltage               stats.Estimate // amplitude [V]
@@ -182,7 +182,8 @@ func (m *Meter) Readings(n int) []Reading {
 		phase := math.Remainder(jPhase-vPhase, 2*math.Pi)
 		turn := stats.Mean(difference)
 		r.PhaseDeg = stats.Estimate{
-			Mean: phase * 180 / math.Pi, StdErr: turn.StdErr * 180 / math.Pi, N: turn.N, Batch: turn.Batch,
+			Mean: phase * 180 / math.Pi, StdErr: turn.StdErr * 180 / math.Pi, N: turn.N,
+			Batch: turn.Batch,
 		}
 		r.Resistance, r.Reactance = impedance(v, j, difference, phase)
 		list = append(list, r)

@@ -40,6 +40,8 @@ type Config struct {
 	CurrentDrive bool
 	// Network connects a voltage Drive with the powered electrode: see circuit.go.
 	Network Network
+	// TopVoltage is the largest voltage that tables are made for [V]; New fills it in.
+	TopVoltage float64
 	// Isolated leaves the powered electrode unconnected: see circuit.go. It has no Drive then.
 	Isolated   bool
 	Electrodes [2]Electrode // by Wall

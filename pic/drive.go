@@ -62,8 +62,11 @@ func (s *Simulation) SetDrive(d Drive) error {
 
 // LargestVoltage returns a bound of the voltage across the gap [V], for tables: behind a capacitor
 // the bias may add the amplitudes once more; a current drive has at most the voltage of the
-// empty gap.
+// empty gap. It is that of the drive which the simulation was made with.
 func (c *Config) LargestVoltage() float64 {
+	if c.TopVoltage > 0 {
+		return c.TopVoltage
+	}
 	if c.CurrentDrive {
 		v := 0.0
 		for _, t := range c.Drive.Tones {

@@ -18,8 +18,8 @@ type Neutralization struct {
 
 // Chunks are random samples of all particles, so the particles of one chunk meet each other as
 // often as all would: in a cell with N1 and N2 particles of the chunk, each pair has the
-// probability Chunks W k(g) dt/dx in a time dt. Of all pairs only N1 N2 k_max/k of them are
-// looked at.
+// probability Chunks W k(g) dt/dx in a time dt, between shells over the cell's area factor. Of all
+// pairs only N1 N2 k_max/k of them are looked at.
 //
 // Ref: common practice; compare the test of decay by 1/(1 + k n t).
 
@@ -87,7 +87,8 @@ func (s *Simulation) neutralizePair(w *worker, p *Neutralization, c int, stream 
 	for j := range s.config.Cells {
 		listA, listB := orderA[fromA:first.first[j]], orderB[fromB:second.first[j]]
 		fromA, fromB = first.first[j], second.first[j]
-		candidates := int(float64(len(listA))*float64(len(listB))*perPair + stream.Float64())
+		here := perPair / s.config.Area(float64(j)+0.5)
+		candidates := int(float64(len(listA))*float64(len(listB))*here + stream.Float64())
 		for ; candidates > 0 && len(listA) > 0 && len(listB) > 0; candidates-- {
 			ka := int(stream.Float64() * float64(len(listA)))
 			kb := int(stream.Float64() * float64(len(listB)))

@@ -68,6 +68,7 @@ func New(c Config) (*Simulation, error) {
 	if c.Kernels.PushDeposit == nil {
 		c.Kernels = kernels.Best()
 	}
+	c.TopVoltage = c.LargestVoltage()
 	s := &Simulation{
 		config: c, species: append([]Species(nil), c.Species...),
 		poisson: newPoisson(&c), loop: newLoop(&c), voltage: c.Drive.samples(c.StepsPerPeriod),

@@ -9,14 +9,14 @@ import (
 	"ionfall/pic"
 )
 
-// ErrTarget says that no voltage up to the limit gave the power, current or self-bias asked for. The
-// results of the run at the limit are kept.
+// ErrTarget says that no voltage up to the limit gave the power, current or self-bias asked for.
+// The results of the run at the limit are kept.
 var ErrTarget = errors.New("the target is out of reach")
 
 // A reactor settles more slowly than its plasma: a blocking capacitor is charged by the small
 // difference of ion and electron current, and the voltage that gives a power has to be found. While
-// the run settles, both are steered: the bias by what flowed, the amplitude by what was measured. At
-// the end they are left alone, long before anything is averaged. The steady state is that of the
+// the run settles, both are steered: the bias by what flowed, the amplitude by what was measured.
+// At the end they are left alone, long before anything is averaged. The steady state is that of the
 // circuit alone: steering stops where no direct current flows.
 //
 // The electrons that reach the electrode grow with its mean voltage as exp(V/Te), as only the tail
@@ -26,12 +26,15 @@ const (
 	steerEV = 3 // about Te [eV]
 	// biasStep bounds a step of the bias, ampStep one of ln(amplitude).
 	biasStep, ampStep = 0.2, 0.15
+	// ampGain is the part of a deviation that a step takes away.
+	ampGain = 0.7
 	// coarseCounts and fineCounts are the particles at the electrode that a step waits for, for
 	// coarseWait or fineWait periods at most.
 	coarseCounts, fineCounts = 100, 600
 	coarseWait, fineWait     = 20, 100
+	leastWait                = 4
 	// fineSteps with gains 1, 1/2, 1/3 ... average the chance of all of them.
-	fineSteps = 6
+	fineSteps = 8
 	// firstSteer is when the start's own transient has gone [periods].
 	firstSteer = 20
 	// mostSteps bounds the search; from then on the trust checks tell.
@@ -53,7 +56,8 @@ type reactorControl struct {
 	Minus     float64 // ... and more negative
 	Rise      float64 // last step of the bias [V]
 	Steps     int
-	Fine      int // fine steps made
+	Fine      int     // number of the fine step that comes next, or 0
+	LogSum    float64 // of ln(amplitude) over the fine steps
 	AtLimit   int
 	Done      bool
 	Unreached bool
@@ -126,7 +130,7 @@ func (r *reactorControl) count(l *pic.Ledger, species []pic.Species) {
 func (m *machine) steerNow(fine, targeted bool) bool {
 	r := &m.control.Reactor
 	if !fine {
-		return r.Since >= 2 && r.Plus+r.Minus >= coarseCounts || r.Since >= coarseWait
+		return r.Since >= leastWait && r.Plus+r.Minus >= coarseCounts || r.Since >= coarseWait
 	}
 	least := 5.0
 	if targeted {
@@ -193,33 +197,36 @@ func (m *machine) target(n int) (want float64, is stats.Estimate, exponent float
 	return d.SelfBias, m.meter.SelfBias(n), 1, "self-bias"
 }
 
-// steerAmplitude moves the amplitude towards the target; true if it is close.
+// steerAmplitude moves the amplitude so that the target is held; true if it is close. What the
+// density does to power and current is followed; in the end the amplitude is the mean over the fine
+// steps, through which the target was held.
 func (m *machine) steerAmplitude(fine bool) (bool, error) {
 	c, r := &m.control, &m.control.Reactor
-	want, is, exponent, _ := m.target(r.Since)
+	// The period in which the amplitude changed charged the sheaths, too.
+	want, is, exponent, _ := m.target(r.Since - 1)
 	off := 1.0 // of the wrong sign: far below
 	if is.Mean/want > 0 {
 		off = math.Log(want / is.Mean)
 	}
-	step := off / exponent
-	if fine {
-		step /= float64(r.Fine)
-	} else {
-		step = math.Max(-ampStep, math.Min(ampStep, 0.7*step))
-	}
-	was := m.amplitude()
+	step := math.Max(-ampStep, math.Min(ampStep, ampGain*off/exponent))
 	limit := m.plan.Case.Drive.Limit()
+	was := m.amplitude()
 	now := math.Max(math.Min(leastAmplitude, limit), math.Min(limit, was*math.Exp(step)))
 	if now == limit && off > 0.02 && (c.Stage == StageSettling || c.Round.Number > 1) {
 		r.AtLimit++
 	} else {
 		r.AtLimit = 0
 	}
-	if c.Projecting && math.Abs(step) > 0.02 {
+	if c.Projecting && math.Abs(step) > 0.05 {
 		c.Round.Doubled = 0 // the growth that is seen follows the amplitude
 	}
+	if !fine {
+		r.LogSum = 0
+	} else if r.LogSum += math.Log(now); r.Fine == fineSteps {
+		now = math.Exp(r.LogSum / fineSteps)
+	}
 	r.Amplitude, m.plan.amplitude = now, now
-	return math.Abs(off) < closeToTarget || r.AtLimit > 0, m.sim.SetDrive(m.plan.drive())
+	return math.Abs(off) < closeToTarget, m.sim.SetDrive(m.plan.drive())
 }
 
 // amplitude is the sum of amplitudes in use [V].
