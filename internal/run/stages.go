@@ -12,6 +12,9 @@ import (
 // pilotSeed keeps the pilot's random numbers apart from those of the final simulation.
 const pilotSeed = 1 << 63
 
+// pilotAverage is about how many periods the pilot's plasma is measured over.
+const pilotAverage = 2 * stats.MinBatches
+
 // startDensity is the part of the homogeneous model's density to start from, as it tends to be
 // too high.
 const startDensity = 0.5
@@ -94,7 +97,11 @@ func (m *machine) adopt(s *pic.Simulation, n Numerics) {
 
 // newRecorder returns a recorder that observes the present simulation, instead of any before.
 func (m *machine) newRecorder() *diagnostics.Recorder {
-	r := diagnostics.New(m.sim, m.plan.Case.IonEnergyThresholds, m.plan.averagePeriods())
+	periods := m.plan.averagePeriods()
+	if m.control.Stage == StagePilot {
+		periods = pilotAverage
+	}
+	r := diagnostics.New(m.sim, m.plan.Case.IonEnergyThresholds, periods)
 	m.meter = m.newMeter()
 	m.sim.SetObservers(r, m.meter)
 	return r
