@@ -22,7 +22,10 @@ func (p *program) probeCommand() *cli.Command {
 		ArgsUsage: "COMMAND",
 		Description: `Measurements come as text files with a header such as voltage_V,current_A. Every
 number has its standard error, and what the data cannot tell is not stated.`,
-		Subcommands: []*cli.Command{p.probeReadCommand()},
+		Subcommands: []*cli.Command{
+			p.probeReadCommand(), p.probeCompareCommand(), p.probeAnalyserCommand(),
+			p.probeDrawCommand(),
+		},
 	}
 	c.Action = func(*cli.Context) error {
 		return usagef("probe: no command given, want one of %s; for example: ionfall probe read "+

@@ -20,8 +20,8 @@ type AnalyserDescription struct {
 
 func analyserKeys() []string {
 	return []string{
-		"name", "sweeps", "electrode", "grids", "open_fraction", "entrance_radius", "acceptance", "resolution",
-		"electrode_potential", "columns", "run",
+		"name", "sweeps", "electrode", "grids", "open_fraction", "entrance_radius", "acceptance",
+		"resolution", "electrode_potential", "columns", "run",
 	}
 }
 

@@ -10,10 +10,12 @@ import (
 
 // Limits of what describes a probe, in SI units.
 const (
-	LeastRadius, MostRadius = 1e-7, 5e-3
-	LeastLength, MostLength = 1e-4, 0.5
-	MostResistance          = 1e6
-	MostRF                  = 1e3
+	LeastRadius    = 1e-7
+	MostRadius     = 5e-3
+	LeastLength    = 1e-4
+	MostLength     = 0.5
+	MostResistance = 1e6
+	MostRF         = 1e3
 )
 
 func probeKeys() []string {

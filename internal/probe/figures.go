@@ -112,11 +112,13 @@ func (r *Result) Figures() (map[string][]byte, error) {
 		{"curvature.svg", "second derivative", x, "d2I/dV2 [A/V2]", false, []Curve{
 			{"smoothed", volts, get(r.Characteristic, "curvature_AperV2"), false},
 		}},
-		{"eepf.svg", "electron energy probability function", "energy [eV]", "EEPF [eV^-3/2]", true,
+		{
+			"eepf.svg", "electron energy probability function", "energy [eV]", "EEPF [eV^-3/2]", true,
 			[]Curve{
 				{"second derivative", get(r.EEPF, "energy_eV"), get(r.EEPF, "eepf_eVm32"), true},
 				{"fit", get(r.EEPF, "energy_eV"), get(r.EEPF, "fit_eVm32"), false},
-			}},
+			},
+		},
 	} {
 		svg, err := Figure(f.title, f.x, f.y, f.log, f.curves...)
 		if err != nil {

@@ -23,11 +23,6 @@ type fitted struct {
 	points int
 }
 
-// bic is the criterion of G. Schwarz, Ann. Stat. 6, 461 (1978): smaller is better.
-func (f *fitted) bic() float64 {
-	return f.chi2 + float64(len(f.free))*math.Log(float64(f.points))
-}
-
 // prior holds a parameter near a value.
 type prior struct {
 	par         int

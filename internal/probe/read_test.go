@@ -162,7 +162,12 @@ func TestSmoothing(t *testing.T) {
 		order         int
 		width, factor float64
 	}{
-		{2, 0.5, 1.005}, {2, 1, 1.021}, {2, 2, 1.08}, {2, 4, 1.34}, {4, 2, 0.998}, {4, 4, 0.975},
+		{2, 0.5, 1.005},
+		{2, 1, 1.021},
+		{2, 2, 1.08},
+		{2, 4, 1.34},
+		{4, 2, 0.998},
+		{4, 4, 0.975},
 		{4, 8, 0.46},
 	} {
 		const half = 20 // the largest window of the source
