@@ -19,7 +19,7 @@ const (
 )
 
 // kinds are the shapes, simple ones first.
-func kinds() []string { return []string{Maxwell, Druyvesteyn, General, TwoTemp} }
+func kinds() []string { return []string{Maxwell, Druyvesteyn, General, TwoTemp, Free} }
 
 // freeOf are the parameters that a candidate fits.
 func freeOf(c candidate) []int {
@@ -32,6 +32,10 @@ func freeOf(c candidate) []int {
 		free = append(free, parShape)
 	case TwoTemp:
 		free = append(free, parShape, parShape2)
+	case Free:
+		for k := range freeCells - 1 {
+			free = append(free, parShape+k)
+		}
 	}
 	return free
 }
@@ -72,30 +76,38 @@ func fitAll(d *cleaned, g *guess, setup *Setup) ([]scored, *data, error) {
 	return list, used, nil
 }
 
-// fitKinds fits the shapes, each without and with RF.
+// hopeless is how much larger chi-square of a shape may be than that of the best, for it to be
+// tried with RF, too.
+const hopeless = 4
+
+// fitKinds fits the shapes, each without RF and, where there is hope, with it.
 func fitKinds(d *data, g *guess, setup *Setup, knee, temperature float64, kinds []string,
 	atFloor bool,
 ) ([]scored, error) {
 	var list []scored
+	least := math.Inf(1)
 	for _, kind := range kinds {
 		m := newModel(setup, kind)
+		m.scale = temperature
 		start := g.startFor(m, knee, temperature)
-		withRF := []bool{false, true}
 		if !math.IsNaN(setup.RF) {
-			start[parRF], withRF = setup.RF*setup.RF, []bool{false}
+			start[parRF] = setup.RF * setup.RF
 		}
-		for _, rf := range withRF {
-			c := candidate{kind, rf}
-			if rf {
-				start = slices.Clone(start)
-				start[parRF] = math.Pow(temperature/2, 2)
-			}
-			f, err := m.fit(start, freeOf(c), d)
-			if err != nil {
-				continue // others may do better
-			}
+		c := candidate{kind, false}
+		if f, err := m.fit(start, freeOf(c), d); err == nil { // others may do better
 			list = append(list, scored{candidate: c, fitted: f})
-			start = f.p
+			least = math.Min(least, f.chi2)
+		}
+	}
+	for _, s := range list {
+		if !math.IsNaN(setup.RF) || s.chi2 > hopeless*least {
+			continue
+		}
+		start := slices.Clone(s.p)
+		start[parRF] = math.Pow(temperature/2, 2)
+		c := candidate{s.kind, true}
+		if f, err := s.model.fit(start, freeOf(c), d); err == nil {
+			list = append(list, scored{candidate: c, fitted: f})
 		}
 	}
 	if len(list) == 0 {

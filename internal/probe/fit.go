@@ -34,6 +34,14 @@ func priors() []prior {
 	return []prior{{parIonSlope, 0, 0.1}, {parSaturation, 1, 0.7}}
 }
 
+// pulls are the number of residuals that are priors.
+func (m *model) pulls() int {
+	if m.kind == Free {
+		return len(priors()) + freeCells - 1
+	}
+	return len(priors())
+}
+
 // residuals of the points and of the priors, in their errors.
 func (m *model) residuals(p []float64, d *data, out []float64) {
 	c := m.characteristic(p)
@@ -42,6 +50,14 @@ func (m *model) residuals(p []float64, d *data, out []float64) {
 	}
 	for i, r := range priors() {
 		out[len(d.voltage)+i] = (r.mean - p[r.par]) / r.error
+	}
+	if m.kind != Free {
+		return
+	}
+	before := 0.0
+	for k := range freeCells - 1 {
+		out[len(d.voltage)+len(priors())+k] = (p[parShape+k] - before) / freePriors
+		before = p[parShape+k]
 	}
 }
 
@@ -61,6 +77,9 @@ func limits(par int) (lo, hi float64) {
 	case parShape2:
 		return -9, 3
 	}
+	if par > parShape2 {
+		return -3, 3
+	}
 	return math.Inf(-1), math.Inf(1)
 }
 
@@ -74,7 +93,7 @@ const (
 // and D. W. Marquardt, SIAM J. Appl. Math. 11, 431 (1963).
 func (m *model) fit(start []float64, free []int, d *data) (*fitted, error) {
 	p := append([]float64(nil), start...)
-	n := len(d.voltage) + len(priors())
+	n := len(d.voltage) + m.pulls()
 	r, trial := make([]float64, n), make([]float64, n)
 	m.residuals(p, d, r)
 	f := &fitted{model: m, free: free, points: len(d.voltage), chi2: squares(r)}

@@ -16,14 +16,15 @@ const (
 	parSaturation        // enhancement above the plasma potential over that of orbital motion
 	parRF                // square of the residual RF amplitude [V2]
 	parShape             // kappa, or ln(warm/cold - 1)
-	parShape2            // logit of the part that is warm
-	parCount
+	parShape2            // logit of the part that is warm; the free form has more
+	parCount      = parShape + freeCells - 1
 )
 
 // model is a characteristic of known form.
 type model struct {
 	setup *Setup
 	kind  string
+	scale float64                // of the knots of the free form [eV]
 	kappa map[float64]*unitShape // those computed before
 }
 
@@ -47,6 +48,8 @@ func (m *model) shape(p []float64) shape {
 	switch m.kind {
 	case Maxwell:
 		return maxwellShape(temperature)
+	case Free:
+		return m.freeShape(p)
 	case TwoTemp:
 		return twoShape(temperature, temperature*(1+math.Exp(p[parShape])),
 			1/(1+math.Exp(-p[parShape2])))
