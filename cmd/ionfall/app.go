@@ -19,6 +19,7 @@ func (p *program) commands() []*cli.Command {
 		p.reportCommand(),
 		p.plotCommand(),
 		p.gasCommand(),
+		p.probeCommand(),
 		p.schemaCommand(),
 		p.versionCommand(),
 	}

@@ -11,8 +11,10 @@ import (
 func TestHelp(t *testing.T) {
 	app := newProgram(nil, nil).app()
 	list := append([]string{"ionfall"}, names(app.Commands)...)
-	for _, name := range names(find(app.Commands, "gas").Subcommands) {
-		list = append(list, "gas "+name)
+	for _, group := range []string{"gas", "probe"} {
+		for _, name := range names(find(app.Commands, group).Subcommands) {
+			list = append(list, group+" "+name)
+		}
 	}
 	for _, name := range list {
 		args := append(strings.Fields(name), "--help")

@@ -17,6 +17,8 @@ const (
 	Swarm Purpose = 5
 	// Refinement moves a state to another grid.
 	Refinement Purpose = 6
+	// Resampling draws synthetic measurements, and the resampled sweeps of error estimates.
+	Resampling Purpose = 40
 	// Coulomb pairs electrons and turns their relative velocity.
 	Coulomb Purpose = 7
 	// Pairs lets charged particles end each other.
