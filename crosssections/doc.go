@@ -20,20 +20,55 @@
 //	name: Xx                     # the folder has this name
 //	title: in words
 //	note: why these tables, what to doubt
+//	formula: Xx                  # unless it is the name
 //	mass_u: 10.0                 # of the neutral
-//	ions:
-//	  - {name: Xx+, charge: 1}   # mass_u is needed unless it is the ion of the gas itself
+//	polarizability: {value_A3: 1.6, reference: ..., status: memory}   # for estimates, as is
+//	diameter: {value_A: 3.4, reference: ..., status: memory}
+//	ionization_width: {value_eV: 10, reference: ..., status: memory}  # of energy sharing
+//	ions:                        # mass_u is needed only where the name is no chemical formula
+//	  - {name: Xx+, charge: 1}
+//	  - {name: Xx-, charge: -1, electron_affinity: {value_eV: 1, reference: ..., status: memory}}
 //	electron:
 //	  - {name: elastic, kind: elastic, file: e-elastic.csv}
 //	  - name: ionization
-//	    kind: ionization         # elastic, effective, excitation, ionization, attachment
-//	    threshold_eV: 12.0
-//	    products: [e, e, Xx+]
+//	    kind: ionization         # elastic, effective, excitation, rotation, vibration,
+//	    threshold_eV: 12.0       # dissociation, ionization, attachment
+//	    products: [e, e, Xx+]    # or branches: [{products: [...], part: 0.7, appearance_eV: 13}, ..]
 //	    file: e-ionization.csv
 //	ion:                         # isotropic, backscatter, reaction
 //	  - {name: Xx+ isotropic, projectile: Xx+, kind: isotropic, file: ion-isotropic.csv}
+//	  - name: Xx+ to Xx2+        # of the gas itself, unless a target is given
+//	    projectile: Xx+
+//	    target: Yy
+//	    kind: reaction
+//	    products: [Xx2+, Yy]     # scattering: forward lets the first one fly on as the ion did
+//	    defect_eV: -0.5          # energy it takes; of what it sets free, kinetic_part is motion
+//	    rate: {value_m3ps: 1e-15, falls_above_eV: 1, falls_as: 1}   # sigma = k/g; or a file
+//	    reference: ...           # of a rate, with status and note
+//	    status: memory
+//	  - name: Xx2+ on Yy         # at the rate of a mobility, or of the polarization limit: {}
+//	    projectile: Xx2+
+//	    target: Yy
+//	    kind: isotropic
+//	    langevin: {mobility_cm2pVs: 2.5, part: 1, floor_m2: 1e-19}
+//	    reference: ...
+//	    status: memory
+//	neutral:                     # fast neutrals; left out, hard spheres of the diameters
+//	  - {name: Xx isotropic, projectile: Xx, kind: isotropic, file: neutral-isotropic.csv}
+//	pairs:                       # of charged particles; k ~ T^exponent
+//	  - name: recombination
+//	    reactants: [e, Xx+]
+//	    products: [Xx]
+//	    rate: {value_m3ps: 1e-13, exponent: -0.5}
+//	    reference: ...
+//	    status: memory
 //	sets:                        # left out, all processes make the default set
 //	  default: {title: in words, processes: [elastic, ionization, Xx+ isotropic]}
+//
+// Charge and atoms of every process balance. What collides a gas's ion with another gas may stand
+// in the folder of either. An ion without elastic collisions with a gas of known polarizability
+// gets those of the polarization limit (DefaultElastic), and ions of opposite charge without a
+// pair neutralize each other by the formula of Hickman (DefaultNeutralization).
 //
 // A set holds one elastic or effective process of electrons; from an effective one the inelastic
 // processes of the set are subtracted on loading. See ReadTable for the form of the tables. To

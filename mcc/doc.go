@@ -13,7 +13,9 @@
 // target, which a ceiling over the relative speeds that are possible tells without drawing one.
 // Elastic and exciting collisions are isotropic in the centre of mass. Ionization shares the
 // excess energy equally between both electrons, each sent out isotropically in the target's
-// frame; the ion starts with the target's velocity.
+// frame; the ion starts with the target's velocity. Other laws of sharing and scattering can be
+// chosen (Sharing, Scattering). Attachment and reactions of ions turn the projectile and the
+// target into other particles, which the outcome names (Made, Gone).
 //
 // Units. Velocities are in units of the caller's choice (Unit, m/s), dt in seconds; the inner
 // loops then hold no physical constants.

@@ -22,9 +22,13 @@ const (
 	// mostHaste is the largest factor by which the pilot's negative ions come and go faster.
 	mostHaste = 30.0
 	// hastyLoss is the part of the electrons' losses that attachment may make up in the pilot.
-	hastyLoss = 0.1
+	hastyLoss = 0.03
 	// negativeEvents is how many negative ions must have come and gone to judge their balance.
-	negativeEvents = 200
+	negativeEvents = 600
+	// leastNegative is the change of their number that is not worth it.
+	leastNegative = 0.02
+	// fewNegative is the part of the electrons below which negative ions do not matter.
+	fewNegative = 0.01
 )
 
 // pairs are the reactions of the charged species of the run with each other: those of the gases,
@@ -144,6 +148,7 @@ func (p *Plan) negativeStart(te, density float64) float64 {
 // negativeCount is what became of a negative species since its number was last changed.
 type negativeCount struct {
 	Born, Lost int64
+	Settled    bool // as many were made as lost when it was looked at last
 }
 
 // countNegative adds a period's births and losses of negative ions.
@@ -163,34 +168,37 @@ func (c *control) countNegative(species []pic.Species, l *pic.Ledger) {
 // balanceNegative brings negative ions to the number at which they would stand: their losses follow
 // the positive ions, of which there are as many as electrons and negative ions together. With N
 // of them beside e electrons, b made and l lost in a time, N' (e + N') l = b N (e + N). Reports
-// whether it changed anything.
-func (m *machine) balanceNegative() bool {
+// whether it changed anything, or has seen too little to tell.
+func (m *machine) balanceNegative() (open bool) {
 	c := &m.control
-	changed := false
+	changed, scaled := false, false
 	for i, sp := range m.sim.Species() {
 		if i == 0 || sp.Charge >= 0 || i >= len(c.Negative) {
 			continue
 		}
 		born, lost := float64(c.Negative[i].Born), float64(c.Negative[i].Lost)
 		n, electrons := float64(sp.Count()), float64(m.sim.Species()[0].Count())
-		if born+lost < negativeEvents || n < 10 {
+		if born+lost < negativeEvents {
+			open = open || !c.Negative[i].Settled && n > fewNegative*electrons
 			continue
 		}
 		ratio := born / math.Max(1, lost)
 		stands := 0.5 * (math.Sqrt(electrons*electrons+4*ratio*n*(electrons+n)) - electrons)
 		factor := math.Max(0.4, math.Min(2.5, stands/n))
-		c.Negative[i] = negativeCount{}
-		if math.Abs(factor-1) < 2*math.Sqrt(1/math.Max(1, born)+1/math.Max(1, lost)) {
+		chance := math.Sqrt(1/math.Max(1, born) + 1/math.Max(1, lost))
+		c.Negative[i] = negativeCount{Settled: math.Abs(factor-1) < 2*chance}
+		if math.Abs(factor-1) < leastNegative {
 			continue
 		}
 		m.sim.ScaleNegative(i, factor)
 		c.Event = fmt.Sprintf("%s projected by %+.0f %%", sp.Name, 100*(factor-1))
-		changed = true
+		changed = changed || !c.Negative[i].Settled
+		scaled = true
 	}
-	if changed {
+	if scaled {
 		m.rebase()
 	}
-	return changed
+	return open || changed
 }
 
 // negativeChecks judge whether as many negative ions are made as lost: they follow so slowly that

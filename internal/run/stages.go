@@ -90,7 +90,7 @@ func (m *machine) adopt(s *pic.Simulation, n Numerics) {
 	m.rec = m.newRecorder()
 	m.control.Numerics, m.control.SimPeriods = n, 0
 	m.control.Target = n.Cells * n.ParticlesPerCell
-	m.control.StagePeriods = 0
+	m.control.StagePeriods, m.control.Negative = 0, nil
 	m.perStep = 0
 	m.rebase()
 }
