@@ -120,7 +120,8 @@ func TestVaughanShape(t *testing.T) {
 			t.Errorf("%g is not the largest at %g rad", best, angle)
 		}
 	}
-	if a, b := vaughan(3.6), vaughan(3.6+1e-9); math.Abs(a-0.7191) > 1e-4 || math.Abs(b-0.7185) > 1e-4 {
+	a, b := vaughan(3.6), vaughan(3.6+1e-9)
+	if math.Abs(a-0.7191) > 1e-4 || math.Abs(b-0.7185) > 1e-4 {
 		t.Errorf("%g and %g beside w = 3.6", a, b)
 	}
 	if e.Yield(12, 0) != 0 {

@@ -154,3 +154,35 @@ func inSeries(list ...float64) float64 {
 	}
 	return 1 / sum
 }
+
+// reactorReferences are the publications that circuit, shells and surfaces rely on, with what for.
+func (p *Plan) reactorReferences() [][2]string {
+	var list [][2]string
+	c := p.bare()
+	if c.CurrentDrive || c.Network != (pic.Network{}) {
+		list = append(list, [2]string{"verboncoeur-1993", "circuit solved together with the potential"})
+	}
+	if c.Geometry.Shape != pic.Plates {
+		list = append(list, [2]string{"verboncoeur-2001", "volumes of the nodes between shells"})
+	}
+	if p.biasFree() {
+		list = append(list, [2]string{"heil-2008", "first guess of the self-bias"})
+	}
+	yields, emission := false, false
+	for _, e := range []*config.Electrode{&p.Case.Electrodes.Powered, &p.Case.Electrodes.Grounded} {
+		yields = yields || e.IonYieldModel != ""
+		for _, y := range e.IonYields {
+			yields = yields || y.Model != ""
+		}
+		emission = emission || e.Emission != nil
+	}
+	if yields {
+		list = append(list, [2]string{"phelps-petrovic-surfaces-1999", "electrons set free by argon"})
+	}
+	if emission {
+		list = append(list, [2]string{"vaughan-1989", "electrons set free by electrons"},
+			[2]string{"vaughan-1993", "electrons set free by electrons"},
+			[2]string{"chung-everhart-1974", "energies of true secondary electrons"})
+	}
+	return list
+}

@@ -67,8 +67,8 @@ func biasRow(quantity string, want, wantErr, got, gotErr, limit float64, kind va
 func TestValidationBiasOfTwoTones(t *testing.T) {
 	onlyWhenValidating(t, "some minutes")
 	const symmetry = "symmetry of equal electrodes (common practice)"
-	const heil = "B. G. Heil, U. Czarnetzki, R. P. Brinkmann and T. Mussenbrock, J. Phys. D 41, 165202 " +
-		"(2008)"
+	const heil = "B. G. Heil, U. Czarnetzki, R. P. Brinkmann and T. Mussenbrock, J. Phys. D 41, " +
+		"165202 (2008)"
 	one, _ := biasRun(t, "{}", "tones: [{frequency: 13.56 MHz, amplitude: 200 V}]")
 	v, se := biasOf(t, one)
 	rows := []validation.Row{
