@@ -4,6 +4,7 @@ import (
 	"fmt"
 
 	"ionfall/internal/kernels"
+	"ionfall/surfaces"
 )
 
 // Scheme is how the field acts on a particle within its cell.
@@ -22,9 +23,13 @@ func (s Scheme) String() string {
 
 // Electrode says what a wall does to the particles that reach it.
 type Electrode struct {
-	IonSecondaryYield  float64 // electrons emitted per ion
+	IonSecondaryYield float64 // electrons emitted per ion
+	// Yields, by species, go before IonSecondaryYield where they are not nil.
+	Yields             []surfaces.Yield
 	SecondaryEnergyEV  float64 // of an emitted electron [eV]
 	ElectronReflection float64 // probability of specular reflection
+	// Emission by electrons, of those that ElectronReflection lets through; nil for none.
+	Emission *surfaces.Emission
 }
 
 // Config describes a discharge and its numerics. Species[0] must be the electrons, if any.

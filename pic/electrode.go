@@ -4,7 +4,6 @@ import (
 	"math"
 
 	"ionfall/internal/kernels"
-	"ionfall/internal/phys"
 	"ionfall/internal/rng"
 )
 
@@ -34,12 +33,19 @@ func (s *Simulation) leave(w *worker, i, c int, out []int32) {
 				continue
 			}
 		}
+		electron := i == 0 && sp.Charge < 0 && s.config.Electrodes[wall].Emission != nil
+		if electron && s.rebound(w, &stream, i, ch, p, wall, kick.A, depth) {
+			continue
+		}
 		ch.take(p, wall, kick.A, depth)
 		if wall == Powered {
 			w.absorbed[(w.step+1)&1] += int64(sp.Charge)
 		}
-		if sp.Charge > 0 {
-			s.emit(w, &stream, c, wall)
+		switch hit := &ch.hits[len(ch.hits)-1]; {
+		case electron:
+			s.emitByElectron(w, &stream, c, hit)
+		case s.emits(i, wall):
+			s.emit(w, &stream, c, wall, s.yield(i, hit))
 		}
 	}
 }
@@ -96,37 +102,6 @@ func (s *Simulation) reflect(
 	ch.tally.reflected[wall]++
 	kernels.Deposit(ch.x[p:p+1], w.deposit[(w.step+1)&1][i])
 	return true
-}
-
-// emit sets electrons free at the wall where an ion arrived: isotropic into the gap, with the
-// electrode's emission energy, at a random moment of the step.
-func (s *Simulation) emit(w *worker, stream *rng.Stream, c int, wall Wall) {
-	e := &s.config.Electrodes[wall]
-	if e.IonSecondaryYield == 0 || s.species[0].Charge >= 0 {
-		return
-	}
-	number := int(e.IonSecondaryYield + stream.Float64())
-	electrons := &s.species[0]
-	ch := &electrons.chunks[c]
-	speed := math.Sqrt(e.SecondaryEnergyEV * phys.ElementaryCharge / electrons.energyPer)
-	for range number {
-		vx, vy, vz := stream.Direction()
-		vx, vy, vz = speed*math.Abs(vx), speed*vy, speed*vz
-		x := vx * stream.Float64()
-		if wall == Grounded {
-			vx, x = -vx, float64(s.config.Cells)-x
-		}
-		if !kernels.Inside(x, s.config.Cells) {
-			x = max(0, math.Nextafter(float64(s.config.Cells), 0)-0x1p-20)
-		}
-		ch.add(x, vx, vy, vz)
-		ch.tally.emitted[wall]++
-		ch.tally.emittedV2 += vx*vx + vy*vy + vz*vz
-		kernels.Deposit(ch.x[len(ch.x)-1:], w.deposit[(w.step+1)&1][0])
-		if wall == Powered {
-			w.absorbed[(w.step+1)&1] -= int64(electrons.Charge)
-		}
-	}
 }
 
 // absorb shows the observers what the electrodes took from chunk c.

@@ -13,7 +13,8 @@ import (
 //	r' = |(r + vx, vy, vz)|,   vx' = (vx (r + vx) + vt^2)/r',   vt' = vt r/r'
 //
 // with vt the velocity along the shell: vy alone for cylinders, whose axis is along z; vy and vz
-// for spheres. This is free flight without error, and keeps the speed and the angular momentum r vt.
+// for spheres. This is free flight without error, and keeps the speed and the angular momentum r
+// vt.
 //
 // Ref: J. P. Boris's rotation, in C. K. Birdsall and A. B. Langdon, Plasma Physics via Computer
 // Simulation (1985), ch. 14.

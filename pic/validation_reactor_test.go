@@ -213,3 +213,25 @@ func TestValidationReactorEnergy(t *testing.T) {
 			100*heat/given),
 	})
 }
+
+// Goal: the surface of a dielectric layer on a grounded electrode charges negative to the floating
+// potential of a Maxwellian plasma, and ions hit it with the energy of that. Method: the isolated
+// wall's exact solution; the layer has three times the capacitance of the gap.
+func TestValidationReactorDielectric(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes some seconds")
+	}
+	r := &reservoir{
+		scheme: EnergyConserving, electron: 3, ratio: 1836, mach: 1.2, density: 1e15, layer: 3,
+	}
+	r.run(t)
+	var kept []validation.Row
+	for _, row := range r.rows() {
+		if row.Unit == "C/m2" {
+			continue // the layer's other side has a part of it
+		}
+		row.Section = "surface of a dielectric before a collisionless plasma"
+		kept = append(kept, row)
+	}
+	recordReactor(t, kept...)
+}

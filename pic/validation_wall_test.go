@@ -38,6 +38,7 @@ type reservoir struct {
 	charge    []float64 // of the wall, means of stretches [C/m2]
 	hits      [2]float64
 	energy    [2]float64 // of what hit the wall, sum [eV]
+	layer     float64    // capacitance of a dielectric over that of the empty gap; 0 for none
 }
 
 const reservoirEvery = 8 // steps a move of the ions
@@ -82,6 +83,10 @@ func (r *reservoir) build(t *testing.T) *Simulation {
 		Isolated: true, Chunks: 1, Seed: 5, Species: []Species{electrons(), ion},
 	}
 	c.Weight = r.density * c.CellSize() / perCell
+	if r.layer > 0 {
+		c.Isolated = false
+		c.Network.Capacitance = r.layer * c.VacuumCapacitance()
+	}
 	s := mustNew(t, c)
 	mustLoad(t, s, 0, cells*perCell, te/phys.Boltzmann)
 	mustLoad(t, s, 1, cells*perCell, 0)

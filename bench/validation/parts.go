@@ -48,6 +48,24 @@ func parts() []part {
 			pkg: "./pic", pattern: "Validation", flags: "-timeout 1h", takes: "minutes",
 		},
 		{
+			file: "reactor.json", title: "The reactor: circuit, shells, layers",
+			about: "Series circuit with an empty gap, energy of generator, circuit and plasma, fields " +
+				"and flight between cylindrical and spherical shells, a dielectric before a plasma.",
+			pkg: "./pic", pattern: "ValidationReactor", takes: "seconds",
+		},
+		{
+			file: "surfaces.json", title: "Surfaces: electrons set free",
+			about: "Yields of ions, fast atoms and electrons against an independent calculation of the " +
+				"published formulas, point by point.",
+			pkg: "./surfaces", pattern: "Validation", takes: "seconds",
+		},
+		{
+			file: "bias.json", title: "Self-bias of whole discharges",
+			about: "Equal electrodes, two tones, unequal electrodes behind a blocking capacitor.",
+			pkg: "./internal/run", pattern: "ValidationBias", flags: "-timeout 1h",
+			takes: "some minutes",
+		},
+		{
 			file: "gases.json", title: "Gases of film deposition: ions that change, fast neutrals",
 			about: "Ions that become others, attachment, charged particles that end each other, and " +
 				"where the energy of the ions goes at a high pressure.",

@@ -46,5 +46,5 @@ func Keys() []string {
 
 // entries are all publications, by subject.
 func entries() []Entry {
-	return slices.Concat(methods(), plasmas(), crossSections(), measurements())
+	return slices.Concat(methods(), plasmas(), crossSections(), measurements(), reactor())
 }

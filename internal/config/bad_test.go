@@ -74,6 +74,8 @@ func badInputs() []badInput {
 		{"bias-behind-capacitor", false},
 		{"self-bias-without-capacitor", false},
 		{"limit-without-target", false},
+		{"bad-surfaces", true},
+		{"too-much-reflection", false},
 	}
 }
 

@@ -130,12 +130,23 @@ type Electrodes struct {
 
 // Electrode is one wall.
 type Electrode struct {
-	// IonSecondaryYield is the mean number of electrons an arriving ion sets free.
+	// IonSecondaryYield is the mean number of electrons an arriving ion sets free, of those that
+	// are not in IonYields.
 	IonSecondaryYield float64
+	// IonYields are those of single ions; the others have none.
+	IonYields []IonYield
+	// IonYieldModel is a word for a yield as a function of the energy, or "".
+	IonYieldModel string
 	// SecondaryElectronEnergy is the energy they start with [eV].
 	SecondaryElectronEnergy float64
 	// ElectronReflection is the part of the arriving electrons that is reflected, below 1.
 	ElectronReflection float64
+	// Emission by electrons; nil for none.
+	Emission *Emission
+	// Dielectric layer on the wall; nil for none.
+	Dielectric *Layer
+	// Floating says that a wafer on the wall takes no direct current.
+	Floating bool
 	// Substrate says that the film grows here.
 	Substrate bool
 	// Area of the electrode [m2]; 0 if not given. Only the powered one has it.
@@ -237,6 +248,11 @@ func (c *Case) bare() Case {
 	}
 	if len(b.Drive.Tones) == 0 {
 		b.Drive.Tones = nil
+	}
+	for _, e := range []*Electrode{&b.Electrodes.Powered, &b.Electrodes.Grounded} {
+		if len(e.IonYields) == 0 {
+			e.IonYields = nil
+		}
 	}
 	return b
 }

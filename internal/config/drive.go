@@ -46,7 +46,8 @@ const (
 // Refs: B. G. Heil, U. Czarnetzki, R. P. Brinkmann and T. Mussenbrock, J. Phys. D 41, 165202
 // (2008), asymmetric; J. Schulze, E. Schuengel, Z. Donko and U. Czarnetzki, Plasma Sources Sci.
 // Technol. 20, 015017 (2011), peaks and valleys; B. Bruneau, T. Novikova, T. Lafleur, J. P. Booth
-// and E. V. Johnson, Plasma Sources Sci. Technol. 23, 065010 (2014), sawtooth (formulas from memory).
+// and E. V. Johnson, Plasma Sources Sci. Technol. 23, 065010 (2014), sawtooth (formulas from
+// memory).
 func (s *Series) expand() []Tone {
 	const quarter = 1.5707963267948966 // pi/2
 	n := s.Harmonics

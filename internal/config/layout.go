@@ -145,30 +145,13 @@ func electrodesLayout(e *Electrodes) value {
 }
 
 func electrodeLayout(e *Electrode, powered bool) value {
-	fields := []field{
-		{
-			key: "ion_secondary_yield", value: number{dst: &e.IonSecondaryYield, high: maxYield},
-			doc: "Mean number of electrons set free by an arriving ion. Default: 0.",
-		},
-		{
-			key: "secondary_electron_energy",
-			value: quantity{
-				dst: &e.SecondaryElectronEnergy, dim: energy(), low: "0 eV",
-				high: maxSecondaryEnergy,
-			},
-			doc: "Energy of the electrons set free. Default: 1 eV.",
-		},
-		{
-			key:   "electron_reflection",
-			value: number{dst: &e.ElectronReflection, high: 1, below: true, percent: true},
-			doc:   "Part of the arriving electrons that is reflected. Default: 0.",
-		},
+	fields := append(surfaceFields(e), []field{
 		{
 			key: "substrate", value: boolean{&e.Substrate},
 			doc: "The film grows here; both electrodes may be substrates. " +
 				"Default: true for the grounded one.",
 		},
-	}
+	}...)
 	if powered {
 		fields = append(fields, field{
 			key: "area",

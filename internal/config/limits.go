@@ -52,6 +52,8 @@ const (
 
 	// maxYield: slow heavy ions on oxides reach about 1; a wrong unit (per cent) exceeds 10.
 	maxYield = 10
+	// maxIons: no mixture has more.
+	maxIons = 64
 	// maxSecondaryEnergy: electrons set free by slow ions start with a few eV.
 	maxSecondaryEnergy = "1000 eV"
 

@@ -122,8 +122,12 @@ func (p *Plan) loudest() pic.Tone {
 func (p *Plan) reactor(c *pic.Config) {
 	d := &p.Case.Drive
 	c.Geometry, c.Drive, c.CurrentDrive = p.geometry(), p.drive(), d.CurrentDriven()
+	if c.CurrentDrive {
+		return // it flows through whatever is in series
+	}
+	layers := p.layers()
 	c.Network = pic.Network{
-		Capacitance: d.BlockingCapacitor.PerArea(p.area()),
+		Capacitance: inSeries(d.BlockingCapacitor.PerArea(p.area()), layers[0], layers[1]),
 		Resistance:  d.Resistance.TimesArea(p.area()), Inductance: d.Inductance.TimesArea(p.area()),
 	}
 }

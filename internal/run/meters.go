@@ -45,10 +45,7 @@ func frequencyKey(hertz float64) string {
 // meterResults adds what instruments at the electrode show.
 func (m *machine) meterResults(r map[string]any) {
 	n := m.control.Averaged.Periods
-	bias := value(m.meter.SelfBias(n), "V")
-	if c := m.sim.Config(); !c.CurrentDrive && c.Network == (pic.Network{}) {
-		bias = store.Value{Value: m.plan.Case.Drive.Bias, Unit: "V"}
-	}
+	bias := m.biases(r, n)
 	rms := m.meter.RMS(n)
 	low, high := m.meter.MidGap(n)
 	r["self_bias_V"] = bias
@@ -76,6 +73,42 @@ func (m *machine) meterResults(r map[string]any) {
 			Value: a, SE: a * math.Abs(is.StdErr/is.Mean) / exponent, Unit: "V",
 		}
 	}
+}
+
+// biases returns the mean voltage of the metal of the powered electrode, and adds the mean
+// potentials of surfaces against the metal below them, where something is between. All capacitors
+// in series have passed the same charge Q from the start: Q = C (V - phi[0]) on average, with V the
+// drive's constant part, C of all of them and phi[0] the voltage across the gap.
+func (m *machine) biases(r map[string]any, n int) store.Value {
+	c, d := m.sim.Config(), &m.plan.Case.Drive
+	gap := m.meter.SelfBias(n)
+	layers := m.plan.layers()
+	block := d.BlockingCapacitor.PerArea(m.plan.area())
+	switch {
+	case !c.CurrentDrive && c.Network.Capacitance == 0 && c.Network.Resistance == 0:
+		return store.Value{Value: d.Bias, Unit: "V"}
+	case c.CurrentDrive || layers == [2]float64{}:
+		return value(gap, "V")
+	}
+	across := func(capacitance, sign float64) store.Value {
+		if capacitance == 0 {
+			return store.Value{Unit: "V"}
+		}
+		part := c.Network.Capacitance / capacitance
+		return store.Value{
+			Value: sign * part * (d.Bias - gap.Mean), SE: part * gap.StdErr, Unit: "V",
+		}
+	}
+	potentials := map[string]any{}
+	for wall, sign := range []float64{-1, 1} {
+		if layers[wall] > 0 {
+			potentials[pic.Wall(wall).String()] = across(layers[wall], sign)
+		}
+	}
+	r["surface_potential_V"] = potentials
+	metal := across(block, -1)
+	metal.Value += d.Bias
+	return metal
 }
 
 // totals adds current and power of the whole electrode where its area is given.

@@ -144,6 +144,7 @@ func (p *Plan) checked() (*Plan, error) {
 		p.heavy = p.heavySpecies()
 		bad = append(bad, p.missingCollisions()...)
 		bad = append(bad, p.unusable()...)
+		bad = append(bad, p.unknownYields()...)
 	}
 	if len(bad) > 0 {
 		return nil, bad
@@ -199,12 +200,6 @@ func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 	}
 	p.reactor(&c)
 	c.Relaxation = p.relaxation(&c)
-	for wall, e := range []config.Electrode{p.Case.Electrodes.Powered, p.Case.Electrodes.Grounded} {
-		c.Electrodes[wall] = pic.Electrode{
-			IonSecondaryYield: e.IonSecondaryYield, SecondaryEnergyEV: e.SecondaryElectronEnergy,
-			ElectronReflection: e.ElectronReflection,
-		}
-	}
 	electron := heavySpecies{Name: crosssections.ElectronName, Mass: phys.ElectronMass, Charge: -1}
 	for i, h := range append([]heavySpecies{electron}, p.heavy...) {
 		every := n.IonSubsteps
@@ -220,6 +215,7 @@ func (p *Plan) assemble(n Numerics, weight float64) (*pic.Simulation, error) {
 			Least: p.leastNeutral(h),
 		})
 	}
+	p.addSurfaces(&c)
 	p.addPairs(&c, n)
 	return pic.New(c)
 }

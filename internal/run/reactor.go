@@ -63,8 +63,11 @@ type reactorControl struct {
 	Unreached bool
 }
 
-// biasFree tells whether a blocking capacitor lets a self-bias build up.
-func (p *Plan) biasFree() bool { return p.Case.Drive.BlockingCapacitor.Given() }
+// biasFree tells whether a capacitor, a layer or a floating wafer lets a direct voltage build up.
+func (p *Plan) biasFree() bool {
+	c := p.bare()
+	return c.Network.Capacitance > 0 && !c.CurrentDrive
+}
 
 // steer ends a period for the meter and, while the run settles, steers the reactor.
 func (m *machine) steer(l *pic.Ledger) error {

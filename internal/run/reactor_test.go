@@ -10,12 +10,13 @@ import (
 	"strings"
 	"testing"
 
+	"ionfall/internal/phys"
 	"ionfall/internal/progress"
 	"ionfall/internal/store"
 )
 
-// reactorInput is a small discharge with everything that a reactor has: shells, a circuit, two tones
-// and a target.
+// reactorInput is a small discharge with everything that a reactor has: shells, a circuit, two
+// tones and a target.
 const reactorInput = `
 gap: 20 mm
 geometry: {shape: cylindrical, area_ratio: 2}
@@ -74,7 +75,8 @@ func TestReactorIsTheSameBits(t *testing.T) {
 }
 
 // Goal: what the meters show fits together: V/J is the impedance, power is V J cos(phase)/2 summed
-// over the tones, as there is no constant voltage; totals are the densities times the area. Method: the results of one run.
+// over the tones, as there is no constant voltage; totals are the densities times the area. Method:
+// the results of one run.
 func TestMetersFitTogether(t *testing.T) {
 	input := strings.Replace(reactorInput, "blocking_capacitor: 20 nF", "bias: 0 V", 1)
 	s, dir, err := Run(context.Background(), plan(t, input),
@@ -119,8 +121,8 @@ func TestMetersFitTogether(t *testing.T) {
 	}
 }
 
-// Goal: a power that no voltage up to the limit gives ends with an error that names the best reached,
-// and results. Method: a limit far too low.
+// Goal: a power that no voltage up to the limit gives ends with an error that names the best
+// reached, and results. Method: a limit far too low.
 func TestTargetOutOfReach(t *testing.T) {
 	if testing.Short() {
 		t.Skip("takes some seconds")
@@ -192,5 +194,52 @@ func TestTraceRunsAsItsTones(t *testing.T) {
 	}
 	if fmt.Sprintf("%+v", s.Results) != fmt.Sprintf("%+v", s2.Results) {
 		t.Error("the resolved input gives other results")
+	}
+}
+
+// Goal: surfaces reach the simulation: yields by ion and energy, emission by electrons, layers and
+// floating wafers with their capacitance; the surface of a layer has the direct voltage that the
+// electrode below has not. Method: a short run of unequal shells, and what it was built of.
+func TestSurfacesReachTheRun(t *testing.T) {
+	input := strings.Replace(reactorInput, "  blocking_capacitor: 20 nF\n", "", 1)
+	input = strings.Replace(input, "electrodes: {powered: {area: 300 cm2}}", `electrodes:
+  powered:
+    area: 300 cm2
+    ion_secondary_yield: {Ar+: dirty_metal}
+    electron_emission: {max_yield: 2.4, max_energy: 400 eV}
+    dielectric: {thickness: 0.7 mm, permittivity: 3.9}
+  grounded: {ion_secondary_yield: 0.1, floating: true}`, 1)
+	p := plan(t, input)
+	layers := p.layers()
+	want := phys.Epsilon0 * 3.9 / 0.7e-3
+	if math.Abs(layers[0]/want-1) > 1e-12 || layers[1] != 2*floatingCapacitance {
+		t.Errorf("layers %g F/m2", layers)
+	}
+	s, _, err := Run(context.Background(), p, Options{Out: filepath.Join(t.TempDir(), "out")})
+	if err != nil {
+		t.Fatal(err)
+	}
+	metal, _ := s.Lookup("self_bias_V")
+	surface, ok := s.Lookup("surface_potential_V.powered")
+	if !ok || metal.Value != 0 || !(surface.Value < -10) {
+		t.Errorf("metal %+v, surface %+v", metal, surface)
+	}
+	if g, _ := s.Lookup("surface_potential_V.grounded"); math.Abs(g.Value) > 0.01 {
+		t.Errorf("a wafer whose coupling takes no voltage has %+v", g)
+	}
+}
+
+// Goal: yields that no ion of the mixture can have are refused at their place.
+func TestUnknownYields(t *testing.T) {
+	for yield, want := range map[string]string{
+		"{He+: 0.2}":         "electrodes.powered.ion_secondary_yield.He+: got He+, want an ion of this mixture",
+		"{Ar+: clean_metal}": "",
+		"clean_metal":        "",
+	} {
+		_, err := PrepareBytes("case.yaml", []byte(argon+"electrodes: {powered: {ion_secondary_yield: "+
+			yield+"}}\n"))
+		if (err == nil) != (want == "") || err != nil && !strings.Contains(err.Error(), want) {
+			t.Errorf("%s: got %v", yield, err)
+		}
 	}
 }

@@ -159,6 +159,7 @@ func (m *machine) references() []store.Reference {
 	if m.plan.Case.CoulombCollisions {
 		why = append(why, [2]string{"nanbu-1997", "collisions of electrons with each other"})
 	}
+	why = append(why, m.plan.reactorReferences()...)
 	var list []store.Reference
 	for _, w := range why {
 		if e, ok := bib.Lookup(w[0]); ok {
