@@ -114,12 +114,18 @@ func TestChemistryErrors(t *testing.T) {
 		{"[SiH2, H]", "[SiH2]", "products: got H missing, want the atoms of e and SiH3+"},
 		{"[e, SiH3+]", "[SiH2+, SiH3+]", "reactants: got SiH2+, SiH3+, want two of opposite charge"},
 		{"rate: {value_m3ps: 1.05e-15}", "rate: {value_m3ps: 1.05e-9}", "at most 1e-11 m3/s"},
-		{"rate: {value_m3ps: 1.05e-15}", "file: m.csv\n    rate: {value_m3ps: 1e-15}",
-			"want one of file, rate, langevin"},
-		{"langevin: {mobility_cm2pVs: 11.2}", "langevin: {mobilty_cm2pVs: 11.2}",
-			`did you mean "mobility_cm2pVs"?`},
-		{"    reference: nobody\n    status: memory\npairs", "    status: memory\npairs",
-			`got no "reference"`},
+		{
+			"rate: {value_m3ps: 1.05e-15}", "file: m.csv\n    rate: {value_m3ps: 1e-15}",
+			"want one of file, rate, langevin",
+		},
+		{
+			"langevin: {mobility_cm2pVs: 11.2}", "langevin: {mobilty_cm2pVs: 11.2}",
+			`did you mean "mobility_cm2pVs"?`,
+		},
+		{
+			"    reference: nobody\n    status: memory\npairs", "    status: memory\npairs",
+			`got no "reference"`,
+		},
 		{"status: memory}\nions", "status: sure}\nions", "want one of read, computed, derived, memory"},
 		{"kind: isotropic", "kind: isotropc", "want one of isotropic, backscatter, reaction"},
 	} {

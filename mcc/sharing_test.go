@@ -13,8 +13,12 @@ import (
 // quadrature, as tabulated for argon, helium and hydrogen, within 1 % and 4 standard errors.
 func TestOpalSharing(t *testing.T) {
 	for _, c := range []struct{ width, ionization, energy, want float64 }{
-		{10.0, 15.8, 50, 6.57}, {10.0, 15.8, 100, 11.0}, {10.0, 15.8, 300, 17.7},
-		{15.8, 24.6, 100, 12.8}, {8.3, 15.4, 50, 6.19}, {8.3, 15.4, 300, 15.6},
+		{10.0, 15.8, 50, 6.57},
+		{10.0, 15.8, 100, 11.0},
+		{10.0, 15.8, 300, 17.7},
+		{15.8, 24.6, 100, 12.8},
+		{8.3, 15.4, 50, 6.19},
+		{8.3, 15.4, 300, 15.6},
 	} {
 		excess := c.energy - c.ionization
 		s := stream(50)

@@ -77,7 +77,7 @@ func (s *Simulation) change(w *worker, i, c int, out *mcc.Outcome) {
 	ch := &sp.chunks[c]
 	for k := range out.Made {
 		m := &out.Made[k]
-		to := -1
+		var to int
 		if m.Product == mcc.Recoil {
 			to = sp.hitOf[m.Channel]
 		} else {

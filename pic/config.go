@@ -4,7 +4,7 @@ import (
 	"fmt"
 
 	"ionfall/internal/kernels"
-	"ionfall/surfaces"
+	"ionfall/internal/surfaces"
 )
 
 // Scheme is how the field acts on a particle within its cell.

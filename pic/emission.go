@@ -6,7 +6,7 @@ import (
 	"ionfall/internal/kernels"
 	"ionfall/internal/phys"
 	"ionfall/internal/rng"
-	"ionfall/surfaces"
+	"ionfall/internal/surfaces"
 )
 
 // workFunctionEV is that of most metals within half an eV; it sets the scale of the energies of

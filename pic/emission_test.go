@@ -4,7 +4,7 @@ import (
 	"math"
 	"testing"
 
-	"ionfall/surfaces"
+	"ionfall/internal/surfaces"
 )
 
 // strike lets n particles of a species hit the powered electrode at an energy [eV] and angle, and

@@ -33,7 +33,9 @@ func (p *part) repeat() string {
 }
 
 // parts are all parts, from the smallest piece of physics to the whole discharge.
-func parts() []part {
+func parts() []part { return append(piecesOfPhysics(), discharges()...) }
+
+func piecesOfPhysics() []part {
 	return []part{
 		{
 			file: "swarm.json", title: "Collisions: swarms in a uniform field",
@@ -57,12 +59,12 @@ func parts() []part {
 			file: "surfaces.json", title: "Surfaces: electrons set free",
 			about: "Yields of ions, fast atoms and electrons against an independent calculation of the " +
 				"published formulas, point by point.",
-			pkg: "./surfaces", pattern: "Validation", takes: "seconds",
+			pkg: "./internal/surfaces", pattern: "Validation", takes: "seconds",
 		},
 		{
 			file: "bias.json", title: "Self-bias of whole discharges",
 			about: "Equal electrodes, two tones, unequal electrodes behind a blocking capacitor.",
-			pkg: "./internal/run", pattern: "ValidationBias", flags: "-timeout 1h",
+			pkg:   "./internal/run", pattern: "ValidationBias", flags: "-timeout 1h",
 			takes: "some minutes",
 		},
 		{
@@ -74,6 +76,11 @@ func parts() []part {
 				"go test ./internal/run -run EnergyAtTheWalls -count 1 -update",
 			takes: "some minutes",
 		},
+	}
+}
+
+func discharges() []part {
+	return []part{
 		{
 			file: "coverage.json", title: "Error bars: do they hold the true value?",
 			about: "Many runs that differ in the seed only, against one very long run with the same " +
@@ -96,8 +103,9 @@ func parts() []part {
 		},
 		{
 			file: "benchmark.json", title: "The published helium benchmark",
-			about: "Case 1 to its end, with each bundled set of cross sections. The published value " +
-				"belongs to another set.",
+			about: "Cases 1 and 2 to their end, with the bundled sets of cross sections and both " +
+				"schemes; cases 1 to 4 with the numerics that the program chooses. The published " +
+				"values belong to another set.",
 			command: "go run ./bench/benchmark --case 1 --json >result.json; " +
 				"go run ./bench/benchmark --record testdata/validation/benchmark.json result.json",
 			takes: "a minute a run",

@@ -95,7 +95,8 @@ func (p *program) probeDraw(c *cli.Context) error {
 	return nil
 }
 
-const syntheticRemark = "synthetic: drawn from a simulated plasma with invented noise; no measurement"
+const syntheticRemark = "synthetic: drawn from a simulated plasma with invented noise, " +
+	"no measurement"
 
 func (r *reducedProbe) draw(run *finishedRun, library *gases, points, sweeps int,
 	noise probe.Noise,

@@ -34,7 +34,7 @@ func Levels() Rules {
 			"internal/store":      2,
 			"internal/probe":      2,
 			"crosssections":       1,
-			"surfaces":            1,
+			"internal/surfaces":   1,
 			"internal/surrogate":  1,
 			"internal/table":      1,
 			"internal/config":     1,
@@ -53,7 +53,7 @@ func Levels() Rules {
 			"github.com/parquet-go/parquet-go": {"internal/store"},
 			"net/http":                         {"internal/web"},
 		},
-		Pure:   []string{"pic", "mcc", "crosssections", "diagnostics", "surfaces"},
+		Pure:   []string{"pic", "mcc", "crosssections", "diagnostics"},
 		Impure: []string{"os", "log", "time", "flag"},
 		Exempt: []string{"crosssections/internal/gen"},
 	}

@@ -8,8 +8,8 @@ import (
 	"ionfall/internal/config"
 	"ionfall/internal/inputerr"
 	"ionfall/internal/phys"
+	"ionfall/internal/surfaces"
 	"ionfall/pic"
-	"ionfall/surfaces"
 )
 
 const (

@@ -69,19 +69,23 @@ func TestValidationReactorVaughan(t *testing.T) {
 		want [6]float64
 	}{
 		{
-			"SiO2 (model)", Emission{MaxYield: 2.4, MaxEnergyEV: 400, ThresholdEV: 12.5},
+			"SiO2 (model)",
+			Emission{MaxYield: 2.4, MaxEnergyEV: 400, ThresholdEV: 12.5},
 			[6]float64{0.46, 1.08, 1.61, 2.13, 2.38, 2.06},
 		},
 		{
-			"clean aluminium", Emission{MaxYield: 1, MaxEnergyEV: 300, ThresholdEV: 12.5},
+			"clean aluminium",
+			Emission{MaxYield: 1, MaxEnergyEV: 300, ThresholdEV: 12.5},
 			[6]float64{0.22, 0.52, 0.76, 0.96, 0.96, 0.74},
 		},
 		{
-			"stainless steel", Emission{MaxYield: 2, MaxEnergyEV: 300, ThresholdEV: 12.5},
+			"stainless steel",
+			Emission{MaxYield: 2, MaxEnergyEV: 300, ThresholdEV: 12.5},
 			[6]float64{0.45, 1.04, 1.52, 1.91, 1.92, 1.48},
 		},
 		{
-			"silicon", Emission{MaxYield: 1.1, MaxEnergyEV: 250, ThresholdEV: 12.5},
+			"silicon",
+			Emission{MaxYield: 1.1, MaxEnergyEV: 250, ThresholdEV: 12.5},
 			[6]float64{0.27, 0.63, 0.90, 1.08, 1.01, 0.75},
 		},
 	} {
