@@ -15,9 +15,10 @@ import (
 
 func (p *program) scanRunCommand() *cli.Command {
 	return &cli.Command{
-		Name:      "run",
-		Usage:     "run the points of a plan, or those that are left of it",
-		ArgsUsage: "PLAN [--out DIR] [--cores N] [--until 07:00] [--shard I/N] [--retry] [--quiet]",
+		Name:  "run",
+		Usage: "run the points of a plan, or those that are left of it",
+		ArgsUsage: "PLAN [--out DIR] [--cores N] [--until 07:00] [--shard I/N] [--no-wait] [--retry] " +
+			"[--quiet]",
 		Description: `Runs one point a core. After any end, also by kill -9 or a power cut, the same
 command continues: finished points stay, others go on from their checkpoints. Several of these
 commands may work in one folder, on one machine or on many that share it. A point that cannot be
@@ -37,6 +38,10 @@ With --until, points are run coarse first, so that at that time there is a compl
 				Name: "retry", Usage: "try points again that could not be computed",
 				DisableDefaultText: true,
 			},
+			&cli.BoolFlag{
+				Name: "no-wait", Usage: "end when others are at all points that are left",
+				DisableDefaultText: true,
+			},
 			quietFlag(),
 		},
 		Action: p.scanRun,
@@ -50,7 +55,7 @@ func (p *program) scanRun(c *cli.Context) error {
 		Version: versionText(),
 	}
 	o.Shard, o.Shards = v.part("shard")
-	if o.Shards > 0 {
+	if o.Shards > 0 || c.Bool("no-wait") {
 		o.Wait = false
 	}
 	plan, dir, err := v.scanOf("ionfall scan run pressure.yaml")

@@ -58,6 +58,9 @@ func Find(p *Plan, dir string) (*Folder, error) {
 	return f, f.identify()
 }
 
+// Unopened returns the folder of a plan without looking at it or making it.
+func Unopened(p *Plan, dir string) *Folder { return &Folder{Dir: filepath.Clean(dir), Plan: p} }
+
 // identify compares the points with those of the folder, which a new one takes over.
 func (f *Folder) identify() error {
 	path := filepath.Join(f.Dir, stateFile)
