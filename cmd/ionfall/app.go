@@ -16,6 +16,7 @@ func (p *program) commands() []*cli.Command {
 		p.runCommand(),
 		p.checkCommand(),
 		p.resumeCommand(),
+		p.scanCommand(),
 		p.reportCommand(),
 		p.plotCommand(),
 		p.gasCommand(),

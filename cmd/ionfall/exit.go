@@ -10,6 +10,7 @@ import (
 
 	"ionfall/internal/inputerr"
 	"ionfall/internal/run"
+	"ionfall/internal/scan"
 	"ionfall/internal/store"
 )
 
@@ -38,6 +39,7 @@ func usagef(format string, args ...any) error {
 func (p *program) status(err error) int {
 	var usage *usageError
 	var input *inputerr.Error
+	var other *scan.OtherPlanError
 	switch {
 	case err == nil:
 		return exitDone
@@ -45,7 +47,8 @@ func (p *program) status(err error) int {
 		return p.signal
 	case errors.Is(err, errVerdict):
 		return exitVerdict
-	case errors.As(err, &usage), errors.As(err, &input), errors.Is(err, store.ErrExists):
+	case errors.As(err, &usage), errors.As(err, &input), errors.Is(err, store.ErrExists),
+		errors.As(err, &other):
 		return exitUsage
 	}
 	return exitFailed

@@ -11,7 +11,7 @@ import (
 func TestHelp(t *testing.T) {
 	app := newProgram(nil, nil).app()
 	list := append([]string{"ionfall"}, names(app.Commands)...)
-	for _, group := range []string{"gas", "probe"} {
+	for _, group := range []string{"gas", "probe", "scan"} {
 		for _, name := range names(find(app.Commands, group).Subcommands) {
 			list = append(list, group+" "+name)
 		}

@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"fmt"
+	"io"
 	"log/slog"
 	"os"
 	"path/filepath"
@@ -74,7 +75,7 @@ func (p *program) printer(quiet bool) progress.Printer {
 }
 
 // logger writes what needs saying between the reports.
-func (p *program) logger(out progress.Printer) *slog.Logger {
+func (p *program) logger(out io.Writer) *slog.Logger {
 	o := &slog.HandlerOptions{Level: slog.LevelWarn}
 	if p.asJSON {
 		return slog.New(slog.NewJSONHandler(out, o))

@@ -92,7 +92,7 @@ func (p *Plan) gasHashes() string {
 
 // clock moves the time used by this process into the control.
 func (m *machine) clock() {
-	now, cpu := time.Now(), cpuSeconds()
+	now, cpu := time.Now(), m.cpuSeconds()
 	m.control.Wall += now.Sub(m.started).Seconds()
 	m.control.CPU += cpu - m.cpuAtOpen
 	m.started, m.cpuAtOpen = now, cpu
@@ -132,7 +132,7 @@ func restore(folder *store.Run, o Options) (*machine, error) {
 		return nil, bad(fmt.Errorf("it was made with other cross sections:\n%snow they are\n%s",
 			gases, plan.gasHashes()))
 	}
-	m := &machine{plan: plan, options: o, folder: folder, started: time.Now(), cpuAtOpen: cpuSeconds()}
+	m := newMachine(plan, folder, o)
 	if err := strictJSON(control, &m.control); err != nil {
 		return nil, bad(err)
 	}

@@ -256,7 +256,7 @@ func (m *machine) checkBudget() error {
 	if m.options.Budget != nil {
 		b = *m.options.Budget
 	}
-	cpu := c.CPU + cpuSeconds() - m.cpuAtOpen
+	cpu := c.CPU + m.cpuSeconds() - m.cpuAtOpen
 	if c.Stage == StageDone ||
 		!(b.Periods > 0 && c.Periods >= b.Periods || b.CPU > 0 && cpu >= b.CPU) {
 		return nil

@@ -28,6 +28,10 @@ type Options struct {
 	Version  string
 	// CheckpointEvery is the time between checkpoints; 0 for a few minutes.
 	CheckpointEvery time.Duration
+	// OwnThread says that the caller has locked its goroutine to a thread and asks for one core:
+	// processor time is then that of the thread, where the system tells it, so that several
+	// runs in one process do not pay for each other.
+	OwnThread bool
 }
 
 func (o Options) cores() int {
@@ -65,7 +69,7 @@ func Run(ctx context.Context, p *Plan, o Options) (*store.Summary, string, error
 	if err != nil {
 		return nil, "", err
 	}
-	m := &machine{plan: p, options: o, folder: folder, started: time.Now(), cpuAtOpen: cpuSeconds()}
+	m := newMachine(p, folder, o)
 	if err := m.open(); err != nil {
 		return nil, folder.Dir(), errors.Join(err, folder.Close())
 	}

@@ -48,26 +48,20 @@ func (g orderedGroup) Fields() []parquet.Field { return g.fields }
 // WriteTable writes a table as <name>.parquet, with its labels and the given entries (provenance)
 // in the metadata of the file.
 func (r *Run) WriteTable(t *table.Table, meta map[string]string) error {
-	if err := t.Validate(); err != nil {
-		return err
-	}
-	own, err := metadata(t)
+	content, err := tableContent(t, meta)
 	if err != nil {
 		return err
 	}
-	for key, value := range meta {
-		if _, taken := own[key]; taken {
-			return fmt.Errorf("table %q: the metadata key %q is reserved", t.Name, key)
-		}
-		own[key] = value
+	return r.write(t.Name+tableSuffix, content)
+}
+
+// writeWhole writes a table with its seal.
+func writeWhole(w io.Writer, t *table.Table, meta map[string]string) error {
+	var whole bytes.Buffer // its end, which the seal precedes, is known only when it is whole
+	if err := encodeTable(&whole, t, meta); err != nil {
+		return err
 	}
-	return r.write(t.Name+tableSuffix, func(w io.Writer) error {
-		var whole bytes.Buffer // its end, which the seal precedes, is known only when it is whole
-		if err := encodeTable(&whole, t, own); err != nil {
-			return err
-		}
-		return writeSealed(w, whole.Bytes())
-	})
+	return writeSealed(w, whole.Bytes())
 }
 
 func metadata(t *table.Table) (map[string]string, error) {

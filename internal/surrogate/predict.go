@@ -71,3 +71,37 @@ func (m *Model) Residuals() []float64 {
 	}
 	return z
 }
+
+// Joint predicts the quantity at several places at once: the means, and the covariances of what is
+// not known of them, row by row.
+func (m *Model) Joint(places [][]float64) (mean []float64, covariance *mat.SymDense) {
+	n, count := len(m.x), len(places)
+	k := mat.NewDense(n, count, nil)
+	scaled := make([][]float64, count)
+	mean = make([]float64, count)
+	unknown := make([]float64, count)
+	for j, x := range places {
+		scaled[j] = m.scaled(x)
+		column := mat.NewVecDense(n, nil)
+		for i := range n {
+			v := m.params.kernel(scaled[j], m.x[i])
+			column.SetVec(i, v)
+			k.Set(i, j, v)
+		}
+		mean[j] = m.shift + m.scale*(m.constant+mat.Dot(column, m.weights))
+		unknown[j] = 1 - mat.Dot(column, m.ones)
+	}
+	var solved mat.Dense
+	_ = m.chol.SolveTo(&solved, k) // as in condition
+	var known mat.Dense
+	known.Mul(k.T(), &solved)
+	covariance = mat.NewSymDense(count, nil)
+	for i := range count {
+		for j := range i + 1 {
+			c := m.params.kernel(scaled[i], scaled[j]) - known.At(i, j) +
+				unknown[i]*unknown[j]*m.constantVar
+			covariance.SetSym(i, j, m.scale*m.scale*c)
+		}
+	}
+	return mean, covariance
+}

@@ -224,3 +224,37 @@ func Example() {
 	fmt.Printf("%.0f\n", m.At([]float64{4.5}).Mean)
 	// Output: 20
 }
+
+// Goal: joint predictions agree with single ones, and their covariances tell what a further sample
+// would teach. Method: the variance at one place given an exact sample at another, against a model
+// with that sample and the same parameters.
+func TestJointPredictions(t *testing.T) {
+	r := rand.New(rand.NewPCG(13, 14))
+	f := wave(r)
+	samples := sampled(r, f, 20, 0.1)
+	m := fit(t, samples)
+	places := [][]float64{{3, 40}, {5, 45}, {18, 90}}
+	mean, cov := m.Joint(places)
+	for i, x := range places {
+		p := m.At(x)
+		if math.Abs(mean[i]-p.Mean) > 1e-9 || math.Abs(math.Sqrt(cov.At(i, i))-p.StdErr) > 1e-9 {
+			t.Errorf("place %d: got %g +- %g, want %+v", i, mean[i], math.Sqrt(cov.At(i, i)), p)
+		}
+	}
+	more := &Model{low: m.low, span: m.span, scale: m.scale, shift: m.shift, params: m.params}
+	var noise []float64
+	for i, s := range append(samples, Sample{X: places[1], Value: f(places[1])}) {
+		more.x = append(more.x, m.scaled(s.X))
+		more.values = append(more.values, (s.Value-m.shift)/m.scale)
+		noise = append(noise, square(samples[min(i, 19)].StdErr/m.scale))
+	}
+	noise[20] = 0
+	if _, ok := more.condition(m.params, noise); !ok {
+		t.Fatal("singular")
+	}
+	want := more.At(places[0]).StdErr
+	got := math.Sqrt(cov.At(0, 0) - square(cov.At(0, 1))/cov.At(1, 1))
+	if math.Abs(got-want) > 1e-6 {
+		t.Errorf("with one more sample the error would be %g, want %g", got, want)
+	}
+}

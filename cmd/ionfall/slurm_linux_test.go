@@ -1,0 +1,359 @@
+package main
+
+import (
+	"bytes"
+	"errors"
+	"fmt"
+	"net"
+	"os"
+	"os/exec"
+	"path/filepath"
+	"strconv"
+	"strings"
+	"syscall"
+	"testing"
+	"time"
+)
+
+// cluster is a Slurm of virtual nodes on the loopback of this machine.
+type cluster struct {
+	dir   string
+	nodes map[string]*exec.Cmd
+	all   []*exec.Cmd
+}
+
+// newCluster starts one, or skips the test where Slurm is not installed. The daemons are children of
+// the test and stay in its foreground, so that exactly they can be ended.
+func newCluster(t *testing.T, nodes int) *cluster {
+	t.Helper()
+	if testing.Short() {
+		t.Skip("a cluster takes its time")
+	}
+	for _, program := range []string{"slurmctld", "slurmd", "sbatch", "scontrol"} {
+		if _, err := exec.LookPath(program); err != nil {
+			t.Skipf("Slurm is not installed here (%v): the gate installs it", err)
+		}
+	}
+	if os.Getuid() != 0 {
+		t.Skip("starting Slurm needs root")
+	}
+	dir, err := os.MkdirTemp("/tmp", "slurm") // short: paths of sockets are limited
+	if err != nil {
+		t.Fatal(err)
+	}
+	c := &cluster{dir: dir, nodes: map[string]*exec.Cmd{}}
+	t.Cleanup(func() { c.stop(t) })
+	host, err := os.Hostname()
+	if err != nil {
+		t.Fatal(err)
+	}
+	conf := fmt.Sprintf(`ClusterName=test
+SlurmctldHost=%[1]s(127.0.0.1)
+SlurmctldPort=%[3]d
+SlurmUser=root
+AuthType=auth/none
+CredType=cred/none
+StateSaveLocation=%[2]s/state
+SlurmdSpoolDir=%[2]s/spool-%%n
+SlurmctldPidFile=%[2]s/ctld.pid
+SlurmdPidFile=%[2]s/%%n.pid
+ProctrackType=proctrack/linuxproc
+TaskPlugin=task/none
+JobAcctGatherType=jobacct_gather/none
+AccountingStorageType=accounting_storage/none
+MpiDefault=none
+SwitchType=switch/none
+ReturnToService=2
+SelectType=select/cons_tres
+SelectTypeParameters=CR_Core
+SchedulerParameters=batch_sched_delay=0,sched_interval=1
+KillWait=5
+SlurmdTimeout=10
+MailProg=/bin/true
+SlurmdParameters=config_overrides
+`, host, dir, freePort(t))
+	var list []string
+	for k := range nodes {
+		name := fmt.Sprintf("n%d", k+1)
+		list = append(list, name)
+		conf += fmt.Sprintf("NodeName=%s NodeHostname=%s NodeAddr=127.0.0.1 Port=%d CPUs=1 "+
+			"RealMemory=1000 State=UNKNOWN\n", name, host, freePort(t))
+	}
+	conf += "PartitionName=test Nodes=" + strings.Join(list, ",") + " Default=YES MaxTime=INFINITE\n"
+	for _, name := range append(list, "state") {
+		if name != "state" {
+			name = "spool-" + name
+		}
+		if err := os.Mkdir(filepath.Join(dir, name), 0o755); err != nil {
+			t.Fatal(err)
+		}
+	}
+	path := filepath.Join(dir, "slurm.conf")
+	if err := os.WriteFile(path, []byte(conf), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	t.Setenv("SLURM_CONF", path)
+	c.start(t, "slurmctld", "-D", "-c", "-f", path)
+	for _, name := range list {
+		c.nodes[name] = c.start(t, "slurmd", "-D", "-c", "-N", name, "-f", path)
+	}
+	c.until(t, "the nodes are idle", time.Minute, func() bool {
+		out, err := exec.Command("sinfo", "-h", "-N", "-t", "idle", "-o", "%N").Output()
+		return err == nil && len(strings.Fields(string(out))) == nodes
+	})
+	return c
+}
+
+func freePort(t *testing.T) int {
+	t.Helper()
+	l, err := net.Listen("tcp", "127.0.0.1:0")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer func() { _ = l.Close() }()
+	return l.Addr().(*net.TCPAddr).Port
+}
+
+func (c *cluster) start(t *testing.T, name string, args ...string) *exec.Cmd {
+	t.Helper()
+	log, err := os.Create(filepath.Join(c.dir, fmt.Sprintf("%s-%d.log", name, len(c.all))))
+	if err != nil {
+		t.Fatal(err)
+	}
+	cmd := exec.Command(name, args...)
+	cmd.Stdout, cmd.Stderr = log, log
+	if err := cmd.Start(); err != nil {
+		t.Fatal(err)
+	}
+	c.all = append(c.all, cmd)
+	return cmd
+}
+
+// stop ends the jobs, then the daemons.
+func (c *cluster) stop(t *testing.T) {
+	if len(c.all) > 0 {
+		_ = exec.Command("scancel", "--user=root").Run() // there may be none
+		time.Sleep(500 * time.Millisecond)
+	}
+	for name := range c.nodes {
+		c.killProcesses(t, name)
+	}
+	for i := len(c.all) - 1; i >= 0; i-- {
+		_ = c.all[i].Process.Kill() // it may be dead already
+		_ = c.all[i].Wait()
+	}
+	if t.Failed() {
+		for i := range c.all {
+			logs, err := filepath.Glob(filepath.Join(c.dir, fmt.Sprintf("*-%d.log", i)))
+			if err == nil && len(logs) == 1 {
+				text, _ := os.ReadFile(logs[0])
+				t.Logf("%s\n%s", logs[0], text[max(0, len(text)-3000):])
+			}
+		}
+	}
+	if err := os.RemoveAll(c.dir); err != nil {
+		t.Error(err)
+	}
+}
+
+// killNode ends a node and all that runs on it, as a power cut would.
+func (c *cluster) killNode(t *testing.T, name string) {
+	t.Helper()
+	_ = c.nodes[name].Process.Kill()
+	_ = c.nodes[name].Wait()
+	c.killProcesses(t, name)
+}
+
+// killProcesses kills what belongs to a node of this cluster: known by its environment, and the
+// step daemons by their parent folder.
+func (c *cluster) killProcesses(t *testing.T, node string) {
+	t.Helper()
+	entries, err := os.ReadDir("/proc")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, e := range entries {
+		pid, err := strconv.Atoi(e.Name())
+		if err != nil || pid == os.Getpid() {
+			continue
+		}
+		environment, err := os.ReadFile(filepath.Join("/proc", e.Name(), "environ"))
+		if err != nil {
+			continue // gone, or not ours
+		}
+		if bytes.Contains(environment, []byte("SLURM_CONF="+c.dir+"/")) &&
+			bytes.Contains(environment, []byte("SLURMD_NODENAME="+node+"\x00")) {
+			_ = syscall.Kill(pid, syscall.SIGKILL) // it may be gone since
+		}
+	}
+}
+
+func (c *cluster) until(t *testing.T, what string, limit time.Duration, ok func() bool) {
+	t.Helper()
+	for begin := time.Now(); !ok(); time.Sleep(200 * time.Millisecond) {
+		if time.Since(begin) > limit {
+			out, _ := exec.Command("squeue").CombinedOutput()
+			t.Fatalf("not within %v: %s; the queue is\n%s", limit, what, out)
+		}
+	}
+}
+
+// ionfall runs the program and returns what it prints.
+func ionfall(t *testing.T, dir string, args ...string) string {
+	t.Helper()
+	c := exec.Command(os.Getenv(binaryVariable), args...)
+	c.Dir = dir
+	var stderr bytes.Buffer
+	c.Stderr = &stderr
+	out, err := c.Output()
+	if err != nil {
+		var exit *exec.ExitError
+		if !errors.As(err, &exit) {
+			t.Fatal(err)
+		}
+		t.Fatalf("ionfall %s: %v\n%s%s", strings.Join(args, " "), err, out, stderr.Bytes())
+	}
+	return string(out)
+}
+
+// count is the number of points in a state.
+func count(t *testing.T, dir, plan, state string) int {
+	t.Helper()
+	for line := range strings.Lines(ionfall(t, dir, "scan", "status", plan)) {
+		words := strings.Fields(line)
+		if len(words) > 1 && words[0] == state {
+			n, err := strconv.Atoi(words[1])
+			if err != nil {
+				t.Fatal(err)
+			}
+			return n
+		}
+	}
+	t.Fatalf("no line for %s", state)
+	return 0
+}
+
+// scanInputs writes a base of small cost, and a plan.
+func scanInputs(t *testing.T, plan string) string {
+	t.Helper()
+	dir := t.TempDir()
+	base := `gap: 20 mm
+gas: {pressure: 60 Pa, mixture: {He: 1}}
+drive: {tones: [{frequency: 13.56 MHz, amplitude: 200 V}]}
+initial: {density: 8e14 /m3, electron_temperature: 5 eV}
+numerics: {cells: 32, steps_per_period: 480, particles_per_cell: 40, ion_substeps: 4, periods: 24}
+`
+	for name, text := range map[string]string{"base.yaml": base, "p.yaml": plan} {
+		if err := os.WriteFile(filepath.Join(dir, name), []byte(text), 0o666); err != nil {
+			t.Fatal(err)
+		}
+	}
+	return dir
+}
+
+// withoutCost is a table without the columns that a second run does not repeat.
+func withoutCost(text string) string {
+	lines := strings.Split(strings.TrimSpace(text), "\n")
+	drop := map[int]bool{}
+	for i, name := range strings.Split(lines[0], ",") {
+		drop[i] = name == "cpu_s" || name == "wall_s"
+	}
+	for k, line := range lines {
+		var kept []string
+		for i, field := range strings.Split(line, ",") {
+			if !drop[i] {
+				kept = append(kept, field)
+			}
+		}
+		lines[k] = strings.Join(kept, ",")
+	}
+	return strings.Join(lines, "\n")
+}
+
+// Goal: a scan on a cluster survives the death of a node and a cancelled array, and its table equals
+// the local one. Method: an array over 12 points on two virtual nodes; a node is killed, then
+// the array cancelled, then all is submitted again to the node that is left.
+func TestSlurmKilledNode(t *testing.T) {
+	c := newCluster(t, 2)
+	dir := scanInputs(t, `base: base.yaml
+vary:
+  gas.pressure: [50 Pa, 60 Pa]
+  drive.tones.0.amplitude: {from: 150 V, to: 250 V, points: 6}
+  numerics.periods: [80]
+`)
+	out := ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "10", "--partition", "test")
+	if !strings.HasPrefix(out, "job ") {
+		t.Fatalf("got %q", out)
+	}
+	done := func(n int) func() bool {
+		return func() bool { return count(t, dir, "p.yaml", "done") >= n }
+	}
+	c.until(t, "two points are done", 2*time.Minute, done(2))
+	c.killNode(t, "n2")
+	now := count(t, dir, "p.yaml", "done")
+	c.until(t, "the other node goes on", 2*time.Minute, done(min(12, now+2)))
+	if err := exec.Command("scancel", "--user=root").Run(); err != nil {
+		t.Fatal(err)
+	}
+	c.until(t, "no task is left", time.Minute, func() bool {
+		out, err := exec.Command("squeue", "-h", "-t", "R,CG", "-w", "n1").Output()
+		return err == nil && len(bytes.TrimSpace(out)) == 0
+	})
+	if left := 12 - count(t, dir, "p.yaml", "done"); left > 0 {
+		ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "10", "--max-running", "3")
+		t.Logf("submitted again with %d points left", left)
+	} else {
+		t.Error("all points were done before the second submission: the test shows too little")
+	}
+	c.until(t, "all points are done", 3*time.Minute, done(12))
+	ionfall(t, dir, "scan", "collect", "p.yaml")
+	cluster := ionfall(t, dir, "scan", "table", "p.yaml", "--csv")
+	ionfall(t, dir, "scan", "run", "p.yaml", "--out", "local", "--quiet")
+	local := ionfall(t, dir, "scan", "table", "local", "--csv")
+	if withoutCost(cluster) != withoutCost(local) {
+		t.Errorf("the table of the cluster is\n%s\nthe local one\n%s", cluster, local)
+	}
+}
+
+// Goal: before its time ends a task writes a checkpoint and goes back into the queue. Method: a
+// point that takes far longer than the limit of a minute, with a warning 50 s before.
+func TestSlurmTimeLimit(t *testing.T) {
+	c := newCluster(t, 1)
+	dir := scanInputs(t, "base: base.yaml\nvary: {numerics.periods: [900000]}\n")
+	ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "1", "--warning", "50")
+	c.until(t, "the point is interrupted", 2*time.Minute, func() bool {
+		return count(t, dir, "p.yaml", "interrupted") == 1
+	})
+	c.until(t, "the task is in the queue again", time.Minute, func() bool {
+		out, err := exec.Command("squeue", "-h", "-t", "PD").Output()
+		return err == nil && len(bytes.TrimSpace(out)) > 0
+	})
+	checkpoint := filepath.Join(dir, "scans", "p", "points", "point=0001.running", "checkpoint.bin")
+	if _, err := os.Stat(checkpoint); err != nil {
+		t.Error(err)
+	}
+}
+
+// Goal: the script is what was asked for, and a wrong request is told. Method: a dry run.
+func TestSubmitDryRun(t *testing.T) {
+	dir := scanInputs(t, "base: base.yaml\nvary: {gap: {from: 1 cm, to: 3 cm, points: 5}}\n")
+	out := ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "4:00:00", "--partition", "long",
+		"--max-running", "50", "--cpus", "2", "--option", "account=films", "--dry-run")
+	for _, want := range []string{
+		"#!/bin/bash\n", "#SBATCH --array=1-3%50\n", "#SBATCH --cpus-per-task=2\n",
+		"#SBATCH --time=4:00:00\n", "#SBATCH --signal=B:USR1@180\n", "#SBATCH --partition=long\n",
+		"#SBATCH --account=films\n", "#SBATCH --requeue\n", "/scans/p' --cores",
+	} {
+		if !strings.Contains(out, want) {
+			t.Errorf("%q is missing from\n%s", want, out)
+		}
+	}
+	if _, err := os.Stat(filepath.Join(dir, "scans")); err == nil {
+		t.Error("a dry run has made a folder")
+	}
+	got := call(t, dir, "scan", "submit", "p.yaml", "--time", "soon", "--partition", "a b")
+	if got.status != 2 || !strings.Contains(got.errOut, `--time: got "soon", want a limit`) ||
+		!strings.Contains(got.errOut, `--partition: got "a b"`) {
+		t.Errorf("got status %d and %s", got.status, got.errOut)
+	}
+}
