@@ -208,3 +208,33 @@ func TestFormula(t *testing.T) {
 		}
 	}
 }
+
+// Goal: neutrals that an exchange file leaves out are added, and ions weigh what their formula
+// says. Method: a file with an attachment and a dissociative ionization, products and masses by
+// hand.
+func TestImportBalances(t *testing.T) {
+	const text = "REFERENCE: nobody\nELASTIC\nCO2\n 1.24e-5\n-----\n0 5e-20\n100 2e-20\n-----\n" +
+		"ATTACHMENT\nCO2 -> O-\n-----\n4 0\n8 1e-22\n12 0\n-----\n" +
+		"IONIZATION\nCO2 -> C+\n 25\n-----\n25 0\n100 1e-21\n-----\n"
+	x, err := ReadExchange("x.txt", strings.NewReader(text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	made, err := x.NewGas(ImportSettings{
+		File: "x.txt", Name: "CO2", Species: "CO2", Date: "2001-02-03",
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for i, want := range []string{"", "O- CO", "e e C+ O2"} {
+		if got := strings.Join(made.Gas.Electron[i].Products, " "); got != want {
+			t.Errorf("products %q, want %q", got, want)
+		}
+	}
+	if ion, ok := made.Gas.Ion("O-"); !ok || math.Abs(ion.Mass/phys.AtomicMass-15.99955) > 1e-4 {
+		t.Errorf("O-: %+v", ion)
+	}
+	if len(made.Warnings) != 2 {
+		t.Errorf("warnings %q", made.Warnings)
+	}
+}

@@ -161,6 +161,34 @@ func imbalance(reactants, products []string) string {
 	return strings.Join(parts, ", ")
 }
 
+// restOf is a particle of the atoms that are missing among the products, "" if there are others
+// too many.
+func restOf(reactants, products []string) string {
+	left := map[string]int{}
+	for _, name := range reactants {
+		for element, n := range composition(name) {
+			left[element] += n
+		}
+	}
+	for _, name := range products {
+		for element, n := range composition(name) {
+			left[element] -= n
+		}
+	}
+	rest := ""
+	for _, element := range slices.Sorted(maps.Keys(left)) {
+		switch n := left[element]; {
+		case n < 0:
+			return ""
+		case n == 1:
+			rest += element
+		case n > 1:
+			rest += element + strconv.Itoa(n)
+		}
+	}
+	return rest
+}
+
 func atomsText(n int, element string) string {
 	return strings.TrimPrefix(strconv.Itoa(n)+" "+element, "1 ")
 }

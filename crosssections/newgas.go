@@ -219,7 +219,29 @@ func (w *gasWriter) products(name string, b *Block) []string {
 	for _, ion := range ions {
 		w.ion(ion, b)
 	}
-	return list
+	return w.balanced(name, b, list)
+}
+
+// balanced adds the neutral that exchange files often leave out, or leaves the products of an
+// excitation out that cannot be right.
+func (w *gasWriter) balanced(name string, b *Block, list []string) []string {
+	reactants := []string{ElectronName, w.set.Species}
+	off := imbalance(reactants, list)
+	if off == "" {
+		return list
+	}
+	if rest := restOf(reactants, list); rest != "" {
+		w.warn("%s:%d: %s: %s was added to the products, so that the atoms balance", w.set.File,
+			b.Line, name, rest)
+		return append(list, rest)
+	}
+	if b.Kind.Excites() {
+		w.warn("%s:%d: products of %s are left out: %s", w.set.File, b.Line, name, off)
+		return nil
+	}
+	w.add(b.Line, 1, b.Keyword, "the products "+strings.Join(list, " + ")+": "+off,
+		"the atoms of "+w.set.Species)
+	return nil
 }
 
 // ion declares an ion that a block makes.
@@ -232,6 +254,9 @@ func (w *gasWriter) ion(name string, b *Block) {
 	if mass == 0 && strings.TrimRight(name, "+-") == w.set.Species {
 		mass = w.mass - float64(charge)*phys.ElectronMass
 	} else if mass == 0 {
+		mass, _ = formulaMass(name) // 0 if unknown
+	}
+	if mass == 0 {
 		w.add(b.Line, 1, "ions.mass_u", "the ion "+name+" without a mass",
 			"one given: only that of "+w.set.Species+"+ follows from the neutral's")
 	}

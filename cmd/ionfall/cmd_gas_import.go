@@ -9,7 +9,6 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
-	"slices"
 	"strconv"
 	"strings"
 	"time"
@@ -219,20 +218,14 @@ func importText(made *crosssections.NewGas, target, dir string) string {
 	for _, w := range made.Warnings {
 		b.WriteString("warning: " + w + "\n")
 	}
-	attaches := slices.ContainsFunc(g.Electron, func(q crosssections.Process) bool {
-		return q.Kind == crosssections.Attachment
-	})
 	switch {
-	case attaches:
-		b.WriteString("warning: attachment of electrons is not simulated: make a set without it " +
-			"in gas.yaml,\n  where it does not matter; the gas can be shown, but neither runs nor " +
-			"swarms take it as it is\n")
 	case len(g.Ions) == 0:
 		b.WriteString("No discharge can be run with this gas: it has no ionization. Swarms can be " +
 			"followed.\n")
 	case len(made.Missing) > 0:
 		fmt.Fprintf(&b, "No discharge can be run with this gas yet: the collisions of %s with it are "+
-			"not known\n(see --ions-from). Swarms of electrons can be followed.\n",
+			"not known\n(see --ions-from; or give its polarizability in gas.yaml, and they are estimated). "+
+			"Swarms of electrons can be followed.\n",
 			strings.Join(made.Missing, ", "))
 	default:
 		fmt.Fprintf(&b, "to run with it, in an input beside the folder %s:\n"+
