@@ -18,6 +18,7 @@ func (p *program) commands() []*cli.Command {
 		p.resumeCommand(),
 		p.reportCommand(),
 		p.plotCommand(),
+		p.viewCommand(),
 		p.gasCommand(),
 		p.probeCommand(),
 		p.schemaCommand(),
