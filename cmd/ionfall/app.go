@@ -19,6 +19,7 @@ func (p *program) commands() []*cli.Command {
 		p.scanCommand(),
 		p.reportCommand(),
 		p.plotCommand(),
+		p.viewCommand(),
 		p.gasCommand(),
 		p.probeCommand(),
 		p.schemaCommand(),

@@ -30,6 +30,7 @@ func Levels() Rules {
 			"internal/web":        4,
 			"pic":                 3,
 			"internal/report":     3,
+			"internal/invented":   3,
 			"mcc":                 2,
 			"internal/store":      2,
 			"internal/probe":      2,

@@ -25,6 +25,9 @@ type Kind struct {
 	build func(k Kind, runs []*Run, s Select) ([]Figure, error)
 }
 
+// Group is the part of the page that the figure belongs to.
+func (k Kind) Group() string { return k.group }
+
 // The groups that the page is divided into.
 const (
 	groupWall     = "What hits the electrodes"

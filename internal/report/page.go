@@ -9,10 +9,8 @@ import (
 	"errors"
 	"fmt"
 	"html/template"
-	"slices"
 	"strings"
 
-	"ionfall/internal/progress"
 	"ionfall/internal/store"
 )
 
@@ -41,38 +39,13 @@ type section struct {
 
 // sheet is what the template is filled with.
 type sheet struct {
+	*Sheet
 	CSS      template.CSS
 	JS       template.JS
 	Policy   string
-	Title    string
-	Runs     []runSheet
-	Answers  Answers
 	Sections []section
 	Absent   []string
-	Several  bool
-	Failed   []string
 	Cautions []string
-}
-
-// runSheet is what the page tells of one run.
-type runSheet struct {
-	*Run
-	Asked      []pair
-	Headline   []headline
-	Checks     []checkSheet
-	Judgement  string
-	Indicators []Indicator
-	Provenance []pair
-}
-
-type pair struct{ Name, Text string }
-
-// headline is one of the numbers that the page opens with.
-type headline struct{ Name, Text, Where string }
-
-type checkSheet struct {
-	store.Check
-	Words, Number, Limit string
 }
 
 // Page is the report of one run, or of several side by side.
@@ -84,23 +57,14 @@ func Page(runs []*Run) ([]byte, error) {
 	if err != nil {
 		return nil, fmt.Errorf("report: %w", err)
 	}
+	words, err := NewSheet(runs)
+	if err != nil {
+		return nil, err
+	}
+	css := styleSheet()
 	s := &sheet{
-		CSS: template.CSS(styleSheet()), JS: template.JS(pageJS), Policy: policy(styleSheet(), pageJS),
-		Title: runs[0].Title(), Answers: NewAnswers(runs), Absent: absent,
-		Several: len(runs) > 1, Cautions: Cautions(),
-	}
-	if s.Several {
-		s.Title = fmt.Sprintf("%d runs side by side", len(runs))
-	}
-	for _, r := range runs {
-		one, err := newRunSheet(r)
-		if err != nil {
-			return nil, fmt.Errorf("report of %s: %w", r.Name, err)
-		}
-		s.Runs = append(s.Runs, one)
-		if r.Verdict() == store.Fail {
-			s.Failed = append(s.Failed, r.Name)
-		}
+		Sheet: words, CSS: template.CSS(css), JS: template.JS(pageJS),
+		Policy: policy(css, pageJS), Absent: absent, Cautions: Cautions(),
 	}
 	if s.Sections, err = sections(figures); err != nil {
 		return nil, fmt.Errorf("report: %w", err)
@@ -156,19 +120,27 @@ func policy(css, js string) string {
 		hash(css) + "; script-src " + hash(js)
 }
 
-// styleSheet is the style sheet with the colours of the curves.
-func styleSheet() string {
+// styleSheet is that of the page.
+func styleSheet() string { return curveStyles() + pageCSS }
+
+// Styles are those of the page and its figures, for the viewer.
+func Styles() string { return styleSheet() }
+
+// curveStyles are the colours and dashes of the curves, for light and dark.
+func curveStyles() string {
 	light, dark := curveColors()
 	var b strings.Builder
 	b.WriteString(":root{")
 	for i, c := range light {
 		fmt.Fprintf(&b, "--c%d:%s;", i, c)
 	}
-	b.WriteString("}\n@media screen and (prefers-color-scheme:dark){:root{")
+	b.WriteString("}\n")
+	var night strings.Builder
 	for i, c := range dark {
-		fmt.Fprintf(&b, "--c%d:%s;", i, c)
+		fmt.Fprintf(&night, "--c%d:%s;", i, c)
 	}
-	b.WriteString("}}\n")
+	fmt.Fprintf(&b, "@media screen and (prefers-color-scheme:dark)"+
+		"{:root:not([data-theme=\"light\"]){%[1]s}}\n:root[data-theme=\"dark\"]{%[1]s}\n", &night)
 	for i := range light {
 		fmt.Fprintf(&b, ".c%d{stroke:var(--c%d)}.f%d{fill:var(--c%d)}\n", i, i, i, i)
 	}
@@ -177,7 +149,7 @@ func styleSheet() string {
 			fmt.Fprintf(&b, ".d%d{stroke-dasharray:%s}\n", i, d)
 		}
 	}
-	return b.String() + pageCSS
+	return b.String()
 }
 
 func sections(figures []Figure) ([]section, error) {
@@ -226,27 +198,6 @@ func pack(data []byte) (string, error) {
 	if err := w.Close(); err != nil {
 		return "", err
 	}
-	return base64.StdEncoding.EncodeToString(b.Bytes()), nil
-}
-
-func newRunSheet(r *Run) (runSheet, error) {
-	indicators, err := r.Indicators()
-	if err != nil {
-		return runSheet{}, err
-	}
-	s := runSheet{
-		Run: r, Asked: r.asked(), Headline: r.headlines(), Judgement: r.judgement(),
-		Indicators: indicators, Provenance: flatPairs("", r.Summary.Provenance),
-	}
-	for _, c := range r.Summary.Checks {
-		s.Checks = append(s.Checks, checkSheet{
-			Check: c, Words: strings.ReplaceAll(c.Name, "_", " "),
-			Number: typeset(progress.Digits(c.Value, 3)), Limit: typeset(progress.Digits(c.Bound, 3)),
-		})
-	}
-	worse := []string{store.Fail, store.Warn, store.OK}
-	slices.SortStableFunc(s.Checks, func(a, b checkSheet) int {
-		return slices.Index(worse, a.Verdict) - slices.Index(worse, b.Verdict)
-	})
-	return s, nil
+	// This alphabet needs no escapes in a page.
+	return base64.RawURLEncoding.EncodeToString(b.Bytes()), nil
 }

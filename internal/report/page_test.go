@@ -69,9 +69,7 @@ func checkData(t *testing.T, page []byte, f *Figure) {
 		t.Errorf("%s: no data in the page", f.ID)
 		return
 	}
-	// The template writes + as an entity.
-	encoded := strings.ReplaceAll(string(found[1]), "&#43;", "+")
-	packed, err := base64.StdEncoding.DecodeString(encoded)
+	packed, err := base64.RawURLEncoding.DecodeString(string(found[1]))
 	if err != nil {
 		t.Errorf("%s: %v", f.ID, err)
 		return

@@ -12,7 +12,7 @@ import (
 )
 
 // asked says what the run was asked to do. What is not here stands in the input below it.
-func (r *Run) asked() []pair {
+func (r *Run) asked() []Pair {
 	c := r.Case
 	if c == nil {
 		return nil
@@ -28,7 +28,7 @@ func (r *Run) asked() []pair {
 		}
 		tones = append(tones, text)
 	}
-	return []pair{
+	return []Pair{
 		{"gas", strings.Join(gases, ", ")},
 		{"pressure", fmt.Sprintf("%.5g Pa at %.4g K", c.Gas.Pressure, c.Gas.Temperature)},
 		{"gap", fmt.Sprintf("%.5g mm", millimetres*c.Gap)},
@@ -40,8 +40,8 @@ func (r *Run) asked() []pair {
 }
 
 // headlines are the answers that the page opens with.
-func (r *Run) headlines() []headline {
-	var list []headline
+func (r *Run) headlines() []Headline {
+	var list []Headline
 	for _, e := range r.Substrates() {
 		for _, h := range []line{
 			{"mean ion energy", "ion_mean_energy_eV." + e + ".all"},
@@ -52,7 +52,7 @@ func (r *Run) headlines() []headline {
 			if !ok {
 				continue
 			}
-			list = append(list, headline{h.label, estimate(v.Value, v.SE, v.Unit), e})
+			list = append(list, Headline{h.label, estimate(v.Value, v.SE, v.Unit), e})
 		}
 	}
 	return list
@@ -82,8 +82,8 @@ func (r *Run) judgement() string {
 }
 
 // flatPairs lists nested values under dotted names.
-func flatPairs(prefix string, m map[string]any) []pair {
-	var list []pair
+func flatPairs(prefix string, m map[string]any) []Pair {
+	var list []Pair
 	for _, key := range slices.Sorted(maps.Keys(m)) {
 		switch v := m[key].(type) {
 		case map[string]any:
@@ -93,11 +93,11 @@ func flatPairs(prefix string, m map[string]any) []pair {
 			for _, p := range v {
 				parts = append(parts, fmt.Sprint(p))
 			}
-			list = append(list, pair{prefix + key, strings.Join(parts, "; ")})
+			list = append(list, Pair{prefix + key, strings.Join(parts, "; ")})
 		case float64:
-			list = append(list, pair{prefix + key, plainNumber(v)})
+			list = append(list, Pair{prefix + key, plainNumber(v)})
 		default:
-			list = append(list, pair{prefix + key, fmt.Sprint(v)})
+			list = append(list, Pair{prefix + key, fmt.Sprint(v)})
 		}
 	}
 	return list

@@ -4,7 +4,7 @@
   const mostRows = 400;
 
   async function unpack(id) {
-    const text = document.getElementById(id).textContent;
+    const text = document.getElementById(id).textContent.replaceAll("-", "+").replaceAll("_", "/");
     const bytes = Uint8Array.from(atob(text), (c) => c.charCodeAt(0));
     const stream = new Blob([bytes]).stream().pipeThrough(new DecompressionStream("gzip"));
     return new Response(stream).text();
