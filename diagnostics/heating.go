@@ -38,3 +38,44 @@ func (r *Recorder) ElectronPowers() (powered, bulk, grounded stats.Estimate) {
 	}
 	return powered, bulk, grounded
 }
+
+// SheathVoltageRatio returns the largest voltage of the grounded sheath over that of the powered
+// one, from the ions alone: that of a widest sheath is e/eps0 times the integral of n x S(x)/S(0),
+// with x from the wall and S the area. The standard error is an upper bound, as that of
+// ElectronPowers.
+//
+// Ref: U. Czarnetzki, J. Schulze, E. Schuengel and Z. Donko, Plasma Sources Sci. Technol. 20, 024010
+// (2011), whose symmetry parameter this is, with the shape of the sheaths in the integral.
+func (r *Recorder) SheathVoltageRatio() stats.Estimate {
+	var sum, se [2]float64
+	for wall := range sum {
+		edge := 0.0
+		for _, s := range r.averages.circuit[circuitSheath+wall].Mean {
+			edge = math.Max(edge, s)
+		}
+		for i, rec := range r.species {
+			if rec.charge == 0 || i == 0 && rec.charge < 0 {
+				continue
+			}
+			v := r.averages.profiles[gridFixed+gridPerSpecies*i+gridDensity]
+			for j := range v.Mean {
+				at := float64(j) * r.config.CellSize()
+				part := r.config.Area(float64(j)) / r.config.WallArea(pic.Wall(wall))
+				if pic.Wall(wall) == pic.Grounded {
+					at = r.config.Gap - at
+				}
+				if at < edge {
+					sum[wall] += float64(rec.charge) * v.Mean[j] * at * part
+					se[wall] += math.Abs(float64(rec.charge)) * v.StdErr(j) * at * part
+				}
+			}
+		}
+	}
+	n, length := r.Batches()
+	ratio := sum[pic.Grounded] / sum[pic.Powered]
+	return stats.Estimate{
+		Mean:   ratio,
+		StdErr: ratio * math.Hypot(se[0]/sum[0], se[1]/sum[1]),
+		N:      n, Batch: length,
+	}
+}

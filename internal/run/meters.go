@@ -65,6 +65,7 @@ func (m *machine) meterResults(r map[string]any) {
 	r["current_phase_deg"] = phase
 	r["resistance_Ohmm2"], r["reactance_Ohmm2"] = resistance, reactance
 	r["electron_power_Wpm2"] = m.electronPowers()
+	r["sheath_voltage_ratio"] = value(m.rec.SheathVoltageRatio(), "")
 	m.totals(r, n)
 	if m.plan.Case.Drive.Targeted() {
 		_, is, exponent, _ := m.target(n)
@@ -82,6 +83,7 @@ func (m *machine) meterResults(r map[string]any) {
 func (m *machine) biases(r map[string]any, n int) store.Value {
 	c, d := m.sim.Config(), &m.plan.Case.Drive
 	gap := m.meter.SelfBias(n)
+	gap.StdErr = math.Hypot(gap.StdErr, m.control.Reactor.biasError())
 	layers := m.plan.layers()
 	block := d.BlockingCapacitor.PerArea(m.plan.area())
 	switch {

@@ -49,12 +49,13 @@ const (
 
 // reactorControl is the state of the steering.
 type reactorControl struct {
-	Built     float64 // sum of amplitudes that the simulation was built for [V]; 0 without a target
-	Amplitude float64 // in use [V]
-	Since     int     // periods since the last step
-	Plus      float64 // elementary charges that made the electrode more positive since then, ...
-	Minus     float64 // ... and more negative
-	Rise      float64 // last step of the bias [V]
+	Built     float64    // sum of amplitudes that the simulation was built for [V]; 0 without a target
+	Amplitude float64    // in use [V]
+	Since     int        // periods since the last step
+	Plus      float64    // elementary charges that made the electrode more positive since then, ...
+	Minus     float64    // ... and more negative
+	Rise      float64    // last step of the bias [V]
+	Seen      [2]float64 // Plus and Minus of all fine steps
 	Steps     int
 	Fine      int     // number of the fine step that comes next, or 0
 	LogSum    float64 // of ln(amplitude) over the fine steps
@@ -98,6 +99,11 @@ func (m *machine) steer(l *pic.Ledger) error {
 			return err
 		}
 		near = near && ok
+	}
+	if !fine {
+		r.Seen = [2]float64{}
+	} else {
+		r.Seen[0], r.Seen[1] = r.Seen[0]+r.Plus, r.Seen[1]+r.Minus
 	}
 	r.Since, r.Plus, r.Minus = 0, 0, 0
 	r.Steps++
@@ -159,6 +165,15 @@ func (m *machine) steerBias(fine bool) bool {
 	r.Rise = step
 	m.sim.ShiftBias(step)
 	return math.Abs(ratio) < 0.5+3*math.Sqrt(1/(r.Plus+2)+1/(r.Minus+2))
+}
+
+// biasError is the standard error that the steering leaves in the bias [V]: the chance of the counts
+// in its fine steps. The circuit takes it away, but slowly.
+func (r *reactorControl) biasError() float64 {
+	if r.Seen[0] == 0 || r.Seen[1] == 0 {
+		return 0
+	}
+	return steerEV * math.Sqrt(1/r.Seen[0]+1/r.Seen[1])
 }
 
 // guessBias sets the bias of a cold start: that of the two sheaths with the voltage ratio
