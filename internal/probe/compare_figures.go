@@ -21,7 +21,8 @@ func (c *Comparison) Figures() (map[string][]byte, error) {
 	}{
 		{
 			"comparison_current.svg", "measured and synthetic characteristic", "voltage [V]",
-			"current [A]", false, []Curve{
+			"current [A]", false,
+			[]Curve{
 				{"measured", volts, get(c.Characteristic, "measured_current_A"), true},
 				{"simulated plasma", volts, get(c.Characteristic, "synthetic_current_A"), false},
 				{
@@ -32,7 +33,8 @@ func (c *Comparison) Figures() (map[string][]byte, error) {
 		},
 		{
 			"comparison_eepf.svg", "electron energy probability function", "energy [eV]",
-			"EEPF [eV^-3/2]", true, []Curve{
+			"EEPF [eV^-3/2]", true,
+			[]Curve{
 				{"measured", energy, get(c.EEPF, "measured_eVm32"), true},
 				{"simulated", energy, get(c.EEPF, "simulated_eVm32"), false},
 			},
@@ -47,7 +49,7 @@ func (c *Comparison) Figures() (map[string][]byte, error) {
 	return out, nil
 }
 
-// ComparisonTable has a row a quantity of each comparison; names tells the probes apart in the first.
+// ComparisonTable has a row a quantity of each comparison; names tells the probes apart.
 func ComparisonTable(names []string, list []*Comparison, positions []float64) *table.Table {
 	var probe, key, unit []string
 	var position, measured, measuredSE, simulated, simulatedSE, sigma []float64

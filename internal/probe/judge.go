@@ -45,8 +45,9 @@ func (r *reduction) judge() {
 		x := sheath / path
 		radial := r.radialRatio(c)
 		r.caution("ions collide in the sheath of the probe (thickness over mean free path %.2g, want "+
-			"below 0.25): the ion density may be off by a factor of about %.2g", x,
-			CollisionTrend(x, radial))
+			"below 0.25): the ion current may be off by a factor of about %.2g, half of which, and "+
+			"not more than half the density, is in its error", x, CollisionTrend(x, radial))
+		r.widen(KeyIonDensity, math.Min(math.Abs(CollisionTrend(x, radial)-1)/2, 0.5))
 		r.result.Methods = append(r.result.Methods, Method{
 			"ion_collision_factor", "factor on the ion current by collisions, a trend only",
 			Quantity{CollisionTrend(x, radial), math.NaN(), "", ""},
@@ -67,6 +68,15 @@ func (r *reduction) judge() {
 		}
 	}
 	r.hysteresis()
+}
+
+// widen adds a relative error to a quantity.
+func (r *reduction) widen(key string, relative float64) {
+	for i := range r.result.Quantities {
+		if q := &r.result.Quantities[i]; q.Key == key {
+			q.SE = math.Hypot(q.SE, relative*q.Value)
+		}
+	}
 }
 
 // radialRatio is the radial current over that of orbital motion, for the density of the electrons.
