@@ -45,7 +45,7 @@ func (a *adjustment) text(post *probe.Posterior) string {
 	text += fmt.Sprintf("note: %d data, %d runs, best chi-square %.3g (larger by chance in %.2g of "+
 		"cases); the sample is worth %.0f draws\n", len(p.Data), len(p.Points), post.BestChi2,
 		post.Chance, post.Effective)
-	text += fmt.Sprintf("note: %.2g %% of model error is assumed; the errors are standard deviations, "+
+	text += fmt.Sprintf("note: a model error of %.2g %% is assumed; errors are standard deviations, "+
 		"before: of the prior\nresults: %s\n\n%s\n", 100*p.ModelError, a.out, caution)
 	return text
 }

@@ -38,7 +38,10 @@ func TestParseInput(t *testing.T) {
 		}
 		want.Path, _, _ = strings.Cut(text, "(")
 		for i, pair := range [][2]float64{
-			{got.Lo, want.Lo}, {got.Hi, want.Hi}, {got.Mean, want.Mean}, {got.Sigma, want.Sigma},
+			{got.Lo, want.Lo},
+			{got.Hi, want.Hi},
+			{got.Mean, want.Mean},
+			{got.Sigma, want.Sigma},
 			{got.Nominal, want.Nominal},
 		} {
 			if math.Abs(pair[0]-pair[1]) > 1e-9*math.Max(1, pair[1]) {
