@@ -36,8 +36,12 @@ func (r *reduction) judge() {
 			"freedom); errors are widened by it", r.result.ChiSquare)
 	}
 	if psi := Sink(r.setup); psi > maxSink {
+		density, energy := SinkDensity(psi)
 		r.caution("the probe takes electrons faster than they come (sink parameter %.2g, want below "+
-			"%.2g): slow electrons are missing and the density is too low", psi, maxSink)
+			"%.2g): slow electrons are missing; a Maxwellian plasma would seem to have %.2g of its "+
+			"density and %.3g of its mean energy, which is in the errors", psi, maxSink, density, energy)
+		r.widen(KeyElectronDensity, 1-density)
+		r.widen(KeyTemperature, energy-1)
 	}
 	debye := r.setup.Radius / c.rho
 	sheath := debye * math.Sqrt2 / 3 * math.Pow(2*ionReference, 0.75) // Child's law at chi 10
