@@ -24,7 +24,7 @@ func (p *program) probeCommand() *cli.Command {
 number has its standard error, and what the data cannot tell is not stated.`,
 		Subcommands: []*cli.Command{
 			p.probeReadCommand(), p.probeCompareCommand(), p.probeAnalyserCommand(),
-			p.probeDrawCommand(),
+			p.probeAdjustCommand(), p.probeDrawCommand(),
 		},
 	}
 	c.Action = func(*cli.Context) error {

@@ -95,7 +95,7 @@ func (p *program) probeDraw(c *cli.Context) error {
 	return nil
 }
 
-const syntheticRemark = "synthetic: drawn from a simulated plasma with invented noise, " +
+const syntheticRemark = "synthetic: drawn from a simulated plasma with invented noise; it is " +
 	"no measurement"
 
 func (r *reducedProbe) draw(run *finishedRun, library *gases, points, sweeps int,
@@ -105,7 +105,9 @@ func (r *reducedProbe) draw(run *finishedRun, library *gases, points, sweeps int
 	if key, got, want := place.Check(&r.Setup, run.input.Gap); key != "" {
 		return r.Errorf(key, got, want, "")
 	}
-	err := library.fillGas(&r.Setup, func(hint string) error { return r.Errorf("gas", "", "", hint) })
+	err := library.fillGas(&r.Setup, func(hint string) error {
+		return r.Errorf("gas", "", "", hint)
+	})
 	if err != nil {
 		return err
 	}

@@ -191,3 +191,12 @@ func (r *Row) how() string {
 	return fmt.Sprintf("%.3g times as large in the simulation",
 		r.Simulated.Value/r.Measured.Value)
 }
+
+// Simulated are the simulated quantities by their keys.
+func (c *Comparison) Simulated() map[string]Quantity {
+	out := map[string]Quantity{}
+	for i := range c.Rows {
+		out[c.Rows[i].Key] = c.Rows[i].Simulated
+	}
+	return out
+}

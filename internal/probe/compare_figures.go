@@ -49,8 +49,7 @@ func (c *Comparison) Figures() (map[string][]byte, error) {
 	return out, nil
 }
 
-// ComparisonTable has a row a quantity of each comparison; names tells the probes apart in the
-// first column.
+// ComparisonTable has a row a quantity of each comparison; names tells the probes apart.
 func ComparisonTable(names []string, list []*Comparison, positions []float64) *table.Table {
 	var probe, key, unit []string
 	var position, measured, measuredSE, simulated, simulatedSE, sigma []float64

@@ -36,8 +36,12 @@ func (r *reduction) judge() {
 			"freedom); errors are widened by it", r.result.ChiSquare)
 	}
 	if psi := Sink(r.setup); psi > maxSink {
+		density, energy := SinkDensity(psi)
 		r.caution("the probe takes electrons faster than they come (sink parameter %.2g, want below "+
-			"%.2g): slow electrons are missing and the density is too low", psi, maxSink)
+			"%.2g): slow electrons are missing; a Maxwellian plasma would seem to have %.2g of its "+
+			"density and %.3g of its mean energy, which is in the errors", psi, maxSink, density, energy)
+		r.widen(KeyElectronDensity, 1-density)
+		r.widen(KeyTemperature, energy-1)
 	}
 	debye := r.setup.Radius / c.rho
 	sheath := debye * math.Sqrt2 / 3 * math.Pow(2*ionReference, 0.75) // Child's law at chi 10
@@ -45,8 +49,9 @@ func (r *reduction) judge() {
 		x := sheath / path
 		radial := r.radialRatio(c)
 		r.caution("ions collide in the sheath of the probe (thickness over mean free path %.2g, want "+
-			"below 0.25): the ion density may be off by a factor of about %.2g", x,
-			CollisionTrend(x, radial))
+			"below 0.25): the ion current may be off by a factor of about %.2g, half of which, and "+
+			"not more than half the density, is in its error", x, CollisionTrend(x, radial))
+		r.widen(KeyIonDensity, math.Min(math.Abs(CollisionTrend(x, radial)-1)/2, 0.5))
 		r.result.Methods = append(r.result.Methods, Method{
 			"ion_collision_factor", "factor on the ion current by collisions, a trend only",
 			Quantity{CollisionTrend(x, radial), math.NaN(), "", ""},
@@ -67,6 +72,15 @@ func (r *reduction) judge() {
 		}
 	}
 	r.hysteresis()
+}
+
+// widen adds a relative error to a quantity.
+func (r *reduction) widen(key string, relative float64) {
+	for i := range r.result.Quantities {
+		if q := &r.result.Quantities[i]; q.Key == key {
+			q.SE = math.Hypot(q.SE, relative*q.Value)
+		}
+	}
 }
 
 // radialRatio is the radial current over that of orbital motion, for the density of the electrons.

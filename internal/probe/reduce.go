@@ -98,6 +98,7 @@ func (r *reduction) whole() (*Result, error) {
 		return nil, err
 	}
 	r.combine(smooth)
+	r.result.correlation = r.correlations()
 	r.theories()
 	r.judge()
 	r.tables(smooth)

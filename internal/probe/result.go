@@ -60,7 +60,8 @@ type Result struct {
 	// Characteristic and EEPF are the tables behind the figures.
 	Characteristic, EEPF *table.Table
 
-	fit *characteristic
+	fit         *characteristic
+	correlation [5][5]float64
 }
 
 // Get returns a quantity by its key; one that is not there is not known.
