@@ -97,6 +97,8 @@ func (m *Map) limits() (low, high float64) {
 		low, high = math.Min(low, z), math.Max(high, z)
 	}
 	switch {
+	case low > high && m.Value.Log:
+		return 0.1, 1
 	case low > high:
 		return 0, 1
 	case m.Value.Log:

@@ -37,8 +37,13 @@ func linearTicks(low, high float64, n int) (list []tick, power int) {
 	}
 	unit := math.Pow(10, float64(power))
 	places := max(0, int(math.Ceil(-math.Log10(step/unit)-1e-9)))
-	for k := math.Ceil(low/step - 1e-9); k*step <= high+1e-9*step; k++ {
+	first := math.Ceil(low/step - 1e-9)
+	for i := range mostTicks {
+		k := first + float64(i) // of large k, k+1 may be no other number
 		v := k * step
+		if !(v <= high+1e-9*step) {
+			break
+		}
 		text := strconv.FormatFloat(v/unit, 'f', places, 64)
 		if k == 0 {
 			text = "0"
@@ -62,8 +67,14 @@ func roundStep(x float64) float64 {
 	return 10 * unit
 }
 
-// logTicks are powers of ten, every one or every few.
+// mostTicks is more than any axis can show.
+const mostTicks = 100
+
+// logTicks are powers of ten, every one or every few; none where the axis has no logarithm.
 func logTicks(low, high float64, n int) []tick {
+	if !(low > 0 && high >= low) || math.IsInf(high, 0) {
+		return nil
+	}
 	first := int(math.Ceil(math.Log10(low) - 1e-9))
 	last := int(math.Floor(math.Log10(high) + 1e-9))
 	every := max(1, (last-first+n)/n)
