@@ -50,7 +50,7 @@ func badInputs() []badInput {
 		{"bad-scattering", true},
 		{"bad-scheme", true},
 		{"bad-sharing", true},
-		{"fast-neutrals-too-slow", true},
+		{"fast-neutrals-too-slow", false},
 		{"not-whole", true},
 		{"number-in-quotes", true},
 		{"unknown-key", true},
