@@ -167,8 +167,8 @@ func (m *machine) steerBias(fine bool) bool {
 	return math.Abs(ratio) < 0.5+3*math.Sqrt(1/(r.Plus+2)+1/(r.Minus+2))
 }
 
-// biasError is the standard error that the steering leaves in the bias [V]: the chance of the counts
-// in its fine steps. The circuit takes it away, but slowly.
+// biasError is the standard error that the steering leaves in the bias [V]: the chance of the
+// counts in its fine steps. The circuit takes it away, but slowly.
 func (r *reactorControl) biasError() float64 {
 	if r.Seen[0] == 0 || r.Seen[1] == 0 {
 		return 0
