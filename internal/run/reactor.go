@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 
+	"ionfall/internal/phys"
 	"ionfall/internal/stats"
 	"ionfall/pic"
 )
@@ -167,13 +168,23 @@ func (m *machine) steerBias(fine bool) bool {
 	return math.Abs(ratio) < 0.5+3*math.Sqrt(1/(r.Plus+2)+1/(r.Minus+2))
 }
 
-// biasError is the standard error that the steering leaves in the bias [V]: the chance of the
-// counts in its fine steps. The circuit takes it away, but slowly.
-func (r *reactorControl) biasError() float64 {
-	if r.Seen[0] == 0 || r.Seen[1] == 0 {
+// biasError is the standard error of the self-bias that its scatter over the average does not show
+// [V]: the chance of the counts in the fine steps, which the circuit takes away slowly, and the
+// wander of the bias by the chance of single charges, for each of which a capacitance C has the
+// memory tau = C Te/J of an ion current density J, and the variance e W Te/C.
+func (m *machine) biasError() float64 {
+	r, c := &m.control.Reactor, m.sim.Config()
+	capacitance := c.Network.Capacitance
+	n := float64(m.control.Averaged.Periods)
+	if r.Seen[0] == 0 || r.Seen[1] == 0 || capacitance == 0 || n == 0 {
 		return 0
 	}
-	return steerEV * math.Sqrt(1/r.Seen[0]+1/r.Seen[1])
+	steering := steerEV * math.Sqrt(1/r.Seen[0]+1/r.Seen[1])
+	charge := phys.ElementaryCharge * c.Weight
+	flux := stats.Mean(m.series(func(r *Row) float64 { return r.Flux[0] }, int(n))).Mean
+	memory := capacitance * steerEV / (phys.ElementaryCharge * flux * m.plan.period()) / n
+	wander := charge * steerEV / capacitance * 2 * memory * (1 - memory*(1-math.Exp(-1/memory)))
+	return math.Sqrt(steering*steering + wander)
 }
 
 // guessBias sets the bias of a cold start: that of the two sheaths with the voltage ratio

@@ -201,6 +201,9 @@ func TestTraceRunsAsItsTones(t *testing.T) {
 // floating wafers with their capacitance; the surface of a layer has the direct voltage that the
 // electrode below has not. Method: a short run of unequal shells, and what it was built of.
 func TestSurfacesReachTheRun(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes some seconds")
+	}
 	input := strings.Replace(reactorInput, "  blocking_capacitor: 20 nF\n", "", 1)
 	input = strings.Replace(input, "electrodes: {powered: {area: 300 cm2}}", `electrodes:
   powered:
@@ -248,6 +251,9 @@ func TestUnknownYields(t *testing.T) {
 // Method: pulses of 16 RF periods, on for half of them; the voltage by phase of the pulse, and the
 // electrons' temperature in the middle, which falls when the drive is off.
 func TestPulsedDrive(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes some seconds")
+	}
 	input := "gap: 20 mm\ngas: {pressure: 20 Pa, mixture: {Ar: 1}}\ndrive:\n" +
 		"  tones: [{frequency: 13.56 MHz, amplitude: 120 V}]\n  pulse: {rate: 850 kHz, duty: 50 %}\n" +
 		"initial: {density: 1e15 /m3}\nnumerics: {cells: 64, steps_per_period: 9600, " +
