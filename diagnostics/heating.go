@@ -44,8 +44,8 @@ func (r *Recorder) ElectronPowers() (powered, bulk, grounded stats.Estimate) {
 // with x from the wall and S the area. The standard error is an upper bound, as that of
 // ElectronPowers.
 //
-// Ref: U. Czarnetzki, J. Schulze, E. Schuengel and Z. Donko, Plasma Sources Sci. Technol. 20, 024010
-// (2011), whose symmetry parameter this is, with the shape of the sheaths in the integral.
+// Ref: U. Czarnetzki, J. Schulze, E. Schuengel and Z. Donko, Plasma Sources Sci. Technol. 20,
+// 024010 (2011), whose symmetry parameter this is, with the shape of the sheaths in the integral.
 func (r *Recorder) SheathVoltageRatio() stats.Estimate {
 	var sum, se [2]float64
 	for wall := range sum {

@@ -71,6 +71,10 @@ func (c *Config) checkCircuit() error {
 			return fmt.Errorf("pic: network %+v, want values of 0 or more", n)
 		}
 	}
+	if d := c.Drive; d.Gate != 0 && !(d.Ramp > 0 && d.Gate > 0 && d.Gate <= 1) {
+		return fmt.Errorf("pic: pulses on for the part %g with ramps of %g, want 0 to 1, above 0",
+			d.Gate, d.Ramp)
+	}
 	switch {
 	case c.Isolated && (c.Drive.Bias != 0 || len(c.Drive.Tones) > 0):
 		return fmt.Errorf("pic: an isolated electrode has no drive")

@@ -13,19 +13,33 @@ type Tone struct {
 //
 //	V(t) = Bias + sum of Amplitude cos(2 pi Harmonic t/T + Phase)
 //
-// with T the period of the fundamental.
+// with T the period of the fundamental. In a pulsed drive T is that of the pulse: the tones are on
+// for the first part Gate of it, and rise and fall linearly within the part Ramp.
 type Drive struct {
 	Bias  float64 // [V]
 	Tones []Tone
+	// Gate is the part of the period in which the tones are on, and Ramp that in which they rise and
+	// fall; Gate 0 leaves them on.
+	Gate, Ramp float64
 }
 
 // At returns V [V] at the given part of the fundamental period.
 func (d Drive) At(part float64) float64 {
 	v := d.Bias
+	envelope := d.envelope(part)
 	for _, t := range d.Tones {
-		v += t.Amplitude * math.Cos(2*math.Pi*float64(t.Harmonic)*part+t.Phase)
+		v += envelope * t.Amplitude * math.Cos(2*math.Pi*float64(t.Harmonic)*part+t.Phase)
 	}
 	return v
+}
+
+// envelope is the part of the tones' amplitudes that is on.
+func (d Drive) envelope(part float64) float64 {
+	if d.Gate == 0 {
+		return 1
+	}
+	part -= math.Floor(part)
+	return math.Max(0, math.Min(1, math.Min(part, d.Gate-part)/d.Ramp))
 }
 
 // samples tabulates one period in n steps.

@@ -254,3 +254,37 @@ func TestValidationReactorPlanarLimit(t *testing.T) {
 			row("their energy", "J/m2", energy, got.Species[0].WallEnergy[0], energy/math.Sqrt(n)))
 	}
 }
+
+// Goal: energy is conserved between shells and behind a network: what the electrode takes is found
+// again in particles, field, walls and gas. Method: the ledgers of 5 periods of argon at 800 steps,
+// as the budget of plates, with its bound of 0.5 %; both schemes.
+func TestShellsEnergyBudget(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes some seconds")
+	}
+	for _, shape := range bothShells() {
+		for _, scheme := range schemes() {
+			d := smallDischarge()
+			d.steps, d.plain, d.particles, d.density, d.cells = 800, true, 10_000, 3e14, 32
+			c := d.build(t).config
+			c.Scheme, c.Geometry, c.Network = scheme, Geometry{shape, 2.5}, Network{Capacitance: 1e-7}
+			c.Weight *= c.Volume() / c.Gap
+			s := mustNew(t, c)
+			mustLoad(t, s, 0, d.particles, 30_000)
+			mustLoad(t, s, 1, d.particles, 300)
+			mustAdvance(t, s, d.steps)
+			var start, a account
+			start.add(s.TakeLedger())
+			start.kinetic += halfStep(s)
+			for range 5 {
+				mustAdvance(t, s, d.steps)
+				a.add(s.TakeLedger())
+			}
+			a.kinetic += halfStep(s)
+			t.Logf("%v, %v: missing %.5f", shape, scheme, a.missing(start))
+			if missing := a.missing(start); !(math.Abs(missing) < 0.005) {
+				t.Errorf("%v, %v: %.4f of the energy is missing", shape, scheme, missing)
+			}
+		}
+	}
+}

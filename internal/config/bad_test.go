@@ -79,6 +79,7 @@ func badInputs() []badInput {
 		{"self-bias-without-capacitor", false},
 		{"limit-without-target", false},
 		{"bad-surfaces", true},
+		{"bad-pulse", false},
 		{"too-much-reflection", false},
 	}
 }

@@ -96,6 +96,8 @@ type Drive struct {
 	Series *Series
 	// Trace is a measured waveform, or nil.
 	Trace *Trace
+	// Pulse switches the tones on and off; nil for a steady drive.
+	Pulse *Pulse
 	// Bias is the constant part [V].
 	Bias float64
 	// BlockingCapacitor [F], Resistance [ohm] and Inductance [H] are in series with the electrode.

@@ -137,8 +137,8 @@ func TestEqual(t *testing.T) {
 			t.Errorf("a change of %s makes no difference", path)
 		}
 	}, "")
-	if changed != 65 {
-		t.Errorf("%d fields were changed, want 65", changed)
+	if changed != 66 {
+		t.Errorf("%d fields were changed, want 66", changed)
 	}
 	same.IonEnergyThresholds = []float64{}
 	if !c.Equal(same) {

@@ -1,6 +1,8 @@
 package config
 
 import (
+	"fmt"
+	"math"
 	"math/big"
 	"strconv"
 
@@ -28,6 +30,19 @@ type Series struct {
 	Amplitude float64
 	// Phase is that of the fundamental in an asymmetric series [rad].
 	Phase float64
+}
+
+// Pulse is the switching of a pulsed drive.
+type Pulse struct {
+	// Rate of the pulses [Hz].
+	Rate float64
+	// Duty is the part of the time in which the tones are on.
+	Duty float64
+}
+
+// periods is how many periods of a frequency [Hz] make a pulse.
+func (p *Pulse) periods(frequency float64) int {
+	return max(1, int(math.Round(frequency/p.Rate)))
 }
 
 const (
@@ -184,9 +199,24 @@ func (d *Drive) checkWhole(dec *decoder, n *yaml.Node, path string) {
 	if len(dec.errs) == before {
 		d.checkCircuit(dec, n, path)
 	}
+	if len(dec.errs) == before && d.Pulse != nil {
+		d.checkPulse(dec, n, path)
+	}
 	if len(dec.errs) == before && len(d.Tones) > 0 {
 		tones := under(path, "tones")
 		d.check(dec, dec.at(n, tones), tones)
+	}
+}
+
+// checkPulse wants pulses of some periods, on and off for at least one.
+func (d *Drive) checkPulse(dec *decoder, n *yaml.Node, path string) {
+	f := d.fundamental()
+	periods := f / d.Pulse.Rate
+	on := d.Pulse.Duty * periods
+	if periods < 3.5 || periods > maxPulse || on < 2 || periods-on < 1 {
+		dec.fail(dec.at(n, under(path, "pulse")), under(path, "pulse"), fmt.Sprintf(
+			"%.4g periods of %s a pulse, on for %.3g", periods, megahertz(f), on),
+			fmt.Sprintf("4 to %d periods, on for 2 at least, off for 1 at least", maxPulse), "")
 	}
 }
 

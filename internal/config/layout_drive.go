@@ -47,6 +47,11 @@ func driveLayout(d *Drive) value {
 			doc: "A measured voltage, instead of tones.",
 		},
 		{
+			key: "pulse", value: pointer[Pulse]{&d.Pulse, pulseLayout},
+			doc: "The tones are switched on and off; results are resolved over the pulse. " +
+				"Default: a steady drive.",
+		},
+		{
 			key: "bias",
 			value: quantity{
 				dst: &d.Bias, dim: voltage(), low: "-" + maxVoltage, high: maxVoltage,
@@ -204,6 +209,24 @@ func seriesLayout(s *Series) value {
 			}
 		},
 	}
+}
+
+func pulseLayout(p *Pulse) value {
+	return mapping{fields: []field{
+		{
+			key: "rate", required: true,
+			value: quantity{
+				dst: &p.Rate, dim: frequency(), low: "0 Hz", high: maxFrequency, above: true,
+			},
+			doc: "Rate of the pulses, rounded so that a pulse is a whole number of periods of the " +
+				"fundamental.",
+		},
+		{
+			key: "duty", required: true,
+			value: quantity{dst: &p.Duty, dim: ratio(), low: "0 %", high: "100 %", above: true},
+			doc:   "Part of the time in which the tones are on.",
+		},
+	}}
 }
 
 func traceLayout(t *Trace) value {

@@ -37,6 +37,8 @@ const (
 	defaultVoltageLimit = 2000
 	// maxHarmonics of a series or trace: beyond it steps a period would have to be many.
 	maxHarmonics = 100
+	// maxPulse bounds the steps in a period of the pulses.
+	maxPulse = 1000
 	// maxTones is ten times what waveform tailoring uses.
 	maxTones = 100
 	// Above 10 GHz the field is no longer electrostatic at any gap allowed here.

@@ -115,8 +115,8 @@ func TestSchemaIsComplete(t *testing.T) {
 		}
 	}
 	walk("", root)
-	if keys != 97 {
-		t.Errorf("%d keys, want 97", keys)
+	if keys != 100 {
+		t.Errorf("%d keys, want 100", keys)
 	}
 	if v, _ := root["$schema"].(string); !strings.Contains(v, "2020-12") {
 		t.Errorf("dialect %q, want 2020-12", v)

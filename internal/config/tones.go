@@ -12,7 +12,19 @@ import (
 // 13.56 and 27.12 MHz, 40 kHz for 2 and 13.56 MHz. It is computed from the decimals that the
 // frequencies are written with, so 0.1 and 0.3 Hz have 0.1 Hz; the multiple of a tone is
 // math.Round(tone/fundamental). It is 0 if there are no tones, or one is not above 0.
+//
+// In a pulsed drive it is the rate of the pulses, rounded to a whole number of periods of that
+// frequency.
 func (d Drive) Fundamental() float64 {
+	f := d.fundamental()
+	if d.Pulse != nil && f > 0 {
+		return f / float64(d.Pulse.periods(f))
+	}
+	return f
+}
+
+// fundamental is that of the tones.
+func (d Drive) fundamental() float64 {
 	switch {
 	case d.Series != nil:
 		return d.Series.Frequency
@@ -70,7 +82,7 @@ func (d *Drive) check(dec *decoder, n *yaml.Node, path string) {
 		fmt.Sprintf("whole multiples of a common fundamental of at least 1/%d of the highest "+
 			"frequency", maxHarmonic),
 		fmt.Sprintf("that of the tones 0 to %d is %s", j,
-			megahertz(Drive{Tones: d.Tones[:j+1]}.Fundamental())))
+			megahertz(Drive{Tones: d.Tones[:j+1]}.fundamental())))
 }
 
 // megahertz writes a frequency for people.

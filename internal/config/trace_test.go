@@ -146,3 +146,32 @@ func TestSeries(t *testing.T) {
 		t.Errorf("steepest slopes: %g up, %g down: want the fast one in the other direction", up, down)
 	}
 }
+
+// Goal: no file makes the reader of traces panic or hang; what it accepts has finite tones, whatever
+// it refuses has a message with the file's name.
+func FuzzTrace(f *testing.F) {
+	sine := func(part float64) float64 { return 100 * math.Cos(2*math.Pi*part) }
+	for _, text := range []string{
+		scope(40, 1, sine), scope(90, 0.9, sine), "time_s,voltage_kV\n0,1\n1e-9,2\n1e30,1\n", "a", "",
+	} {
+		f.Add([]byte(text), 10e6)
+	}
+	f.Fuzz(func(t *testing.T, src []byte, frequency float64) {
+		if !(frequency > 0 && frequency <= 1e10) {
+			return
+		}
+		trace := Trace{File: "scope.csv", Frequency: frequency, Harmonics: 2}
+		w, err := trace.Read("scope.csv", src)
+		if err != nil {
+			if !strings.HasPrefix(err.Error(), "scope.csv") {
+				t.Errorf("message %q", err)
+			}
+			return
+		}
+		for _, tone := range w.Tones {
+			if math.IsNaN(tone.Amplitude) || math.IsInf(tone.Amplitude, 0) {
+				t.Errorf("tone %+v", tone)
+			}
+		}
+	})
+}

@@ -113,10 +113,18 @@ func resultLines(runs []*Run) []line {
 		line{"film: ions per atom", "film_ions_per_atom.%s"},
 		line{"sheath width", "sheath_width_m.%s"},
 		line{"plasma potential", "plasma_potential_V"},
+		line{"plasma potential, least in a period", "plasma_potential_least_V"},
+		line{"plasma potential, largest in a period", "plasma_potential_largest_V"},
 		line{"self-bias", "self_bias_V"},
+		line{"voltage, peak to peak", "voltage_peak_to_peak_V"},
+		line{"voltage, sum of amplitudes found", "drive_amplitude_V"},
+		line{"current, root mean square", "current_rms_Apm2"},
 		line{"electron density, centre", "electron_density_center_m3"},
 		line{"electron temperature, centre", "electron_temperature_center_eV"},
-		line{"power from the drive", "power_Wpm2.total"})
+		line{"power from the drive", "power_Wpm2.total"},
+		line{"power to electrons, powered sheath", "electron_power_Wpm2.sheath_powered"},
+		line{"power to electrons, bulk", "electron_power_Wpm2.bulk"},
+		line{"power to electrons, grounded sheath", "electron_power_Wpm2.sheath_grounded"})
 	return list
 }
 

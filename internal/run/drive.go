@@ -66,6 +66,9 @@ func (p *Plan) drive() pic.Drive {
 	of := &p.Case.Drive
 	d := pic.Drive{Bias: of.Bias}
 	fundamental := of.Fundamental()
+	if of.Pulse != nil {
+		d.Gate, d.Ramp = of.Pulse.Duty, fundamental/p.slowestTone()
+	}
 	sum := p.amplitude
 	if sum == 0 {
 		sum = math.Min(startAmplitude, of.Limit())
@@ -84,6 +87,15 @@ func (p *Plan) drive() pic.Drive {
 		d.Tones = append(d.Tones, tone)
 	}
 	return d
+}
+
+// slowestTone is the lowest frequency of the drive [Hz].
+func (p *Plan) slowestTone() float64 {
+	least := math.Inf(1)
+	for _, t := range p.Case.Drive.Tones {
+		least = math.Min(least, t.Frequency)
+	}
+	return least
 }
 
 // fastestHarmonic is the largest harmonic of the drive.
@@ -184,6 +196,10 @@ func (p *Plan) circuitLines() []Line {
 			"the empty gap has %.4g F/m2, %.4g ohm m2 at %.6g MHz", c.Network.Capacitance,
 			c.Network.Resistance, c.Network.Inductance, c.VacuumCapacitance(),
 			1/(omega*c.VacuumCapacitance()), omega/(2e6*math.Pi))
+	}
+	if d := &p.Case.Drive; d.Pulse != nil {
+		add("pulse", "%.6g us long, on for %.6g us; this is the period of all that follows",
+			1e6*p.period(), 1e6*d.Pulse.Duty*p.period())
 	}
 	if p.trace != nil {
 		add("trace", "%d harmonics are kept, which leaves out %.2g %% of the waveform's root mean square",

@@ -83,7 +83,7 @@ func (m *machine) meterResults(r map[string]any) {
 func (m *machine) biases(r map[string]any, n int) store.Value {
 	c, d := m.sim.Config(), &m.plan.Case.Drive
 	gap := m.meter.SelfBias(n)
-	gap.StdErr = math.Hypot(gap.StdErr, m.control.Reactor.biasError())
+	gap.StdErr = math.Hypot(gap.StdErr, m.biasError())
 	layers := m.plan.layers()
 	block := d.BlockingCapacitor.PerArea(m.plan.area())
 	switch {

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 
+	"ionfall/internal/phys"
 	"ionfall/internal/stats"
 	"ionfall/pic"
 )
@@ -19,9 +20,11 @@ var ErrTarget = errors.New("the target is out of reach")
 // At the end they are left alone, long before anything is averaged. The steady state is that of the
 // circuit alone: steering stops where no direct current flows.
 //
-// The electrons that reach the electrode grow with its mean voltage as exp(V/Te), as only the tail
-// of a Maxwellian does, the ions hardly change. So the bias that lets as many electrons arrive as
-// ions is about Te ln(ions/electrons) away.
+// The electrons that reach the electrode grow with the least voltage of its sheath as exp(-V/Te),
+// the ions hardly change. When the bias moves, the two sheaths share it by their charges: with
+// voltages as squares of charges and a largest voltage Vm, the least one, about the floating
+// voltage Vf = 5 Te, moves by sqrt(Vf/Vm) of it only. So the bias that lets as many electrons
+// arrive as ions is about U ln(ions/electrons) away, with U = Te sqrt(Vm/Vf).
 const (
 	steerEV = 3 // about Te [eV]
 	// biasStep bounds a step of the bias, ampStep one of ln(amplitude).
@@ -148,11 +151,16 @@ func (m *machine) steerNow(fine, targeted bool) bool {
 	return float64(r.Since) >= least && (r.Plus+r.Minus >= fineCounts || r.Since >= fineWait)
 }
 
+// steerVoltage returns U: Te if the sheaths are not larger than the floating voltage.
+func (m *machine) steerVoltage() float64 {
+	return steerEV * math.Sqrt(math.Max(1, m.plan.largestVoltage()/(5*steerEV)))
+}
+
 // steerBias moves the bias towards the value without direct current; true if it is close.
 func (m *machine) steerBias(fine bool) bool {
 	r := &m.control.Reactor
 	ratio := math.Log((r.Plus + 2) / (r.Minus + 2))
-	step := steerEV * ratio
+	step := m.steerVoltage() * ratio
 	if fine {
 		m.sim.ShiftBias(step / float64(r.Fine))
 		return math.Abs(ratio) < 1
@@ -167,13 +175,24 @@ func (m *machine) steerBias(fine bool) bool {
 	return math.Abs(ratio) < 0.5+3*math.Sqrt(1/(r.Plus+2)+1/(r.Minus+2))
 }
 
-// biasError is the standard error that the steering leaves in the bias [V]: the chance of the counts
-// in its fine steps. The circuit takes it away, but slowly.
-func (r *reactorControl) biasError() float64 {
-	if r.Seen[0] == 0 || r.Seen[1] == 0 {
+// biasError is the standard error of the self-bias that its scatter over the average does not show
+// [V]: the chance of the counts in the fine steps, which the circuit takes away slowly, and the
+// wander of the bias by the chance of single charges, for each of which a capacitance C has the
+// memory tau = C U/J of an ion current density J, and the variance e W U/C.
+func (m *machine) biasError() float64 {
+	r, c := &m.control.Reactor, m.sim.Config()
+	capacitance := c.Network.Capacitance
+	n := float64(m.control.Averaged.Periods)
+	if r.Seen[0] == 0 || r.Seen[1] == 0 || capacitance == 0 || n == 0 {
 		return 0
 	}
-	return steerEV * math.Sqrt(1/r.Seen[0]+1/r.Seen[1])
+	u := m.steerVoltage()
+	steering := u * math.Sqrt(1/r.Seen[0]+1/r.Seen[1])
+	charge := phys.ElementaryCharge * c.Weight
+	flux := stats.Mean(m.series(func(r *Row) float64 { return r.Flux[0] }, int(n))).Mean
+	memory := capacitance * u / (phys.ElementaryCharge * flux * m.plan.period()) / n
+	wander := charge * u / capacitance * 2 * memory * (1 - memory*(1-math.Exp(-1/memory)))
+	return math.Sqrt(steering*steering + wander)
 }
 
 // guessBias sets the bias of a cold start: that of the two sheaths with the voltage ratio

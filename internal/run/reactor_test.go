@@ -201,6 +201,9 @@ func TestTraceRunsAsItsTones(t *testing.T) {
 // floating wafers with their capacitance; the surface of a layer has the direct voltage that the
 // electrode below has not. Method: a short run of unequal shells, and what it was built of.
 func TestSurfacesReachTheRun(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes some seconds")
+	}
 	input := strings.Replace(reactorInput, "  blocking_capacitor: 20 nF\n", "", 1)
 	input = strings.Replace(input, "electrodes: {powered: {area: 300 cm2}}", `electrodes:
   powered:
@@ -241,5 +244,68 @@ func TestUnknownYields(t *testing.T) {
 		if (err == nil) != (want == "") || err != nil && !strings.Contains(err.Error(), want) {
 			t.Errorf("%s: got %v", yield, err)
 		}
+	}
+}
+
+// Goal: a pulsed drive is on and off when it should be, and results are resolved over the pulse.
+// Method: pulses of 16 RF periods, on for half of them; the voltage by phase of the pulse, and the
+// electrons' temperature in the middle, which falls when the drive is off.
+func TestPulsedDrive(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes some seconds")
+	}
+	input := "gap: 20 mm\ngas: {pressure: 20 Pa, mixture: {Ar: 1}}\ndrive:\n" +
+		"  tones: [{frequency: 13.56 MHz, amplitude: 120 V}]\n  pulse: {rate: 850 kHz, duty: 50 %}\n" +
+		"initial: {density: 1e15 /m3}\nnumerics: {cells: 64, steps_per_period: 9600, " +
+		"particles_per_cell: 30, ion_substeps: 6, periods: 14, average_periods: 10}\n"
+	p := plan(t, input)
+	if got := p.period() * 13.56e6; math.Abs(got-16) > 1e-9 {
+		t.Fatalf("a pulse of %g periods", got)
+	}
+	s, dir, err := Run(context.Background(), p, Options{Out: filepath.Join(t.TempDir(), "out")})
+	if err != nil {
+		t.Fatal(err)
+	}
+	column := func(file, name string) []float64 {
+		tab, err := store.ReadTable(filepath.Join(dir, file))
+		if err != nil {
+			t.Fatal(err)
+		}
+		list, err := tab.Floats(name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return list
+	}
+	phase, drive := column("waveforms.parquet", "phase_rad"), column("waveforms.parquet", "drive_V")
+	var on, off float64
+	for i, at := range phase {
+		if at < math.Pi {
+			on = math.Max(on, math.Abs(drive[i]))
+		} else {
+			off = math.Max(off, math.Abs(drive[i]))
+		}
+	}
+	// A bin is a quarter of an RF period, over which the cosine has the mean 2/pi.
+	if math.Abs(on-120*2/math.Pi) > 1 || off > 1e-9 {
+		t.Errorf("%g V while on, %g V while off", on, off)
+	}
+	// The Fourier component of the whole pulse is that of the part which is on, ramps taken off.
+	if v, _ := s.Lookup("voltage_amplitude_V.13p56MHz"); math.Abs(v.Value/120-7.0/16) > 0.01 {
+		t.Errorf("amplitude over the pulse %g V", v.Value)
+	}
+	times, te := column("phases.parquet", "phase_rad"), column("phases.parquet", "electron_temperature_eV")
+	x := column("phases.parquet", "x_m")
+	mean := func(from, to float64) float64 {
+		sum, n := 0.0, 0.0
+		for i := range x {
+			if math.Abs(x[i]-0.01) < 0.001 && times[i] > from && times[i] < to {
+				sum, n = sum+te[i], n+1
+			}
+		}
+		return sum / n
+	}
+	if hot, cold := mean(0.5*math.Pi, math.Pi), mean(1.5*math.Pi, 2*math.Pi); !(cold < 0.9*hot) {
+		t.Errorf("electrons of %g eV while on and of %g eV long after", hot, cold)
 	}
 }
