@@ -16,7 +16,7 @@ import (
 func (p *program) reportCommand() *cli.Command {
 	return &cli.Command{
 		Name:      "report",
-		Usage:     "one page about a run, or about several side by side",
+		Usage:     "one page about a run, a scan, or several runs side by side",
 		ArgsUsage: "DIR... [--out FILE]",
 		Description: `Writes one HTML page that holds everything it shows: answers with errors,
 the verdict with every check, figures with the data behind them, sources and cautions. It opens
@@ -35,30 +35,47 @@ func (p *program) report(c *cli.Context) error {
 	if err := v.bad.Err(); err != nil {
 		return err
 	}
-	runs, err := openRuns(c)
+	if out != "" {
+		if err := absent(c, out); err != nil {
+			return err
+		}
+	}
+	page, place, err := reportPage(c)
 	if err != nil {
 		return err
 	}
 	if out == "" {
-		if len(runs) > 1 {
-			return usagef("report: got %d runs, want --out FILE for their page", len(runs))
+		if place == "" {
+			return usagef("report: got %d runs, want --out FILE for their page", c.NArg())
 		}
-		folder, _, err := store.Locate(runs[0].Dir)
-		if err != nil {
-			return err
-		}
-		out = filepath.Join(folder, report.File)
-	} else if err := absent(c, out); err != nil {
-		return err
-	}
-	page, err := report.Page(runs)
-	if err != nil {
-		return err
+		out = filepath.Join(place, report.File)
 	}
 	if err := store.WriteFile(out, page); err != nil {
 		return err
 	}
 	return p.print([]byte(out + "\n"))
+}
+
+// reportPage is the page of a scan or of runs, and the folder it belongs to, "" for several.
+func reportPage(c *cli.Context) (page []byte, place string, err error) {
+	if dir := c.Args().First(); c.NArg() == 1 && report.IsScan(dir) {
+		scan, err := report.OpenScan(dir)
+		if err != nil {
+			return nil, "", err
+		}
+		page, err = report.ScanPage(scan)
+		return page, dir, err
+	}
+	runs, err := openRuns(c)
+	if err != nil {
+		return nil, "", err
+	}
+	page, err = report.Page(runs)
+	if err != nil || len(runs) > 1 {
+		return page, "", err
+	}
+	place, _, err = store.Locate(runs[0].Dir)
+	return page, place, err
 }
 
 // absent refuses a file that is there already.

@@ -16,7 +16,8 @@ func TestWrongCommandLines(t *testing.T) {
 		args []string
 		want string
 	}{
-		{nil, "ionfall: no command given, want one of run, check, resume, report, plot, gas, schema, version; " +
+		{nil, "ionfall: no command given, want one of run, check, resume, report, plot, " +
+			"view, gas, probe, schema, version; " +
 			"for example: ionfall run argon.yaml\n"},
 		{[]string{"chekc", "he.yaml"}, "ionfall: unknown command \"chekc\"; did you mean \"check\"?\n"},
 		{[]string{"run"}, "ionfall: run: no INPUT file given; for example: ionfall run argon.yaml\n"},

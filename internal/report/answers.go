@@ -108,7 +108,18 @@ func resultLines(runs []*Run) []line {
 			})
 		}
 	}
+	for _, name := range neutralsOf(runs) {
+		label := name + ", fast: "
+		if name == "all" {
+			label = "fast neutrals: "
+		}
+		list = append(list,
+			line{label + "mean energy", "neutral_mean_energy_eV.%s." + name},
+			line{label + "flux", "neutral_flux_m2ps.%s." + name},
+			line{label + "energy flux", "neutral_energy_flux_Wpm2.%s." + name})
+	}
 	list = append(list,
+		line{"ions and fast neutrals: energy flux", "energetic_energy_flux_Wpm2.%s"},
 		line{"film: ion energy per atom", "film_energy_per_atom_eV.%s"},
 		line{"film: ions per atom", "film_ions_per_atom.%s"},
 		line{"sheath width", "sheath_width_m.%s"},
@@ -143,6 +154,23 @@ func speciesOf(runs []*Run) []string {
 	}
 	if len(names) <= 2 {
 		return []string{"all"}
+	}
+	delete(names, "all")
+	return append([]string{"all"}, slices.Sorted(maps.Keys(names))...)
+}
+
+// neutralsOf are "all" and the kinds of fast neutrals, where they were followed.
+func neutralsOf(runs []*Run) []string {
+	names := map[string]bool{}
+	for _, r := range runs {
+		for _, e := range electrodes {
+			for name := range below(r.Summary.Results, "neutral_flux_m2ps", e) {
+				names[name] = true
+			}
+		}
+	}
+	if len(names) == 0 {
+		return nil
 	}
 	delete(names, "all")
 	return append([]string{"all"}, slices.Sorted(maps.Keys(names))...)

@@ -53,12 +53,13 @@ type Series struct {
 	Run   int     `json:"run"` // of Figure.Runs, -1 for what belongs to none
 	X     Numbers `json:"x"`
 	Y     Numbers `json:"y"`
-	SE    Numbers `json:"se"`    // empty for what has no error, such as a law
-	Key   string  `json:"key"`   // for the legend; "" is the label
-	Law   bool    `json:"law"`   // drawn thin and dotted: a comparison, no result
-	Steps bool    `json:"steps"` // a histogram, X being the middle of its bins
-	Dots  bool    `json:"dots"`  // measured points, not joined
-	Width Numbers `json:"width"` // of the bins
+	SE    Numbers `json:"se"`              // empty for what has no error, such as a law
+	Key   string  `json:"key"`             // for the legend; "" is the label
+	Law   bool    `json:"law"`             // drawn thin and dotted: a comparison, no result
+	Steps bool    `json:"steps"`           // a histogram, X being the middle of its bins
+	Dots  bool    `json:"dots"`            // measured points, not joined
+	Cross bool    `json:"cross,omitempty"` // the points are crosses: not to be used
+	Width Numbers `json:"width"`           // of the bins
 }
 
 // Map is a quantity on two axes, row by row from the lowest Y.
@@ -108,6 +109,8 @@ type Figure struct {
 	Map    *Map      `json:"map,omitempty"`
 	Bars   []Bar     `json:"bars,omitempty"`
 	Bands  []Band    `json:"bands,omitempty"`
+	// Crossed says that what failed is marked point by point, so that no stamp is needed.
+	Crossed bool `json:"crossed,omitempty"`
 }
 
 // Failed are the names of the runs in the figure that are not to be used.
@@ -126,6 +129,9 @@ func (f *Figure) with(verdict string) []string {
 // Stamp is what stands across the axes, "" where nothing need be said.
 func (f *Figure) Stamp() string {
 	var parts []string
+	if f.Crossed {
+		return ""
+	}
 	if failed := f.Failed(); len(failed) == len(f.Runs) && len(failed) > 0 {
 		parts = append(parts, "verdict FAIL: not to be used")
 	} else if len(failed) > 0 {

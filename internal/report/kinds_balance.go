@@ -7,6 +7,7 @@ import (
 	"slices"
 	"strings"
 
+	"ionfall/internal/config"
 	"ionfall/internal/store"
 )
 
@@ -20,7 +21,8 @@ func balanceKinds() []Kind {
 		{
 			ID: "particle-balance", Title: "Ion balance", group: groupBalance,
 			About: "Ions made in the gap, by the integral of the ionization profile, and ions " +
-				"lost to the electrodes. In a steady discharge both are the same. The error of " +
+				"lost to the electrodes. In a steady discharge between plates both are the same, " +
+				"but for ions that recombine or change sign in the gap. The error of " +
 				"the first adds those of all points, as if they erred together.",
 			build: particleBalance,
 		},
@@ -55,6 +57,9 @@ func particleBalance(k Kind, runs []*Run, _ Select) ([]Figure, error) {
 		Y: Axis{Name: "ions_m2ps", Label: "ions per area and time", Unit: "1/(m2 s)"},
 	}
 	for i, r := range runs {
+		if r.Case != nil && r.Case.Geometry.Shape != config.Planar {
+			continue // the areas of shells differ
+		}
 		made, se, ok, err := ionsMade(r)
 		if err != nil {
 			return nil, err

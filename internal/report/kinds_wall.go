@@ -11,9 +11,20 @@ func wallKinds() []Kind {
 	return []Kind{
 		{
 			ID: "ion-energy", Title: "Ion energy distribution", group: groupWall,
-			About: "Flux of each kind of ion, and of fast neutrals where they are followed, by " +
-				"the energy they arrive with. The shaded band is plus and minus one standard error.",
-			build: energyFigures,
+			About: "Flux of each kind of ion by the energy it arrives with. The shaded band is plus " +
+				"and minus one standard error.",
+			build: func(k Kind, runs []*Run, s Select) ([]Figure, error) {
+				return energyFigures(k, runs, s, charged)
+			},
+		},
+		{
+			ID: "neutral-energy", Title: "Fast neutral energy distribution", group: groupWall,
+			About: "Flux of each kind of fast neutral by the energy it arrives with, above the " +
+				"energy from which the input has them followed. The shaded band is plus and minus " +
+				"one standard error.",
+			build: func(k Kind, runs []*Run, s Select) ([]Figure, error) {
+				return energyFigures(k, runs, s, func(name string) bool { return !charged(name) })
+			},
 		},
 		{
 			ID: "ion-energy-share", Title: "Share of the ions above an energy", group: groupWall,
@@ -21,11 +32,16 @@ func wallKinds() []Kind {
 			build: shareFigures,
 		},
 		{
-			ID: "ion-angle", Title: "Ion energy and angle", group: groupWall,
+			ID: "ion-angle", Title: "Energy and angle", group: groupWall,
 			About: "Flux by energy and by angle to the surface normal. Colours are logarithmic.",
 			build: angleFigures,
 		},
 	}
+}
+
+// charged tells ions from neutrals by their name.
+func charged(species string) bool {
+	return strings.HasSuffix(species, "+") || strings.HasSuffix(species, "-")
 }
 
 var electrodes = [...]string{"grounded", "powered"}
@@ -80,7 +96,8 @@ func filled(y Numbers) int {
 	return min(n+1, len(y))
 }
 
-func energyFigures(k Kind, runs []*Run, s Select) ([]Figure, error) {
+func energyFigures(k Kind, runs []*Run, s Select, of func(species string) bool,
+) ([]Figure, error) {
 	var list []Figure
 	for _, electrode := range electrodes {
 		if !fits(s.Electrode, electrode) {
@@ -95,6 +112,9 @@ func energyFigures(k Kind, runs []*Run, s Select) ([]Figure, error) {
 		err := eachSpectrum(runs, electrode, s, func(run int, species string,
 			x, width, y, se Numbers,
 		) {
+			if !of(species) {
+				return
+			}
 			f.Series = append(f.Series, Series{
 				Label: species, Run: run, X: x, Y: y, SE: se, Width: width, Steps: true,
 			})
@@ -130,6 +150,9 @@ func shareFigures(k Kind, runs []*Run, s Select) ([]Figure, error) {
 		err := eachSpectrum(runs, electrode, s, func(run int, species string,
 			x, width, y, _ Numbers,
 		) {
+			if !charged(species) {
+				return
+			}
 			f.Series = append(f.Series, shareAbove(species, run, x, width, y))
 		})
 		if err != nil {

@@ -63,16 +63,16 @@ func Page(runs []*Run) ([]byte, error) {
 	}
 	css := styleSheet()
 	s := &sheet{
-		Sheet: words, CSS: template.CSS(css), JS: template.JS(pageJS),
+		Sheet: words, CSS: cssText(css), JS: scriptText(pageJS),
 		Policy: policy(css, pageJS), Absent: absent, Cautions: Cautions(),
 	}
 	if s.Sections, err = sections(figures); err != nil {
 		return nil, fmt.Errorf("report: %w", err)
 	}
-	return fill(s)
+	return fill("page", s)
 }
 
-func fill(s *sheet) ([]byte, error) {
+func fill(name string, s any) ([]byte, error) {
 	functions := template.FuncMap{
 		"unit": prettyUnit, "mark": VerdictMark, "anchor": slug,
 	}
@@ -81,11 +81,15 @@ func fill(s *sheet) ([]byte, error) {
 		return nil, fmt.Errorf("report: %w", err)
 	}
 	var b bytes.Buffer
-	if err := t.Execute(&b, s); err != nil {
+	if err := t.ExecuteTemplate(&b, name, s); err != nil {
 		return nil, fmt.Errorf("report: %w", err)
 	}
 	return b.Bytes(), nil
 }
+
+// cssText and scriptText say that these texts are our own.
+func cssText(s string) template.CSS   { return template.CSS(s) }
+func scriptText(s string) template.JS { return template.JS(s) }
 
 // VerdictMark is a sign and a word for a verdict: colour alone says nothing to some.
 func VerdictMark(verdict string) string {
@@ -153,7 +157,7 @@ func curveStyles() string {
 }
 
 func sections(figures []Figure) ([]section, error) {
-	groups := map[string]string{}
+	groups := map[string]string{"scan": "Results over the inputs"}
 	for _, k := range Kinds() {
 		groups[k.ID] = k.group
 	}

@@ -171,7 +171,6 @@ func (f *Figure) paperStamp(c draw.Canvas) {
 	st := paperText(vg.Length(math.Min(20, 1.7*size.Points()/float64(len(stamp)))))
 	st.Color, st.Rotation = red, math.Pi/12
 	st.XAlign, st.YAlign = draw.XCenter, draw.YCenter
-	st.Font.Weight = 3 // bold
 	c.FillText(st, vg.Point{X: (c.Min.X + c.Max.X) / 2, Y: (c.Min.Y + c.Max.Y) / 2}, stamp)
 	c.StrokeLines(draw.LineStyle{Color: red, Width: 1.5, Dashes: []vg.Length{5, 2}},
 		[]vg.Point{

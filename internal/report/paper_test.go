@@ -57,6 +57,11 @@ func TestPaperIsStamped(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
+			for _, format := range []string{"pdf"} {
+				if _, err := figures[i].Draw(Paper{Format: format, Width: 60}); err != nil {
+					t.Errorf("%s as %s: %v", figures[i].ID, format, err)
+				}
+			}
 			if bytes.Contains(data, []byte("not to be used")) != (verdict == store.Fail) {
 				t.Errorf("%s, verdict %s: stamp missing or wrong", figures[i].ID, verdict)
 			}

@@ -27,6 +27,7 @@ type RunSheet struct {
 	Indicators                             []Indicator
 	Provenance                             []Pair
 	References                             []store.Reference
+	Results                                []Pair // every one, under its path
 }
 
 // Pair is a name and what is said of it.
@@ -70,8 +71,20 @@ func newRunSheet(r *Run) (RunSheet, error) {
 	for _, c := range r.Summary.Checks {
 		s.Checks = append(s.Checks, CheckSheet{
 			Name: strings.ReplaceAll(c.Name, "_", " "), Verdict: c.Verdict, Text: c.Text,
-			Number: typeset(progress.Digits(c.Value, 3)), Limit: typeset(progress.Digits(c.Bound, 3)),
+			Number: typeset(progress.Digits(c.Value, 3)),
+			Limit:  typeset(progress.Digits(c.Bound, 3)),
 		})
+	}
+	all, err := r.Summary.Flatten()
+	if err != nil {
+		return RunSheet{}, err
+	}
+	for _, v := range all {
+		text := estimate(v.Value.Value, v.SE, v.Unit)
+		if r.Verdict() == store.Fail {
+			text = "✗ " + text
+		}
+		s.Results = append(s.Results, Pair{v.Path, text})
 	}
 	worse := []string{store.Fail, store.Warn, store.OK}
 	slices.SortStableFunc(s.Checks, func(a, b CheckSheet) int {

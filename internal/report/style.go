@@ -17,7 +17,8 @@ func (f *Figure) styles() []style {
 		if _, ok := labels[s.Label]; !ok {
 			labels[s.Label] = len(labels)
 		}
-		last = style{labels[s.Label], labels[s.Label]}
+		k := labels[s.Label]
+		last = style{k, k + k/len(dashes())} // when the colours begin again, the dashes do not
 		if len(f.Runs) > 1 && s.Run >= 0 {
 			last.color = s.Run
 		}

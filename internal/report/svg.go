@@ -105,8 +105,16 @@ func (d *drawing) legend() int {
 			x, row = leftEdge, row+1
 		}
 		y := 6 + legendRow*(float64(row)+0.5)
-		d.add(`<path class="%s" d="M%.0f %.1fh26"/><text class="lb" x="%.0f" y="%.1f">%s</text>`,
-			curveClass(s, st), x, y, x+32, y+4, html.EscapeString(name))
+		switch {
+		case s.Cross:
+			d.add(`<path class="cross" d="M%.1f %.1fl9 9m0 -9l-9 9"/>`, x+9, y-4.5)
+		case s.Dots:
+			light, _ := curveColors()
+			d.add(`<circle class="f%d" cx="%.1f" cy="%.1f" r="3.5"/>`, st.color%len(light), x+13, y)
+		default:
+			d.add(`<path class="%s" d="M%.0f %.1fh26"/>`, curveClass(s, st), x, y)
+		}
+		d.add(`<text class="lb" x="%.0f" y="%.1f">%s</text>`, x+32, y+4, html.EscapeString(name))
 		x += width
 	}
 	return row + 1

@@ -109,6 +109,10 @@ func (d *drawing) dots(s *Series, st style) {
 			continue
 		}
 		x, y := d.x.at(s.X[i]), d.y.at(s.Y[i])
+		if s.Cross {
+			d.add(`<path class="cross" d="M%.1f %.1fl9 9m0 -9l-9 9"/>`, x-4.5, y-4.5)
+			continue
+		}
 		d.add(`<circle class="f%d" cx="%.1f" cy="%.1f" r="3.5"/>`, st.color%len(light), x, y)
 		if len(s.SE) > 0 && s.SE[i] > 0 {
 			d.add(`<path class="ln c%d" d="M%.1f %.1fV%.1f"/>`, st.color%len(light), x,

@@ -28,15 +28,18 @@ func (r *Run) asked() []Pair {
 		}
 		tones = append(tones, text)
 	}
-	return []Pair{
+	list := []Pair{
 		{"gas", strings.Join(gases, ", ")},
 		{"pressure", fmt.Sprintf("%.5g Pa at %.4g K", c.Gas.Pressure, c.Gas.Temperature)},
 		{"gap", fmt.Sprintf("%.5g mm", millimetres*c.Gap)},
-		{"drive (amplitude)", strings.Join(tones, " + ")},
 		{"substrate", strings.Join(r.Substrates(), " and ") + " electrode"},
 		{"asked-for error", fmt.Sprintf("%.3g %% of the ion energy, %.3g %% of the ion flux",
 			100*c.Accuracy.IonEnergy, 100*c.Accuracy.IonFlux)},
 	}
+	if len(tones) > 0 {
+		list = append(list, Pair{"drive (amplitude)", strings.Join(tones, " + ")})
+	}
+	return list
 }
 
 // headlines are the answers that the page opens with.

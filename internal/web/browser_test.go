@@ -185,7 +185,7 @@ func (b *tab) drawn(name string, least int) {
 // inked is the part of the pixels that are neither paper nor grey: those of curves and maps.
 func inked(img image.Image, box image.Rectangle) float64 {
 	count := 0
-	at := func(x, y int) []uint8 { return nil }
+	var at func(x, y int) []uint8
 	switch p := img.(type) {
 	case *image.RGBA:
 		at = func(x, y int) []uint8 { return p.Pix[p.PixOffset(x, y):] }

@@ -22,7 +22,6 @@ const (
 
 const (
 	runningSuffix = ".running"
-	pointsTable   = "points.parquet"
 	pointsFolder  = "points"
 )
 
@@ -57,7 +56,7 @@ func newCatalog(dir string) (*catalog, error) {
 		return nil, err
 	}
 	c := &catalog{root: root}
-	if report.IsRun(root) || isScan(root) {
+	if report.IsRun(root) || report.IsScan(root) {
 		c.root = filepath.Dir(root)
 		c.single = strings.TrimSuffix(filepath.Base(root), runningSuffix)
 		return c, nil
@@ -70,16 +69,6 @@ func newCatalog(dir string) (*catalog, error) {
 		return nil, fmt.Errorf("%s %w", dir, ErrNotFolder)
 	}
 	return c, nil
-}
-
-// isScan tells a scan by its plan or its table.
-func isScan(dir string) bool {
-	for _, name := range []string{pointsTable, "plan.yaml"} {
-		if info, err := os.Stat(filepath.Join(dir, name)); err == nil && info.Mode().IsRegular() {
-			return true
-		}
-	}
-	return false
 }
 
 // items lists the results, without the points of scans; more says that there are others.
@@ -128,7 +117,7 @@ func (c *catalog) search(below string, depth int, list *[]Item) {
 func (c *catalog) at(id string) (Item, bool) {
 	dir := filepath.Join(c.root, filepath.FromSlash(id))
 	switch {
-	case isScan(dir):
+	case report.IsScan(dir):
 		return Item{ID: id, Kind: kindScan, dir: dir}, true
 	case report.IsRun(dir):
 		_, whole, err := store.Locate(dir)

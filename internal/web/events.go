@@ -7,6 +7,8 @@ import (
 	"os"
 	"path/filepath"
 	"time"
+
+	"ionfall/internal/report"
 )
 
 // watched is what a change of the results shows in.
@@ -74,7 +76,7 @@ func lookAt(item Item) watched {
 		names = []string{filepath.Join(item.dir+runningSuffix, "state.json")}
 	}
 	if item.Kind == kindScan {
-		names = []string{filepath.Join(item.dir, pointsTable)}
+		names = []string{filepath.Join(item.dir, report.PointsTable)}
 		w.points = len(pointsOf(item))
 	}
 	for _, name := range names {

@@ -81,6 +81,34 @@ func TestReportInBrowser(t *testing.T) {
 	}
 }
 
+// Goal: the report of a scan opens from disk, is drawn, and accessible. Method: as above, on an
+// invented scan.
+func TestScanReportInBrowser(t *testing.T) {
+	dir := filepath.Join(t.TempDir(), "grid")
+	if err := invented.Scan(dir, 60, 0); err != nil {
+		t.Fatal(err)
+	}
+	scan, err := report.OpenScan(dir)
+	if err != nil {
+		t.Fatal(err)
+	}
+	text, err := report.ScanPage(scan)
+	if err != nil {
+		t.Fatal(err)
+	}
+	path := filepath.Join(dir, report.File)
+	if err := os.WriteFile(path, text, 0o600); err != nil {
+		t.Fatal(err)
+	}
+	b := browser(t, 1280, 900, "file://")
+	b.visit("file://" + filepath.ToSlash(path))
+	b.dark(false)
+	b.drawn("report-scan", 2)
+	b.accessible("report of a scan")
+	b.narrow("report-scan-narrow")
+	b.clean()
+}
+
 func ptr[T any](v T) *T { return &v }
 
 // reportByKeyboard opens a data table without a mouse.

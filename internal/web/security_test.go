@@ -25,8 +25,11 @@ func TestKeyIsNeeded(t *testing.T) {
 	}
 	for path, method := range paths {
 		for _, header := range []map[string]string{
-			{}, {"Authorization": "Bearer "}, {"Authorization": "Bearer " + strings.Repeat("0", 64)},
-			{"Authorization": "Basic Og=="}, {"Cookie": "key=1"},
+			{},
+			{"Authorization": "Bearer "},
+			{"Authorization": "Bearer " + strings.Repeat("0", 64)},
+			{"Authorization": "Basic Og=="},
+			{"Cookie": "key=1"},
 		} {
 			a := ask(t, method, site(s)+path, "{}", with(header, "Content-Type", "application/json"))
 			if a.status != http.StatusUnauthorized || strings.Contains(a.body, "sound") {

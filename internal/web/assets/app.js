@@ -287,6 +287,7 @@ function wordsOf(r) {
     make("h2", {}, "Checks, sources and provenance"), region(`checks of ${r.Name}`, checks),
     r.Indicators ? make("h3", {}, "What the ions may mean for a film") : null, r.Indicators ? region("indicators", film) : null,
     make("details", {}, make("summary", {}, "Methods and data"), make("ol", { class: "refs" }, ...(r.References || []).map((x) => make("li", {}, `${x.citation} (${x.why})`)))),
+    make("details", {}, make("summary", {}, "Every result, under its name in the files"), definition(r.Results)),
     make("details", {}, make("summary", {}, "Provenance"), definition(r.Provenance)),
     make("details", {}, make("summary", {}, "Input, as given"), make("pre", { tabindex: "0", "aria-label": "input" }, r.Input)));
 }

@@ -159,7 +159,7 @@ export class Plot {
       if (s.law) return last;
       if (!labels.has(s.label)) labels.set(s.label, labels.size);
       const k = labels.get(s.label);
-      last = [this.f.runs.length > 1 && s.run >= 0 ? s.run : k, k];
+      last = [this.f.runs.length > 1 && s.run >= 0 ? s.run : k, k + Math.floor(k / curves)];
       return last;
     });
   }
