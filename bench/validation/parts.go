@@ -62,7 +62,7 @@ func parts() []part {
 		{
 			file: "bias.json", title: "Self-bias of whole discharges",
 			about: "Equal electrodes, two tones, unequal electrodes behind a blocking capacitor.",
-			pkg: "./internal/run", pattern: "ValidationBias", flags: "-timeout 1h",
+			pkg:   "./internal/run", pattern: "ValidationBias", flags: "-timeout 1h",
 			takes: "some minutes",
 		},
 		{
@@ -101,6 +101,21 @@ func parts() []part {
 			command: "go run ./bench/benchmark --case 1 --json >result.json; " +
 				"go run ./bench/benchmark --record testdata/validation/benchmark.json result.json",
 			takes: "a minute a run",
+		},
+		{
+			file: "probe.json", title: "Langmuir probe: do the error bars hold the truth?",
+			about: "200 synthetic sweeps of known plasmas, drawn at random: how often the stated 95 % " +
+				"intervals hold the truth. 88 to 98 % pass.",
+			pkg: "./internal/probe", pattern: "ValidationCoverage", flags: "-timeout 1h",
+			takes: "some minutes",
+		},
+		{
+			file: "probe-loop.json", title: "Langmuir probe: are hidden inputs found?",
+			about: "Ten discharges at inputs drawn at random, a noisy sweep drawn in each, and the " +
+				"estimate of the inputs from one set of runs. All share coarse numerics: it tests the " +
+				"estimate, not the discharge.",
+			pkg: "./cmd/ionfall", pattern: "ValidationClosedLoop", flags: "-timeout 1h",
+			takes: "some minutes",
 		},
 	}
 }
