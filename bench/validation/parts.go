@@ -110,6 +110,21 @@ func discharges() []part {
 				"go run ./bench/benchmark --record testdata/validation/benchmark.json result.json",
 			takes: "a minute a run",
 		},
+		{
+			file: "probe.json", title: "Langmuir probe: do the error bars hold the truth?",
+			about: "200 synthetic sweeps of known plasmas, drawn at random: how often the stated 95 % " +
+				"intervals hold the truth. 88 to 98 % pass.",
+			pkg: "./internal/probe", pattern: "ValidationCoverage", flags: "-timeout 1h",
+			takes: "some minutes",
+		},
+		{
+			file: "probe-loop.json", title: "Langmuir probe: are hidden inputs found?",
+			about: "Ten discharges at inputs drawn at random, a noisy sweep drawn in each, and the " +
+				"estimate of the inputs from one set of runs. All share coarse numerics: it tests the " +
+				"estimate, not the discharge.",
+			pkg: "./cmd/ionfall", pattern: "ValidationClosedLoop", flags: "-timeout 1h",
+			takes: "some minutes",
+		},
 	}
 }
 
