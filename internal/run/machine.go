@@ -30,6 +30,9 @@ const (
 	settleLook = 5
 	// mostWindows ends the settling of a discharge that never stands; the trust check will say so.
 	mostWindows = 20
+	// mostPerElectron bounds all particles over the target of the electrons: where electrons are
+	// lost and ions stay behind, more of both do not help.
+	mostPerElectron = 16
 	// band is the factor by which the number of electrons may leave its target.
 	band = 2
 )
@@ -282,14 +285,17 @@ func (m *machine) enter(stage string) {
 // holdPopulation keeps the number of electrons in its band and chunks of equal size.
 func (m *machine) holdPopulation() {
 	c := &m.control
-	electrons := m.sim.Species()[0].Count()
+	electrons, all := m.sim.Species()[0].Count(), 0
+	for i := range m.sim.Species() {
+		all += m.sim.Species()[i].Count()
+	}
 	switch {
 	case m.fixedLength(): // its number of particles is part of what was asked for
 	case electrons > band*c.Target:
 		m.sim.Halve()
 		c.Event = "every second particle removed, weight doubled"
 		m.rebase()
-	case electrons*band < c.Target:
+	case electrons*band < c.Target && all < mostPerElectron*c.Target:
 		m.sim.Multiply(2, 1)
 		c.Event = "particles doubled, weight halved"
 		m.rebase()
