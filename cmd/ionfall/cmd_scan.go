@@ -20,7 +20,7 @@ core; what is finished is never lost, and the same command continues. Instead of
 commands also take the folder of a scan.`,
 		Subcommands: []*cli.Command{
 			p.scanCheckCommand(), p.scanRunCommand(), p.scanStatusCommand(), p.scanTableCommand(),
-			p.scanSubmitCommand(), p.scanCollectCommand(),
+			p.scanSubmitCommand(), p.scanCollectCommand(), p.scanWindowCommand(), p.scanMapCommand(),
 		},
 	}
 	c.Action = func(*cli.Context) error {

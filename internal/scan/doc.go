@@ -10,6 +10,7 @@
 //	DIR/points.parquet                   a row a point, always whole
 //	DIR/points/point=0007/               results of point 7; .running while it is not whole
 //	DIR/points/point=0007.failed.json    why point 7 cannot be computed
+//	DIR/added.csv, window.parquet        points that a search has added, and what it found
 //
 // # Never lost
 //

@@ -77,7 +77,7 @@ func (f *Folder) identify() error {
 	case is.SHA256 != f.Plan.Fingerprint():
 		return &OtherPlanError{f.Dir, f.Plan.file}
 	}
-	return nil
+	return f.readAdded()
 }
 
 // OtherPlanError says that a folder belongs to another plan.
@@ -105,7 +105,7 @@ func (f *Folder) begin(path string) error {
 			return err
 		}
 	}
-	text, err := json.MarshalIndent(identity{folderVersion, len(p.Points), p.Fingerprint()}, "", "  ")
+	text, err := json.MarshalIndent(identity{folderVersion, p.planned, p.Fingerprint()}, "", "  ")
 	if err != nil {
 		return err
 	}

@@ -20,6 +20,7 @@ type Plan struct {
 	Axes   []Axis
 	Points []Point
 
+	planned int    // points of the plan itself; those after them were added by a search
 	file    string // of the plan
 	folder  string // in which relative names of the base are looked up
 	text    []byte // of the plan
@@ -105,6 +106,7 @@ func load(path, kept string) (*Plan, error) {
 	if err := p.errs.Err(); err != nil {
 		return nil, err
 	}
+	p.planned = len(p.Points)
 	return p, nil
 }
 

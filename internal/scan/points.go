@@ -214,10 +214,10 @@ func unitSuffixes() map[string]unitName {
 // pointName is that of the folder of a point.
 func pointName(number int) string { return fmt.Sprintf("point=%04d", number) }
 
-// Fingerprint identifies the points: a folder takes no other ones.
+// Fingerprint identifies the points of the plan: a folder takes no other ones.
 func (p *Plan) Fingerprint() string {
 	h := sha256.New()
-	for _, point := range p.Points {
+	for _, point := range p.Points[:p.planned] {
 		h.Write(point.Input) // never fails
 		h.Write([]byte{0})
 	}

@@ -8,8 +8,9 @@ import (
 
 const (
 	// priorLength and priorSpread are the median of the prior on a length, in ranges of its input,
-	// and the standard deviation of its logarithm: 95 % between 1/20 and 20 ranges.
-	priorLength, priorSpread = 1.0, 1.5
+	// and the standard deviation of its logarithm: 95 % between a quarter and four ranges. A broader
+	// one takes few samples that happen to lie on a plane for a proof that all is plane.
+	priorLength, priorSpread = 1.0, 0.7
 	// priorAmplitude likewise, in standard deviations of the samples.
 	priorAmplitude, amplitudeSpread = 1.5, 1.5
 	// evaluations of the likelihood a start.
