@@ -217,9 +217,9 @@ func ionfall(t *testing.T, dir string, args ...string) string {
 }
 
 // count is the number of points in a state.
-func count(t *testing.T, dir, plan, state string) int {
+func count(t *testing.T, dir, state string) int {
 	t.Helper()
-	for line := range strings.Lines(ionfall(t, dir, "scan", "status", plan)) {
+	for line := range strings.Lines(ionfall(t, dir, "scan", "status", "p.yaml")) {
 		words := strings.Fields(line)
 		if len(words) > 1 && words[0] == state {
 			n, err := strconv.Atoi(words[1])
@@ -286,11 +286,11 @@ vary:
 		t.Fatalf("got %q", out)
 	}
 	done := func(n int) func() bool {
-		return func() bool { return count(t, dir, "p.yaml", "done") >= n }
+		return func() bool { return count(t, dir, "done") >= n }
 	}
 	c.until(t, "two points are done", 2*time.Minute, done(2))
 	c.killNode(t, "n2")
-	now := count(t, dir, "p.yaml", "done")
+	now := count(t, dir, "done")
 	c.until(t, "the other node goes on", 2*time.Minute, done(min(12, now+2)))
 	if err := exec.Command("scancel", "--user=root").Run(); err != nil {
 		t.Fatal(err)
@@ -299,7 +299,7 @@ vary:
 		out, err := exec.Command("squeue", "-h", "-t", "R,CG", "-w", "n1").Output()
 		return err == nil && len(bytes.TrimSpace(out)) == 0
 	})
-	if left := 12 - count(t, dir, "p.yaml", "done"); left > 0 {
+	if left := 12 - count(t, dir, "done"); left > 0 {
 		ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "10", "--max-running", "3")
 		t.Logf("submitted again with %d points left", left)
 	} else {
@@ -322,7 +322,7 @@ func TestSlurmTimeLimit(t *testing.T) {
 	dir := scanInputs(t, "base: base.yaml\nvary: {numerics.periods: [900000]}\n")
 	ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "1", "--warning", "50")
 	c.until(t, "the point is interrupted", 2*time.Minute, func() bool {
-		return count(t, dir, "p.yaml", "interrupted") == 1
+		return count(t, dir, "interrupted") == 1
 	})
 	c.until(t, "the task is in the queue again", time.Minute, func() bool {
 		out, err := exec.Command("squeue", "-h", "-t", "PD").Output()

@@ -17,6 +17,8 @@ type Map struct {
 	Axes   []Axis   // one or two, across and up
 	Fixed  []string // the other inputs and their values, for the title
 	Points []MapPoint
+	// Scattered says that other inputs vary, too: neighbours on the map must not be joined.
+	Scattered bool
 }
 
 // MapPoint is a point of the scan on a map.
@@ -101,7 +103,12 @@ func (f *Folder) choose(m *Map, against []string, at map[string]string) (
 	}
 	sampled := f.Plan.sampled.method != methodGrid
 	for k, a := range axes {
-		if slices.Contains(shown, k) || sampled && at[a.Path] == "" {
+		if slices.Contains(shown, k) {
+			continue
+		}
+		if sampled && at[a.Path] == "" {
+			m.Scattered = true
+			m.Fixed = append(m.Fixed, a.Path+" varies")
 			continue
 		}
 		if fixed[k], err = f.valueOf(k, at[a.Path]); err != nil {
@@ -157,7 +164,7 @@ type raster struct {
 
 // raster returns the points as a grid, nil if they are none.
 func (m *Map) raster() *raster {
-	if len(m.Axes) != 2 {
+	if len(m.Axes) != 2 || m.Scattered {
 		return nil
 	}
 	r := &raster{}
@@ -193,8 +200,10 @@ func (r *raster) contour(level float64) []segment {
 	for i := range len(r.x) - 1 {
 		for j := range len(r.y) - 1 {
 			corners := [4][3]float64{
-				{r.x[i], r.y[j], r.z[i][j]}, {r.x[i+1], r.y[j], r.z[i+1][j]},
-				{r.x[i+1], r.y[j+1], r.z[i+1][j+1]}, {r.x[i], r.y[j+1], r.z[i][j+1]},
+				{r.x[i], r.y[j], r.z[i][j]},
+				{r.x[i+1], r.y[j], r.z[i+1][j]},
+				{r.x[i+1], r.y[j+1], r.z[i+1][j+1]},
+				{r.x[i], r.y[j+1], r.z[i][j+1]},
 			}
 			var middle [3]float64
 			for _, c := range corners {

@@ -76,6 +76,10 @@ func (m *Map) SVG() ([]byte, error) {
 	if err != nil {
 		return nil, fmt.Errorf("drawing %s: %w", m.Of, err)
 	}
+	// Room for marks and labels at the sides, and for the legend above.
+	width, height := p.X.Max-p.X.Min, p.Y.Max-p.Y.Min
+	p.X.Min, p.X.Max = p.X.Min-0.04*width, p.X.Max+0.1*width
+	p.Y.Min, p.Y.Max = p.Y.Min-0.04*height, p.Y.Max+0.2*height
 	canvas := vgsvg.New(mapWidth, mapHeight)
 	p.Draw(draw.New(canvas))
 	var b bytes.Buffer
@@ -124,7 +128,7 @@ func (m *Map) drawMarks(p *plot.Plot) error {
 		p.Add(s)
 		p.Legend.Add(name, s)
 	}
-	p.Legend.Top = true
+	p.Legend.Top, p.Legend.XOffs = true, -vg.Centimeter
 	return nil
 }
 
@@ -144,7 +148,7 @@ func (m *Map) drawLine(p *plot.Plot) error {
 	var bars errorBars
 	var part plotter.XYs
 	flush := func() error {
-		if len(part) > 1 {
+		if len(part) > 1 && !m.Scattered {
 			line, err := plotter.NewLine(part)
 			if err != nil {
 				return err
