@@ -189,6 +189,9 @@ func (p *Plan) read(root *yaml.Node, kept string) {
 	}
 }
 
+// fileKeys are the input paths that name files.
+func fileKeys() []string { return []string{"gas.library", "drive.trace.file"} }
+
 // readBase reads and checks the base input.
 func (p *Plan) readBase(root, n *yaml.Node, kept string) bool {
 	if n == nil {
@@ -222,14 +225,22 @@ func (p *Plan) readBase(root, n *yaml.Node, kept string) bool {
 		return false
 	}
 	p.origin, p.tree = c, tree
-	if library := lookup(tree, "gas.library"); library != nil && !filepath.IsAbs(library.Value) {
+	changed := false
+	for _, key := range fileKeys() {
+		name := lookup(tree, key)
+		if name == nil || filepath.IsAbs(name.Value) {
+			continue
+		}
 		// The inputs of the points stand elsewhere than the base.
-		full, err := filepath.Abs(filepath.Join(filepath.Dir(path), library.Value))
+		full, err := filepath.Abs(filepath.Join(filepath.Dir(path), name.Value))
 		if err != nil {
-			p.fail(n, "base", n.Value, "an input whose gas library can be found", err.Error())
+			p.fail(n, "base", n.Value, "an input whose files can be found", err.Error())
 			return false
 		}
-		set(tree, "gas.library", &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!str", Value: full})
+		set(tree, key, &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!str", Value: full})
+		changed = true
+	}
+	if changed {
 		if src, err = yaml.Dump(tree, yaml.WithLineWidth(-1)); err != nil {
 			p.fail(n, "base", n.Value, "an input that can be written again", err.Error())
 			return false

@@ -247,6 +247,41 @@ func TestBadPlans(t *testing.T) {
 	}
 }
 
+// Goal: files that the base names are found from the folders of the points, and from a copy of the
+// plan. Method: a gas library and a waveform beside the base, which stands in another folder.
+func TestFilesOfTheBase(t *testing.T) {
+	dir := t.TempDir()
+	inner := filepath.Join(dir, "inputs")
+	if err := os.Mkdir(inner, 0o777); err != nil {
+		t.Fatal(err)
+	}
+	put(t, inner, "base.yaml", strings.Replace(tiny, "tones: [{frequency: 13.56 MHz, amplitude: 200 V}]",
+		"trace: {file: scope.csv, frequency: 13.56 MHz, harmonics: 1}", 1))
+	text := "time_ns,voltage_V\n"
+	for i := range 41 {
+		text += fmt.Sprintf("%.4f,%.3f\n", float64(i)/40/0.01356, 200*math.Cos(2*math.Pi*float64(i)/40))
+	}
+	put(t, inner, "scope.csv", text)
+	p, err := Load(put(t, dir, "small.yaml", "base: inputs/base.yaml\nvary: {gas.pressure: [50 Pa]}\n"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	f := open(t, p, "scan")
+	again, err := Load(f.Dir)
+	if err != nil || again.Fingerprint() != p.Fingerprint() {
+		t.Fatalf("the copy has other points: %v", err)
+	}
+	if _, _, err := again.Prepare(); err != nil {
+		t.Error(err)
+	}
+	_, err = Load(put(t, dir, "small.yaml", "base: inputs/base.yaml\n"+
+		"vary: {drive.trace.file: [scope.csv]}\n"))
+	if err == nil || !strings.Contains(err.Error(), `small.yaml:2:27: drive.trace.file: got "scope.csv"`+
+		", want a whole path") {
+		t.Errorf("got %v", err)
+	}
+}
+
 // Goal: a gas that is not known is told with its place. Method: vary the mixture.
 func TestUnknownGas(t *testing.T) {
 	p := goodPlan(t, "vary:\n  gas.mixture: [{He: 1}, {Hx: 1}]\n")

@@ -8,6 +8,7 @@ import (
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"path/filepath"
 	"strconv"
 
 	"go.yaml.in/yaml/v4"
@@ -100,6 +101,14 @@ func (p *Plan) build(number int, nodes []*yaml.Node) (Point, inputerr.List) {
 		if !set(tree, a.Path, clone(nodes[i])) {
 			return Point{}, inputerr.List{{
 				Key: a.Path, Hint: "the base has no such element to vary: counting is from 0",
+			}}
+		}
+	}
+	for _, key := range fileKeys() {
+		if name := lookup(tree, key); name != nil && !filepath.IsAbs(name.Value) {
+			return Point{}, inputerr.List{{
+				Key: key, Got: found(name),
+				Want: "a whole path, as the inputs of the points stand in folders of their own",
 			}}
 		}
 	}
