@@ -109,7 +109,7 @@ func resultLines(runs []*Run) []line {
 		}
 	}
 	for _, name := range neutralsOf(runs) {
-		label := name + ", fast: "
+		label := strings.Replace(name, "fast_", "fast ", 1) + ": "
 		if name == "all" {
 			label = "fast neutrals: "
 		}

@@ -37,7 +37,7 @@ func (r *Run) asked() []Pair {
 			100*c.Accuracy.IonEnergy, 100*c.Accuracy.IonFlux)},
 	}
 	if len(tones) > 0 {
-		list = append(list, Pair{"drive (amplitude)", strings.Join(tones, " + ")})
+		list = slices.Insert(list, 3, Pair{"drive (amplitude)", strings.Join(tones, " + ")})
 	}
 	return list
 }

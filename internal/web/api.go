@@ -104,7 +104,8 @@ func (s *Server) runs(r *http.Request) ([]*report.Run, error) {
 // runView is all but the figures of one run.
 type runView struct {
 	ID      string        `json:"id"`
-	Running bool          `json:"running"`
+	Running bool          `json:"running"` // not finished
+	Stopped bool          `json:"stopped"`
 	State   any           `json:"state,omitempty"`
 	Sheet   *report.Sheet `json:"sheet"`
 }
@@ -121,7 +122,7 @@ func (s *Server) run(r *http.Request) (any, error) {
 	v := runView{ID: runs[0].Dir, Running: !runs[0].Whole, Sheet: sheet}
 	if v.Running {
 		if item, err := s.catalog.find(v.ID); err == nil {
-			v.State = liveState(item.dir)
+			v.State, v.Stopped = liveState(item.dir), item.Stopped
 		}
 	}
 	return v, nil

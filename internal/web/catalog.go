@@ -30,6 +30,7 @@ type Item struct {
 	ID      string `json:"id"` // path below the viewed folder, with /
 	Kind    string `json:"kind"`
 	Running bool   `json:"running"`
+	Stopped bool   `json:"stopped,omitempty"` // before its end, and nobody works on it
 	Verdict string `json:"verdict,omitempty"`
 	Title   string `json:"title,omitempty"`
 	State   any    `json:"state,omitempty"`
@@ -121,9 +122,19 @@ func (c *catalog) at(id string) (Item, bool) {
 		return Item{ID: id, Kind: kindScan, dir: dir}, true
 	case report.IsRun(dir):
 		_, whole, err := store.Locate(dir)
-		return Item{ID: id, Kind: kindRun, Running: err == nil && !whole, dir: dir}, err == nil
+		item := Item{ID: id, Kind: kindRun, Running: err == nil && !whole, dir: dir}
+		if item.Running && !claimed(dir) {
+			item.Running, item.Stopped = false, true
+		}
+		return item, err == nil
 	}
 	return Item{}, false
+}
+
+// claimed tells whether a process says that it works on a run.
+func claimed(dir string) bool {
+	_, err := os.Stat(dir + ".lock")
+	return err == nil
 }
 
 // find looks an ID of a request up. It is compared with those of the list and never used as a
@@ -177,7 +188,10 @@ func (c *catalog) describe(item *Item) {
 		return
 	}
 	item.Verdict, item.Title = r.Verdict(), r.Title()
-	if item.Running {
+	if item.Stopped {
+		item.Verdict = "stopped"
+	}
+	if item.Running || item.Stopped {
 		item.State = liveState(item.dir)
 	}
 }

@@ -14,6 +14,7 @@ import (
 // watched is what a change of the results shows in.
 type watched struct {
 	running bool
+	stopped bool
 	points  int
 	stamp   time.Time // of the files that say how far it is
 }
@@ -70,9 +71,9 @@ func (s *Server) look() map[string]watched {
 }
 
 func lookAt(item Item) watched {
-	w := watched{running: item.Running}
+	w := watched{running: item.Running, stopped: item.Stopped}
 	names := []string{filepath.Join(item.dir, "summary.json")}
-	if item.Running {
+	if item.Running || item.Stopped {
 		names = []string{filepath.Join(item.dir+runningSuffix, "state.json")}
 	}
 	if item.Kind == kindScan {

@@ -87,7 +87,7 @@ function receive(message) {
   if (where === "") showList(true);
   else if (where === "run" && now) {
     const was = before.get(id);
-    if (was && was.running && !now.running) show();
+    if (was && (was.running !== now.running || was.stopped !== now.stopped)) show();
     else if (now.running) document.dispatchEvent(new CustomEvent("progress", { detail: now }));
   } else if (where === "scan" && now && before.get(id)) show(true);
 }
@@ -97,7 +97,7 @@ const route = () => {
   return [where, ...ids.split("&").filter(Boolean).map(decodeURIComponent)];
 };
 
-export const markOf = (verdict) => ({ ok: "✓ ok", warn: "! warn", fail: "✗ FAIL", unfinished: "… running" })[verdict] || (verdict ? `? ${verdict}` : "");
+export const markOf = (verdict) => ({ ok: "✓ ok", warn: "! warn", fail: "✗ FAIL", unfinished: "… running", stopped: "‖ stopped" })[verdict] || (verdict ? `? ${verdict}` : "");
 export const runLink = (id) => `#/run/${encodeURIComponent(id)}`;
 
 function title(text) {
@@ -160,7 +160,7 @@ function showList(update = false) {
     make("th", { scope: "row" }, make("a", { href: `#/${item.kind}/${encodeURIComponent(item.id)}` }, item.id)),
     make("td", {}, item.kind === "scan" ? `scan, ${item.points || 0} points` : item.title || ""),
     make("td", {}, make("span", { class: "pill" }, item.kind === "scan" ? "" : markOf(item.verdict))),
-    make("td", {}, item.running ? stateText(item.state) : ""));
+    make("td", {}, item.running || item.stopped ? stateText(item.state) : ""));
   const empty = state.items.length ? null : make("p", {}, "No results here yet. They appear by themselves.");
   main.replaceChildren(...[
     title("Results"),
@@ -328,9 +328,11 @@ async function showRun(id, fresh) {
     make("button", { type: "button", onclick: () => { state.chosen.add(id); location.hash = "#/"; } }, "Compare with others"),
     v.running ? null : make("button", { type: "button", onclick: async () => save((await api(`/api/report?id=${encodeURIComponent(id)}`)).page, `${r.Name}.html`, "text/html") }, "Save the report"),
     state.session.runs ? make("a", { href: `#/new/${encodeURIComponent(id)}` }, "Start another like it") : null);
+  if (v.stopped) r.Verdict = "stopped";
   const head = [title(r.Title), verdictBox(r), tools];
   if (v.running) {
-    main.replaceChildren(...head, progressBox(id, v.state, fresh), definition(r.Asked), make("p", {}, "Figures appear when the run is finished."));
+    const stopped = v.stopped ? make("p", { class: "problem" }, `This run stopped before its end: ${stateText(v.state)}. Nobody works on it; continue it with: ionfall resume ${id}`) : null;
+    main.replaceChildren(...head, stopped || progressBox(id, v.state, fresh), definition(r.Asked), make("p", {}, "Figures appear when the run is finished."));
     return;
   }
   const failed = r.Verdict === "fail";

@@ -218,7 +218,10 @@ export class Plot {
   }
 
   *xs() {
-    for (const s of this.f.series) yield* s.x;
+    for (const s of this.f.series) {
+      yield* s.x;
+      if (s.steps && s.width && s.x.length) yield Math.max(0, s.x[0] - s.width[0] / 2);
+    }
   }
 
   *ys() {
