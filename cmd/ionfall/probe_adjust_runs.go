@@ -1,11 +1,11 @@
 package main
 
 import (
-	"bytes"
 	"context"
+	"crypto/sha256"
+	"encoding/hex"
 	"errors"
 	"fmt"
-	"os"
 	"path/filepath"
 	"runtime"
 
@@ -58,10 +58,9 @@ func (a *adjustment) runAll(ctx context.Context, places [][]float64, say func(st
 	group.SetLimit(parallel)
 	for i, place := range places {
 		group.Go(func() error {
-			dir := filepath.Join(a.points(), fmt.Sprintf("point=%04d", first+i+1))
-			done, err := a.runPoint(ctx, dir, place)
+			done, err := a.runPoint(ctx, place)
 			if err != nil {
-				return fmt.Errorf("%s: %w", dir, err)
+				return err
 			}
 			points[i] = *done
 			say(fmt.Sprintf("run %d done", first+i+1))
@@ -76,24 +75,12 @@ func (a *adjustment) runAll(ctx context.Context, places [][]float64, say func(st
 }
 
 // runPoint makes a run, goes on with it, or finds it again.
-func (a *adjustment) runPoint(ctx context.Context, dir string, place []float64) (
-	*probe.Point, error,
-) {
-	src, err := probe.With(a.resolved, a.problem.Inputs, a.problem.Values(place))
+func (a *adjustment) runPoint(ctx context.Context, place []float64) (*probe.Point, error) {
+	src, dir, err := a.inputAt(place)
 	if err != nil {
 		return nil, err
 	}
-	folder, whole, err := store.Locate(dir)
-	if err == nil {
-		kept, readErr := os.ReadFile(filepath.Join(folder, "input.yaml"))
-		if readErr != nil {
-			return nil, readErr
-		}
-		if !bytes.Equal(kept, src) {
-			return nil, usagef("%s holds runs of another adjustment: choose another --out, or remove it",
-				a.points())
-		}
-	}
+	_, whole, err := store.Locate(dir)
 	o := run.Options{Out: dir, Cores: 1, Version: a.version}
 	switch {
 	case err == nil && whole:
@@ -105,10 +92,24 @@ func (a *adjustment) runPoint(ctx context.Context, dir string, place []float64) 
 			_, _, err = run.Run(ctx, plan, o)
 		}
 	}
-	if err != nil {
-		return nil, err
+	if err == nil {
+		var point *probe.Point
+		if point, err = a.pointOf(dir, place); err == nil {
+			return point, nil
+		}
 	}
-	return a.pointOf(dir, place)
+	return nil, fmt.Errorf("%s: %w", dir, err)
+}
+
+// inputAt is the input of a run, and its folder: named after the input, so that a run is found
+// again whatever it was made for.
+func (a *adjustment) inputAt(place []float64) (src []byte, dir string, err error) {
+	src, err = probe.With(a.resolved, a.problem.Inputs, a.problem.Values(place))
+	if err != nil {
+		return nil, "", err
+	}
+	sum := sha256.Sum256(src)
+	return src, filepath.Join(a.points(), "run="+hex.EncodeToString(sum[:6])), nil
 }
 
 // pointOf reads what a run says about data and predictions.

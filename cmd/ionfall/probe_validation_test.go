@@ -100,7 +100,10 @@ func TestValidationClosedLoop(t *testing.T) {
 	}
 	inside := 0
 	for i, place := range hidden {
-		point := filepath.Join(a.points(), fmt.Sprintf("point=%04d", design+i+1))
+		_, point, err := a.inputAt(place)
+		if err != nil {
+			t.Fatal(err)
+		}
 		file := filepath.Join(dir, fmt.Sprintf("%d", i), "probe.yaml")
 		if err := drawFor(a, point, file, uint64(i+1)); err != nil {
 			t.Fatal(err)
@@ -114,7 +117,11 @@ func TestValidationClosedLoop(t *testing.T) {
 			t.Fatal(err)
 		}
 		for k := range design {
-			p, err := one.pointOf(filepath.Join(a.points(), fmt.Sprintf("point=%04d", k+1)), places[k])
+			_, dir, err := a.inputAt(places[k])
+			if err != nil {
+				t.Fatal(err)
+			}
+			p, err := one.pointOf(dir, places[k])
 			if err != nil {
 				t.Fatal(err)
 			}

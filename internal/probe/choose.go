@@ -10,6 +10,9 @@ import (
 type candidate struct {
 	kind string
 	rf   bool
+	// straight says that the current goes on straight above the plasma potential, as that of a tip
+	// with a thick sheath around it or near its holder may, and not as orbital motion has it.
+	straight bool
 }
 
 const (
@@ -76,6 +79,9 @@ func fitAll(d *cleaned, g *guess, setup *Setup) ([]scored, *data, error) {
 	return list, used, nil
 }
 
+// triedStraight is how many of the best are also tried with a straight rise above the knee.
+const triedStraight = 3
+
 // hopeless is how much larger chi-square of a shape may be than that of the best, for it to be
 // tried with RF, too.
 const hopeless = 4
@@ -93,7 +99,7 @@ func fitKinds(d *data, g *guess, setup *Setup, knee, temperature float64, kinds 
 		if !math.IsNaN(setup.RF) {
 			start[parRF] = setup.RF * setup.RF
 		}
-		c := candidate{kind, false}
+		c := candidate{kind: kind}
 		if f, err := m.fit(start, freeOf(c), d); err == nil { // others may do better
 			list = append(list, scored{candidate: c, fitted: f})
 			least = math.Min(least, f.chi2)
@@ -105,13 +111,23 @@ func fitKinds(d *data, g *guess, setup *Setup, knee, temperature float64, kinds 
 		}
 		start := slices.Clone(s.p)
 		start[parRF] = math.Pow(temperature/2, 2)
-		c := candidate{s.kind, true}
+		c := candidate{kind: s.kind, rf: true}
 		if f, err := s.model.fit(start, freeOf(c), d); err == nil {
 			list = append(list, scored{candidate: c, fitted: f})
 		}
 	}
 	if len(list) == 0 {
 		return nil, errors.New("no form of characteristic could be fitted")
+	}
+	rank(list, atFloor)
+	for _, s := range list[:min(len(list), triedStraight)] {
+		start := slices.Clone(s.p)
+		start[parStraight] = 1
+		c := s.candidate
+		c.straight = true
+		if f, err := s.model.fit(start, freeOf(c), d); err == nil {
+			list = append(list, scored{candidate: c, fitted: f})
+		}
 	}
 	rank(list, atFloor)
 	return list, nil

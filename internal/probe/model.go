@@ -14,6 +14,7 @@ const (
 	parIon               // ln of the ion density
 	parIonSlope          // power of chi on top of theory
 	parSaturation        // enhancement above the plasma potential over that of orbital motion
+	parStraight          // 1: the enhancement is straight; 0: that of orbital motion
 	parRF                // square of the residual RF amplitude [V2]
 	parShape             // kappa, or ln(warm/cold - 1)
 	parShape2            // logit of the part that is warm; the free form has more
@@ -78,6 +79,7 @@ type characteristic struct {
 	density, potential     float64 // [1/m3], [V]
 	ionDensity             float64 // [1/m3]
 	ionSlope, saturation   float64
+	straight               float64
 	rf                     float64 // amplitude [V]
 	rho                    float64
 	electrons, ionPrefixed float64 // currents that the shapes multiply [A]
@@ -87,7 +89,8 @@ func (m *model) characteristic(p []float64) *characteristic {
 	c := &characteristic{
 		shape: m.shape(p), density: math.Exp(p[parDensity]), potential: p[parPotential],
 		ionDensity: math.Exp(p[parIon]), ionSlope: p[parIonSlope], saturation: p[parSaturation],
-		rf: math.Sqrt(math.Max(0, p[parRF])),
+		straight: p[parStraight],
+		rf:       math.Sqrt(math.Max(0, p[parRF])),
 	}
 	c.complete(m.setup)
 	return c
@@ -104,7 +107,9 @@ func (c *characteristic) complete(setup *Setup) {
 func (c *characteristic) steady(v float64) float64 {
 	u := c.potential - v
 	if u <= 0 {
-		return c.electrons * (1 + c.saturation*(c.shape.enhanced(-u)-1))
+		curved, straight := c.shape.enhanced(-u)-1, -u/c.shape.temperature
+		more := c.saturation * ((1-c.straight)*curved + c.straight*straight)
+		return c.electrons * (1 + more)
 	}
 	return c.electrons*c.shape.part(u) - c.ions(v)
 }

@@ -100,14 +100,20 @@ func (p *Problem) misfit(s *surrogates, place []float64) (chi2, logLikelihood fl
 	n := len(p.Data)
 	covariance := mat.NewSymDense(n, nil)
 	rest := mat.NewVecDense(n, nil)
+	// In units of the errors: densities and volts differ by more powers of ten than a double has.
+	scale := make([]float64, n)
+	var variances float64
 	for i := range n {
 		q := s.data[i].At(place)
-		rest.SetVec(i, q.Mean-p.Data[i].Value)
-		for j := i; j < n; j++ {
-			covariance.SetSym(i, j, p.Covariance[i][j])
-		}
 		model := p.ModelError * p.Data[i].Value
-		covariance.SetSym(i, i, covariance.At(i, i)+q.StdErr*q.StdErr+model*model)
+		extra := q.StdErr*q.StdErr + model*model
+		scale[i] = math.Sqrt(p.Covariance[i][i] + extra)
+		variances += 2 * math.Log(scale[i])
+		rest.SetVec(i, (q.Mean-p.Data[i].Value)/scale[i])
+		for j := range i {
+			covariance.SetSym(i, j, p.Covariance[i][j]/(scale[i]*scale[j]))
+		}
+		covariance.SetSym(i, i, 1)
 	}
 	var c mat.Cholesky
 	if !c.Factorize(covariance) {
@@ -118,7 +124,7 @@ func (p *Problem) misfit(s *surrogates, place []float64) (chi2, logLikelihood fl
 		return math.Inf(1), math.Inf(-1)
 	}
 	chi2 = mat.Dot(rest, &solved)
-	return chi2, -(chi2 + c.LogDet()) / 2
+	return chi2, -(chi2 + c.LogDet() + variances) / 2
 }
 
 // Solve samples the posterior by importance sampling: the first round covers the priors, later ones
@@ -138,6 +144,10 @@ func (p *Problem) Solve() (*Posterior, error) {
 			best = w
 		}
 		cover = best.cover()
+	}
+	if math.IsInf(out.BestChi2, 1) {
+		return nil, errors.New("the errors of the data contradict each other: their covariance has no " +
+			"inverse")
 	}
 	out.Effective = best.effective()
 	freedom := float64(max(1, len(p.Data)-len(p.Inputs)))

@@ -172,3 +172,23 @@ func TestFindings(t *testing.T) {
 		}
 	}
 }
+
+// Goal: units do not matter, though densities and volts differ by many powers of ten. Method: the
+// linear problem with one of the data, its error and its simulations in units of 1e-16.
+func TestPosteriorUnits(t *testing.T) {
+	p := linearProblem([][2]float64{{1, 0.5}, {-0.5, 1}}, []float64{0.6, 0.2}, 0.05)
+	const unit = 1e16
+	p.Data[0].Value, p.Data[0].SE = p.Data[0].Value*unit, p.Data[0].SE*unit
+	p.Covariance[0][0] *= unit * unit
+	for i := range p.Points {
+		q := &p.Points[i].Simulated[0]
+		q.Value, q.SE = q.Value*unit, q.SE*unit
+	}
+	post, err := p.Solve()
+	if err != nil {
+		t.Fatal(err)
+	}
+	mean, sd := Moments(post.Draws, 0)
+	near(t, "mean", mean, (0.6-0.5*0.2)/1.25, 0.02)
+	near(t, "width", sd, 0.05/math.Sqrt(1.25), 0.12)
+}

@@ -36,11 +36,14 @@ func look(d *cleaned) (*guess, error) {
 			best = k
 		}
 	}
+	rough := firstTemperature(grid, smooth, best, g.ions)
+	if at, ok := bendEnds(d, grid, values, rough); ok {
+		best, g.hasKnee = at, true
+	}
 	g.knee, g.kneeCurrent = grid[best], smooth[best]
 	if !(slope[best] > 0 && g.kneeCurrent > 0) {
 		return nil, errors.New("the current does not rise with the voltage")
 	}
-	g.hasKnee = fallsAfter(slope, best, half, filter.Gain(1)*d.sigma[min(best, n-1)]/g.spacing)
 	crossing := false
 	for k := 1; k <= best; k++ {
 		if smooth[k-1] <= 0 && smooth[k] > 0 {
@@ -55,15 +58,45 @@ func look(d *cleaned) (*guess, error) {
 	return g, nil
 }
 
-// fallsAfter reports whether the slope decreases above the knee by a tenth and more than chance.
-func fallsAfter(slope []float64, best, half int, noise float64) bool {
-	lower := 0
-	for k := best + 1; k < len(slope); k++ {
-		if slope[k] < 0.85*slope[best] && slope[best]-slope[k] > 4*noise {
-			lower++
+const (
+	// bendWindow is the width, in temperatures, over which the knee is looked for.
+	bendWindow = 1.6
+	// bendGone is the part of its maximum below which the second derivative is gone.
+	bendGone = 0.35
+)
+
+// bendEnds finds the knee: where the second derivative, after a maximum beyond doubt, has fallen to
+// half, and stays small up to the end. Below the plasma potential it only grows.
+func bendEnds(d *cleaned, grid, values []float64, temperature float64) (int, bool) {
+	spacing := grid[1] - grid[0]
+	half := min(max(int(bendWindow*temperature/2/spacing), 2), (len(grid)-1)/6)
+	filter, err := NewSavitzkyGolay(half, 2)
+	if err != nil {
+		return 0, false
+	}
+	second := filter.Apply(values, 2, spacing)
+	top := half
+	for k := half; k < len(grid)-half; k++ {
+		if second[k] > second[top] {
+			top = k
 		}
 	}
-	return lower >= max(3, half)
+	at := top
+	for at < len(grid)-half && second[at] > second[top]/2 {
+		at++
+	}
+	from := at + half/2
+	if from >= len(grid)-max(half/2, 2) {
+		return 0, false
+	}
+	mean := 0.0
+	for _, x := range second[from : len(grid)-1] {
+		mean += x / float64(len(grid)-1-from)
+	}
+	sigma := math.Hypot(d.floor, d.relative*values[at])
+	noise := filter.Gain(2) * sigma / (spacing * spacing)
+	return at, second[top] > 4*noise && mean < bendGone*second[top] &&
+		second[top]-mean > 4*noise
 }
 
 // firstTemperature is from the logarithm of the electron current between a twentieth and two thirds

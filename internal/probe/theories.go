@@ -87,7 +87,7 @@ const chi2At95 = 2.706
 // profile of chi-square over it.
 func (r *reduction) rfBound() {
 	best := &r.candidates[0]
-	free := freeOf(candidate{best.kind, false})
+	free := freeOf(candidate{kind: best.kind})
 	t := r.result.fit.shape.temperature
 	limit := best.chi2/(r.scale*r.scale) + chi2At95
 	profile := func(v1 float64) float64 {
