@@ -36,7 +36,8 @@ func (p *program) scanMap(c *cli.Context) error {
 	v := values{c: c}
 	of, file := v.text("of", "the name of a result"), v.text("svg", "the name of a file")
 	against := v.text("against", "the names of one or two inputs")
-	f, err := v.begunScan("ionfall scan map scans/pressure --of ion_flux_m2ps.grounded.all --svg f.svg")
+	f, err := v.begunScan("ionfall scan map scans/pressure --of ion_flux_m2ps.grounded.all " +
+		"--svg f.svg")
 	if err != nil {
 		return err
 	}

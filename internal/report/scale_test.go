@@ -9,8 +9,15 @@ import (
 // number's spacing, infinite and undefined ends.
 func TestTicksEnd(t *testing.T) {
 	for _, r := range [][2]float64{
-		{0, 1}, {0, 0}, {-1, 1}, {1e17, math.Nextafter(1e17, 2e17)}, {1e-320, 1e-310}, {0, math.Inf(1)},
-		{math.NaN(), math.NaN()}, {5, 1}, {1e-300, 1e300},
+		{0, 1},
+		{0, 0},
+		{-1, 1},
+		{1e17, math.Nextafter(1e17, 2e17)},
+		{1e-320, 1e-310},
+		{0, math.Inf(1)},
+		{math.NaN(), math.NaN()},
+		{5, 1},
+		{1e-300, 1e300},
 	} {
 		if list, _ := linearTicks(r[0], r[1], 5); len(list) > mostTicks {
 			t.Errorf("%v: %d marks", r, len(list))

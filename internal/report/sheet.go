@@ -65,7 +65,8 @@ func newRunSheet(r *Run) (RunSheet, error) {
 	}
 	s := RunSheet{
 		Name: r.Name, Title: r.Title(), Verdict: r.Verdict(), Input: r.Input,
-		References: r.Summary.References, Asked: r.asked(), Headline: r.headlines(), Judgement: r.judgement(),
+		References: r.Summary.References, Asked: r.asked(), Headline: r.headlines(),
+		Judgement:  r.judgement(),
 		Indicators: indicators, Provenance: flatPairs("", r.Summary.Provenance),
 	}
 	for _, c := range r.Summary.Checks {

@@ -36,7 +36,9 @@ func (p MapPoint) Sound() bool {
 
 // Map takes a result from the table of points. against names one or two axes; at gives the texts of
 // values of others, for those left out the value that most points have.
-func (f *Folder) Map(t *table.Table, of string, against []string, at map[string]string) (*Map, error) {
+func (f *Folder) Map(t *table.Table, of string, against []string, at map[string]string) (
+	*Map, error,
+) {
 	m := &Map{Of: of, Unit: table.UnitOf(of)}
 	value, err := t.Floats(of)
 	if err != nil {
