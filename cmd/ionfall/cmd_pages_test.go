@@ -92,6 +92,13 @@ func TestLauncherRefuses(t *testing.T) {
 	if err := l.Check([]byte("gap: 4\n")); err == nil || !strings.Contains(err.Error(), ":1:6: gap") {
 		t.Errorf("wrong input: %v", err)
 	}
+	plan := []byte("base: case.yaml\nvary: {gap: [2 cm, 3]}\n")
+	if err := l.Check(plan); err == nil || !strings.Contains(err.Error(), "case.yaml: no such") {
+		t.Errorf("wrong plan: %v", err)
+	}
+	if left, err := filepath.Glob(filepath.Join(dir, ".plan-*")); err != nil || len(left) > 0 {
+		t.Errorf("left behind: %v, %v", left, err)
+	}
 	if err := l.Start([]byte("x"), "a"); err == nil || !strings.Contains(err.Error(), "already") {
 		t.Errorf("existing results: %v", err)
 	}

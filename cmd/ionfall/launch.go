@@ -1,15 +1,18 @@
 package main
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"io/fs"
 	"os"
 	"os/exec"
 	"path/filepath"
+	"strings"
 	"sync/atomic"
 
 	"ionfall/internal/run"
+	"ionfall/internal/scan"
 	"ionfall/internal/store"
 )
 
@@ -34,9 +37,35 @@ func newLauncher(folder string) (*launcher, error) {
 
 // Check returns what is wrong with an input, with its places.
 func (l *launcher) Check(input []byte) error {
+	if isPlan(input) {
+		return l.checkPlan(input)
+	}
 	// Folders that the input names are relative to it, and it will lie in this one.
 	_, err := run.PrepareBytes(filepath.Join(l.folder, "input.yaml"), input)
 	return err
+}
+
+// isPlan tells the plan of a scan from the input of a run: only a plan has a base.
+func isPlan(input []byte) bool {
+	return bytes.HasPrefix(input, []byte("base:")) || bytes.Contains(input, []byte("\nbase:"))
+}
+
+// checkPlan reads a plan where it will lie, as what it names is relative to that.
+func (l *launcher) checkPlan(input []byte) error {
+	f, err := os.CreateTemp(l.folder, ".plan-*.yaml")
+	if err != nil {
+		return fmt.Errorf("checking the plan: %w", err)
+	}
+	_, err = f.Write(input)
+	err = errors.Join(err, f.Close())
+	if err == nil {
+		_, err = scan.Load(f.Name())
+	}
+	if err != nil {
+		text := strings.ReplaceAll(err.Error(), f.Name(), filepath.Join(l.folder, "plan.yaml"))
+		err = errors.New(text)
+	}
+	return errors.Join(err, os.Remove(f.Name()))
 }
 
 // Start keeps the input beside the results that it will have and runs it.
@@ -64,7 +93,11 @@ func (l *launcher) Start(input []byte, name string) error {
 	if err != nil {
 		return errors.Join(fmt.Errorf("starting %s: %w", name, err), os.Remove(file))
 	}
-	child := exec.Command(l.program, "run", file, "--out", out)
+	args := []string{"run", file, "--out", out}
+	if isPlan(input) {
+		args = append([]string{"scan"}, args...)
+	}
+	child := exec.Command(l.program, args...)
 	child.Dir, child.Stdout, child.Stderr = l.folder, log, log
 	detach(child)
 	err = errors.Join(child.Start(), log.Close())

@@ -42,9 +42,9 @@ type ScanPoint struct {
 	Status  string `json:"status"`
 }
 
-// IsScan tells a scan by its plan or its table.
+// IsScan tells a scan by its table or its own record; a plan alone may lie in any folder.
 func IsScan(dir string) bool {
-	for _, name := range []string{PointsTable, "plan.yaml"} {
+	for _, name := range []string{PointsTable, "scan.json"} {
 		if info, err := os.Stat(filepath.Join(dir, name)); err == nil && info.Mode().IsRegular() {
 			return true
 		}
@@ -186,6 +186,7 @@ func (s *Scan) Figures() []Figure {
 				to.X, to.Y = append(to.X, input.Values[i]), append(to.Y, result.Values[i])
 				to.SE = append(to.SE, result.SE[i])
 			}
+			f.X.From, f.X.To = padded(input.Values)
 			f.Series = append(f.Series, sound)
 			if len(failed.X) > 0 {
 				f.Series = append(f.Series, failed)
@@ -197,6 +198,17 @@ func (s *Scan) Figures() []Figure {
 		}
 	}
 	return list
+}
+
+// padded is the range of an input with some room, so that no point lies on the frame.
+func padded(v Numbers) (low, high float64) {
+	low, high = rangeOf(Axis{}, func(visit func(float64)) {
+		for _, x := range v {
+			visit(x)
+		}
+	}, false)
+	room := 0.05 * (high - low)
+	return low - room, high + room
 }
 
 // scanSheet is what the template of a scan is filled with.

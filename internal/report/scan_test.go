@@ -2,6 +2,7 @@ package report
 
 import (
 	"bytes"
+	"os"
 	"path/filepath"
 	"regexp"
 	"strings"
@@ -69,7 +70,12 @@ func TestBadScans(t *testing.T) {
 	if _, err := OpenScan(t.TempDir()); err == nil {
 		t.Error("an empty folder is taken for a scan")
 	}
-	if IsScan(t.TempDir()) {
-		t.Error("an empty folder looks like a scan")
+	dir := t.TempDir()
+	plan := filepath.Join(dir, "plan.yaml")
+	if err := os.WriteFile(plan, []byte("base: x.yaml\n"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if IsScan(dir) {
+		t.Error("a folder with a plan alone looks like a scan")
 	}
 }

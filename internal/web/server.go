@@ -14,7 +14,7 @@ import (
 type Launcher interface {
 	// Check returns what is wrong with an input, as the command line would say it.
 	Check(input []byte) error
-	// Start begins a run or scan with the input in a folder of that name below the viewed one
+	// Start begins a run, or a scan, with the input in a folder of that name below the viewed one
 	// and returns when it has begun.
 	Start(input []byte, name string) error
 }

@@ -85,6 +85,7 @@ function receive(message) {
   const [where, id] = route();
   const now = state.items.find((i) => i.id === id);
   if (where === "") showList(true);
+  else if (now && !before.has(id)) show(); // it has begun
   else if (where === "run" && now) {
     const was = before.get(id);
     if (was && (was.running !== now.running || was.stopped !== now.stopped)) show();

@@ -75,7 +75,10 @@ export class Scale {
     const p = Math.floor(Math.log10(Math.max(Math.abs(this.low), Math.abs(this.high))));
     const shift = p >= 4 || p <= -3 ? p : 0;
     const places = Math.max(0, Math.ceil(-Math.log10(step / 10 ** shift) - 1e-9));
-    for (let k = Math.ceil(this.low / step - 1e-9); k * step <= this.high + 1e-9 * step; k++) {
+    const start = Math.ceil(this.low / step - 1e-9);
+    for (let i = 0; i < 100; i++) {
+      const k = start + i; // of large k, k + 1 may be no other number
+      if (!(k * step <= this.high + 1e-9 * step)) break;
       const text = k === 0 ? "0" : ((k * step) / 10 ** shift).toFixed(places).replace("-", "−");
       list.push([k * step, text]);
     }

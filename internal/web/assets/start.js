@@ -22,11 +22,11 @@ export async function showStart(main, like, title) {
     if (answer.problem) tell(answer.problem);
     else {
       tell("", "Started.");
-      location.hash = runLink(answer.id);
+      location.hash = /^base:/m.test(input.value) ? `#/scan/${encodeURIComponent(answer.id)}` : runLink(answer.id);
     }
   });
-  main.replaceChildren(title("Start a run"),
-    make("p", { id: "input-help" }, "Edit the input; it is checked as on the command line. The run goes on when this page or the viewer is closed."),
+  main.replaceChildren(title("Start a run or a scan"),
+    make("p", { id: "input-help" }, "Edit the input of a run, or the plan of a scan; it is checked as on the command line. What is started goes on when this page or the viewer is closed."),
     make("label", { for: "input" }, "Input"), input,
     make("div", { class: "choose" }, make("label", {}, "Name of the results folder ", name),
       make("button", { type: "button", onclick: check }, "Check"), make("button", { type: "button", onclick: start }, "Start")), said);
