@@ -102,8 +102,9 @@ func report(f *scan.Folder, r *scan.Report, accuracy float64, dir string) ([]byt
 	}
 	speed := moves / r.Elapsed.Seconds()
 	var b bytes.Buffer
-	fmt.Fprintf(&b, "# Scan\n\nWritten by `go run ./bench/scan -write` on %s: %s/%s, %d processors.\n\n",
-		time.Now().UTC().Format(time.DateOnly), runtime.GOOS, runtime.GOARCH, runtime.NumCPU())
+	fmt.Fprintf(&b, "# Scan\n\nWritten by `go run ./bench/scan -write` on %s: %s/%s, "+
+		"%d processors.\n\n", time.Now().UTC().Format(time.DateOnly), runtime.GOOS,
+		runtime.GOARCH, runtime.NumCPU())
 	fmt.Fprintf(&b, "Argon, 4 pressures x 5 amplitudes x 3 gaps, accuracy %g %%, a point a core.\n\n",
 		accuracy)
 	fmt.Fprintf(&b, "| quantity | value |\n|---|---|\n| points done | %d of %d |\n", r.Done, r.Total)
@@ -151,7 +152,9 @@ func processes(f *scan.Folder, dir string) (speed float64, same int, err error) 
 	return speed, same, errors.Join(errs...)
 }
 
-func process(f *scan.Folder, program, dir string, number int) (speed float64, same bool, err error) {
+func process(f *scan.Folder, program, dir string, number int) (
+	speed float64, same bool, err error,
+) {
 	result := filepath.Join(dir, fmt.Sprintf("alone-%d", number))
 	c := exec.Command(program, "run", filepath.Join(f.PointDir(number), "input.yaml"), "--out", result,
 		"--cores", "1", "--quiet")
