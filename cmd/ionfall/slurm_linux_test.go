@@ -2,7 +2,6 @@ package main
 
 import (
 	"bytes"
-	"errors"
 	"fmt"
 	"net"
 	"os"
@@ -198,24 +197,6 @@ func (c *cluster) until(t *testing.T, what string, limit time.Duration, ok func(
 	}
 }
 
-// ionfall runs the program and returns what it prints.
-func ionfall(t *testing.T, dir string, args ...string) string {
-	t.Helper()
-	c := exec.Command(os.Getenv(binaryVariable), args...)
-	c.Dir = dir
-	var stderr bytes.Buffer
-	c.Stderr = &stderr
-	out, err := c.Output()
-	if err != nil {
-		var exit *exec.ExitError
-		if !errors.As(err, &exit) {
-			t.Fatal(err)
-		}
-		t.Fatalf("ionfall %s: %v\n%s%s", strings.Join(args, " "), err, out, stderr.Bytes())
-	}
-	return string(out)
-}
-
 // count is the number of points in a state.
 func count(t *testing.T, dir, state string) int {
 	t.Helper()
@@ -231,24 +212,6 @@ func count(t *testing.T, dir, state string) int {
 	}
 	t.Fatalf("no line for %s", state)
 	return 0
-}
-
-// scanInputs writes a base of small cost, and a plan.
-func scanInputs(t *testing.T, plan string) string {
-	t.Helper()
-	dir := t.TempDir()
-	base := `gap: 20 mm
-gas: {pressure: 60 Pa, mixture: {He: 1}}
-drive: {tones: [{frequency: 13.56 MHz, amplitude: 200 V}]}
-initial: {density: 8e14 /m3, electron_temperature: 5 eV}
-numerics: {cells: 32, steps_per_period: 480, particles_per_cell: 40, ion_substeps: 4, periods: 24}
-`
-	for name, text := range map[string]string{"base.yaml": base, "p.yaml": plan} {
-		if err := os.WriteFile(filepath.Join(dir, name), []byte(text), 0o666); err != nil {
-			t.Fatal(err)
-		}
-	}
-	return dir
 }
 
 // withoutCost is a table without the columns that a second run does not repeat.

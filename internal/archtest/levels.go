@@ -23,6 +23,7 @@ func Levels() Rules {
 			"bench/fastpath":      7,
 			"bench/benchmark":     7,
 			"bench/validation":    7,
+			"bench/scan":          7,
 			"examples":            7,
 			"internal/scan":       6,
 			"internal/run":        5,

@@ -232,16 +232,3 @@ func (p *Plan) Fingerprint() string {
 	}
 	return hex.EncodeToString(h.Sum(nil))
 }
-
-// blame gives an error about the input of a point its place in the plan.
-func (p *Plan) blame(err error, point Point) error {
-	var list inputerr.List
-	if !errors.As(err, &list) {
-		return fmt.Errorf("point %d: %w", point.Number, err)
-	}
-	nodes := make([]*yaml.Node, len(p.Axes))
-	for i := range nodes {
-		nodes[i] = &yaml.Node{}
-	}
-	return p.placed(list, point.Number, nodes)
-}

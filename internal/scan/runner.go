@@ -7,7 +7,6 @@ import (
 	"io/fs"
 	"log/slog"
 	"os"
-	"path/filepath"
 	"runtime"
 	"runtime/debug"
 	"sync"
@@ -136,21 +135,6 @@ func (r *runner) prepare() error {
 		}
 	}
 	return nil
-}
-
-// Prepare checks all points with the data of their gases. It returns, with them, the processor time
-// that each is expected to take [s].
-func (p *Plan) Prepare() ([]*run.Plan, []float64, error) {
-	plans, cost := make([]*run.Plan, len(p.Points)), make([]float64, len(p.Points))
-	for i, point := range p.Points {
-		prepared, err := run.PrepareBytes(filepath.Join(p.folder, pointName(point.Number)+".yaml"),
-			point.Input)
-		if err != nil {
-			return nil, nil, p.blame(err, point)
-		}
-		plans[i], cost[i] = prepared, prepared.ExpectedCPU()
-	}
-	return plans, cost, nil
 }
 
 // work lets the workers run to their end.

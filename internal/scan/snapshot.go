@@ -70,8 +70,10 @@ func (r *runner) left() Left {
 	for i, s := range r.running {
 		seconds := s.Remaining.Seconds()
 		if s.Remaining < 0 {
+			// A run that takes longer than expected is likely to go on for a while.
 			expected, _ := r.forecast.seconds(i)
-			seconds = max(0.1*expected, expected-s.Elapsed.Seconds())
+			elapsed := s.Elapsed.Seconds()
+			seconds = max(0.1*expected, expected-elapsed, 0.3*elapsed)
 		}
 		running = append(running, seconds)
 	}
