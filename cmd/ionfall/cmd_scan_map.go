@@ -11,9 +11,10 @@ import (
 
 func (p *program) scanMapCommand() *cli.Command {
 	return &cli.Command{
-		Name:      "map",
-		Usage:     "draw a result against one or two of the inputs that vary",
-		ArgsUsage: "DIR --of PATH [--against INPUT[,INPUT]] [--at INPUT=VALUE] --svg FILE [--out DIR]",
+		Name:  "map",
+		Usage: "draw a result against one or two of the inputs that vary",
+		ArgsUsage: "DIR --of PATH [--against INPUT[,INPUT]] [--at INPUT=VALUE] --svg FILE\n" +
+			"      [--out DIR]",
 		Description: `Draws a contour map, or with one input a curve with error bars. Points that
 failed or are not trusted are marked, and neither coloured nor joined with others. Inputs that are
 not drawn against are held at one value each: --at chooses it.`,
@@ -23,7 +24,7 @@ not drawn against are held at one value each: --at chooses it.`,
 				Name: "against", Usage: "draw it against `INPUT,INPUT` (default: the first two)",
 			},
 			&cli.StringSliceFlag{
-				Name: "at", Usage: "hold another input at `INPUT=VALUE`; may be repeated",
+				Name: "at", Usage: "hold another input at `X`, as gap=40mm",
 			},
 			&cli.StringFlag{Name: "svg", Usage: "write the picture to `FILE`, replacing it"},
 			scanOutFlag(),

@@ -17,8 +17,8 @@ func (p *program) scanRunCommand() *cli.Command {
 	return &cli.Command{
 		Name:  "run",
 		Usage: "run the points of a plan, or those that are left of it",
-		ArgsUsage: "PLAN [--out DIR] [--cores N] [--until 07:00] [--shard I/N] [--no-wait] [--retry] " +
-			"[--quiet]",
+		ArgsUsage: "PLAN [--out DIR] [--cores N] [--until 07:00] [--shard I/N] [--no-wait]\n" +
+			"      [--retry] [--quiet]",
 		Description: `Runs one point a core. After any end, also by kill -9 or a power cut, the same
 command continues: finished points stay, others go on from their checkpoints. Several of these
 commands may work in one folder, on one machine or on many that share it. A point that cannot be

@@ -13,8 +13,8 @@ func (p *program) scanSubmitCommand() *cli.Command {
 	return &cli.Command{
 		Name:  "submit",
 		Usage: "have a cluster (Slurm) run what is left of a plan",
-		ArgsUsage: "PLAN --time 4:00:00 [--partition P] [--max-running N] [--cpus N] [--warning S] " +
-			"[--option NAME=VALUE] [--out DIR] [--dry-run]",
+		ArgsUsage: "PLAN --time 4:00:00 [--partition P] [--max-running N] [--cpus N]\n" +
+			"      [--warning S] [--option NAME=VALUE] [--out DIR] [--dry-run]",
 		Description: `Writes the batch script of a job array and gives it to sbatch; with --dry-run it
 only prints the script. The folder of the scan must be on a disk that the nodes share. Tasks take
 points until none is left, write checkpoints before their time ends and go back into the queue. To
@@ -33,7 +33,7 @@ take up what dead nodes have left, submit again. scan status tells how far it is
 			},
 			&cli.StringSliceFlag{
 				Name:  "option",
-				Usage: "give sbatch the option `NAME=VALUE` too, as account=films; may be repeated",
+				Usage: "give sbatch the option `X` too, as account=films",
 			},
 			&cli.BoolFlag{
 				Name: "dry-run", Usage: "print the script and submit nothing", DisableDefaultText: true,

@@ -18,9 +18,9 @@ func (p *program) scanWindowCommand() *cli.Command {
 	return &cli.Command{
 		Name:  "window",
 		Usage: "find the settings that meet wants, with as few runs as that takes",
-		ArgsUsage: "PLAN --want 'PATH < NUMBER' [--want ...] [--maximize PATH | --minimize PATH] " +
-			"[--probability 95%] [--doubt 2%] [--points N] [--also-untrusted] [--out DIR] [--cores N] " +
-			"[--quiet]",
+		ArgsUsage: "PLAN --want 'PATH < NUMBER' [--want ...] [--maximize PATH | --minimize PATH]\n" +
+			"      [--probability 95%] [--doubt 2%] [--points N] [--also-untrusted] [--out DIR]\n" +
+			"      [--cores N] [--quiet]",
 		Description: `Runs the plan, which may be a few points spread over the ranges, then adds
 points where they decide most about the boundary of the window. It ends when at most the doubt is
 expected to be on the wrong side of that boundary, or the points are spent. The recommended settings
@@ -30,13 +30,13 @@ window.parquet.`,
 		Flags: []cli.Flag{
 			&cli.StringSliceFlag{
 				Name:  "want",
-				Usage: "the result is to meet `CONDITION`, as 'ion_mean_energy_eV.grounded.all < 25'",
+				Usage: "want `C`, as 'ion_mean_energy_eV.grounded.all < 25'",
 			},
 			&cli.StringFlag{Name: "maximize", Usage: "make the result `PATH` as large as the wants allow"},
 			&cli.StringFlag{Name: "minimize", Usage: "make it as small"},
 			&cli.StringFlag{
 				Name:  "probability",
-				Usage: "the recommended settings meet the wants with the probability `P` (default: 95%)",
+				Usage: "recommend settings that meet the wants with probability `P` (default: 95%)",
 			},
 			&cli.StringFlag{
 				Name:  "doubt",

@@ -16,7 +16,7 @@ func TestWrongCommandLines(t *testing.T) {
 		args []string
 		want string
 	}{
-		{nil, "ionfall: no command given, want one of run, check, resume, report, plot, " +
+		{nil, "ionfall: no command given, want one of run, check, resume, scan, report, plot, " +
 			"view, gas, probe, schema, version; " +
 			"for example: ionfall run argon.yaml\n"},
 		{[]string{"chekc", "he.yaml"}, "ionfall: unknown command \"chekc\"; did you mean \"check\"?\n"},
