@@ -163,8 +163,8 @@ func (c *cluster) killNode(t *testing.T, name string) {
 	c.killProcesses(t, name)
 }
 
-// killProcesses kills what belongs to a node of this cluster: known by its environment, and the
-// step daemons by their parent folder.
+// killProcesses kills what was run on a node of this cluster, which is known by its environment, and
+// the daemons of its steps, which are the parents of the scripts.
 func (c *cluster) killProcesses(t *testing.T, node string) {
 	t.Helper()
 	entries, err := os.ReadDir("/proc")
@@ -182,9 +182,31 @@ func (c *cluster) killProcesses(t *testing.T, node string) {
 		}
 		if bytes.Contains(environment, []byte("SLURM_CONF="+c.dir+"/")) &&
 			bytes.Contains(environment, []byte("SLURMD_NODENAME="+node+"\x00")) {
-			_ = syscall.Kill(pid, syscall.SIGKILL) // it may be gone since
+			// They may be gone since.
+			if parent := parentOf(pid, "slurmstepd"); parent > 1 {
+				_ = syscall.Kill(parent, syscall.SIGKILL)
+			}
+			_ = syscall.Kill(pid, syscall.SIGKILL)
 		}
 	}
+}
+
+// parentOf is the parent of a process if it bears the name, else 0.
+func parentOf(pid int, name string) int {
+	stat, err := os.ReadFile(fmt.Sprintf("/proc/%d/stat", pid))
+	if err != nil {
+		return 0
+	}
+	fields := strings.Fields(string(stat[bytes.LastIndexByte(stat, ')')+1:]))
+	parent, err := strconv.Atoi(fields[1])
+	if err != nil {
+		return 0
+	}
+	called, err := os.ReadFile(fmt.Sprintf("/proc/%d/comm", parent))
+	if err != nil || strings.TrimSpace(string(called)) != name {
+		return 0
+	}
+	return parent
 }
 
 func (c *cluster) until(t *testing.T, what string, limit time.Duration, ok func() bool) {
