@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"io"
+	"math"
 	"strings"
 	"sync"
 	"time"
@@ -151,6 +152,19 @@ func (l *scanLines) now() {
 	}
 }
 
+// runningPoint says how far a run is. Before it averages, its ion energy is that of one period,
+// which has no error.
+func runningPoint(s progress.Status) string {
+	if s.Stage == "" {
+		return "starting"
+	}
+	text := fmt.Sprintf("%s, %d periods", s.Stage, s.Periods)
+	if math.IsNaN(s.EnergyErrEV) {
+		return text
+	}
+	return text + ", ion energy " + progress.WithError(s.EnergyEV, s.EnergyErrEV) + " eV"
+}
+
 // scanStatus is the progress of a scan and of each of its running points.
 func scanStatus(s scan.Snapshot, now time.Time) string {
 	var b strings.Builder
@@ -164,8 +178,7 @@ func scanStatus(s scan.Snapshot, now time.Time) string {
 	fmt.Fprintf(&b, "; about %s left (%s to %s), until %s\n", around(s.Left.Expected),
 		around(s.Left.Low), around(s.Left.High), now.Add(s.Left.Expected).Format("Mon 15:04"))
 	for _, r := range s.Running {
-		fmt.Fprintf(&b, "  point %d: %s, %d periods, ion energy %s eV", r.Number, r.Stage, r.Periods,
-			progress.WithError(r.EnergyEV, r.EnergyErrEV))
+		fmt.Fprintf(&b, "  point %d: %s", r.Number, runningPoint(r.Status))
 		if r.Remaining >= 0 {
 			fmt.Fprintf(&b, ", about %s left", around(r.Remaining))
 		}
