@@ -44,8 +44,7 @@ func layout(c *Case) mapping {
 		},
 		{
 			key: "coulomb_collisions", value: boolean{&c.CoulombCollisions},
-			doc: "Electrons collide with each other, which fills the tail and cools the middle of " +
-				"their energies where the plasma is dense (Nanbu 1997). Default: false.",
+			doc: "Electrons collide with each other (Nanbu 1997). Default: false.",
 		},
 		{
 			key: "seed", value: seed{&c.Seed},
