@@ -60,20 +60,8 @@ type AnalyserResult struct {
 // ReadCollector reads a file of retarding sweeps: like ReadSweeps, but with a current that falls as
 // the voltage rises.
 func ReadCollector(name string, src []byte, columns Columns) (*File, error) {
-	r := &reader{name: name}
-	r.split(src)
-	if err := r.errs.Err(); err != nil {
-		return nil, err
-	}
-	f := &File{Name: name}
-	points := r.points(columns, f)
-	if err := r.errs.Err(); err != nil {
-		return nil, err
-	}
-	if f.Sweeps = r.legs(points, f); len(r.errs) == 0 {
-		r.checkSweeps(f)
-	}
-	if err := r.errs.Err(); err != nil {
+	r, f, err := readChecked(name, src, columns)
+	if err != nil {
 		return nil, err
 	}
 	low, high, span := ends(f.Sweeps)

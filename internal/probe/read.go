@@ -39,25 +39,30 @@ func (r *reader) fail(line, col int, key, got, want, hint string) {
 // each other, told apart by a column or by jumps and turns of the voltage. The error is an
 // inputerr.List.
 func ReadSweeps(name string, src []byte, columns Columns) (*File, error) {
-	r := &reader{name: name}
-	r.split(src)
-	if err := r.errs.Err(); err != nil {
-		return nil, err
-	}
-	f := &File{Name: name}
-	points := r.points(columns, f)
-	if err := r.errs.Err(); err != nil {
-		return nil, err
-	}
-	f.Sweeps = r.legs(points, f)
-	if len(r.errs) == 0 {
-		r.checkSweeps(f)
-	}
-	if err := r.errs.Err(); err != nil {
+	r, f, err := readChecked(name, src, columns)
+	if err != nil {
 		return nil, err
 	}
 	r.orient(columns.Sign, f)
 	return f, r.errs.Err()
+}
+
+// readChecked reads the sweeps of a file, whichever way their current goes.
+func readChecked(name string, src []byte, columns Columns) (*reader, *File, error) {
+	r := &reader{name: name}
+	r.split(src)
+	if err := r.errs.Err(); err != nil {
+		return nil, nil, err
+	}
+	f := &File{Name: name}
+	points := r.points(columns, f)
+	if err := r.errs.Err(); err != nil {
+		return nil, nil, err
+	}
+	if f.Sweeps = r.legs(points, f); len(r.errs) == 0 {
+		r.checkSweeps(f)
+	}
+	return r, f, r.errs.Err()
 }
 
 // split finds lines, separator and header.
