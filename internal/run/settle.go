@@ -39,12 +39,12 @@ func (c *control) startRound(content float64) {
 // project ends a round: the density, which follows slowly, is moved ahead by a part of the
 // residence time of an ion at the growth rate that was seen, if the growth is more than chance.
 // If it is not, the next round is twice as long and sees less of chance. Reports whether a
-// round of the greatest length saw no growth.
-func (m *machine) project(row *Row) (done bool) {
+// round of the greatest length saw no growth, and for how many periods nothing was changed.
+func (m *machine) project(row *Row) (done bool, undisturbed int) {
 	c := &m.control
 	c.Round.Periods++
 	if c.Round.Periods < c.Round.Length {
-		return false
+		return false, 0
 	}
 	r := c.Round
 	growth := math.Log(row.Content/r.Content) / float64(r.Length)
@@ -53,6 +53,7 @@ func (m *machine) project(row *Row) (done bool) {
 	chance := projection * c.Residence / float64(r.Length) *
 		math.Sqrt(2*float64(r.Length)/c.Residence/float64(row.Ions))
 	content := row.Content
+	undisturbed = r.Length
 	switch calm := math.Abs(jump) < math.Max(leastJump, 2*chance); {
 	case r.Number == 1: // sees the start's own transient
 	case calm:
@@ -62,13 +63,14 @@ func (m *machine) project(row *Row) (done bool) {
 		m.sim.ScaleWeight(math.Exp(jump))
 		m.rebase()
 		content *= math.Exp(jump)
+		undisturbed = 0
 		c.Event = fmt.Sprintf("density projected by %+.1f %%", 100*math.Expm1(jump))
 	}
 	if m.balanceNegative() {
 		done = false
 	}
 	c.startRound(content)
-	return done || r.Number >= mostRounds
+	return done || r.Number >= mostRounds, undisturbed
 }
 
 // projected returns ln(n*/n) for the way w = (n* - n)/n that is to be gone: births do not follow
