@@ -46,6 +46,7 @@ type swarmSection struct {
 type swarmPoint struct {
 	Field  float64            `yaml:"field_Td"`
 	Quick  bool               `yaml:"quick"`
+	Solve  bool               `yaml:"solve"` // the Boltzmann equation, too
 	Note   string             `yaml:"note"`
 	Values map[string]float64 `yaml:"values"`
 	Errors map[string]float64 `yaml:"errors"`
@@ -166,6 +167,9 @@ func TestValidationSwarmTables(t *testing.T) {
 					known[key] = tableSwarm(t, s, p.Field)
 				}
 				record(t, pointRows(s, p, known[key])...)
+				if p.Solve {
+					record(t, multiTermRows(t, s, p.Field, known[key])...)
+				}
 			}
 		})
 	}

@@ -20,6 +20,8 @@ type radioSheath struct {
 	on            bool
 	field         []float64 // at the powered wall, by step of the period [V/m]
 	potential     []float64 // at the nodes, mean [V]
+	// phases are mean potentials by ion move of the period.
+	phases [][]float64
 	// sheathV is the potential of mid-gap against each wall, by step of the period.
 	sheathV [2][]float64
 	// electrons and charge are node numbers by phase bin.
@@ -46,6 +48,9 @@ func newRadioSheath(mass float64, settle, count int) *radioSheath {
 	}
 	for w := range r.sheathV {
 		r.sheathV[w] = make([]float64, steps)
+	}
+	for range steps / every {
+		r.phases = append(r.phases, make([]float64, cells+1))
 	}
 	for range r.bins {
 		r.electrons = append(r.electrons, make([]float64, cells+1))
@@ -74,11 +79,12 @@ func (r *radioSheath) run(t *testing.T) {
 func (r *radioSheath) frame(f *Frame, _, _ int) {
 	part := int(f.Step % int64(len(r.field)))
 	r.field[part] += f.E[0] / float64(r.count)
-	bin := part * r.bins / len(r.field)
+	bin, move := part*r.bins/len(r.field), part*len(r.phases)/len(r.field)
 	for j := range f.Phi {
 		r.electrons[bin][j] += f.Number[0][j]
 		r.charge[bin][j] += f.Number[1][j]
 		r.potential[j] += f.Phi[j] / float64(r.count*len(r.field))
+		r.phases[move][j] += f.Phi[j] * float64(len(r.phases)) / float64(r.count*len(r.field))
 	}
 }
 

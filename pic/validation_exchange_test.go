@@ -151,7 +151,7 @@ func TestValidationExchangeInSheath(t *testing.T) {
 		paths = paths[1:2]
 	}
 	for _, path := range paths {
-		row := exchangeInSheath(t, Drive{Bias: -150}, path)
+		row, _ := exchangeInSheath(t, Drive{Bias: -150}, path, 100)
 		row.Quantity = fmt.Sprintf("mean energy at the wall, sheath, lambda %g mm", 1e3*path)
 		row.Status, row.Limit, row.LimitKind = "exact", fourSigma, validation.Sigma
 		record(t, row)
@@ -165,24 +165,31 @@ func TestValidationExchangeInSheath(t *testing.T) {
 // the new ions gain more, too. In a uniform field with a wave as large as its mean the excess was
 // found to be 6 % when the fall through one free path takes one period, 2 % at two periods, below
 // 0.5 % from four, and 20 % or more at a third and less. Here it takes about 2.7, 1.8 and 1.2
-// periods for the three paths: the row of the shortest is outside of its limit for this reason.
+// periods for the three paths. Rows beside the two shorter ones test this cause: ions that follow
+// the law of exchange in the measured field by phase find the energy of the discharge, and that
+// of the mean potential if the wave is taken out of the field. The excess of the shortest path is
+// near the limit (2.7 % of 500 periods, 4.0 +- 1.2 % of the 100 that were once averaged).
 func TestValidationExchangeInWaveSheath(t *testing.T) {
 	onlyWhenValidating(t)
+	wave := Drive{Tones: []Tone{{Harmonic: 1, Amplitude: 300}}}
 	for _, path := range []float64{3e-3, 1.5e-3, 0.75e-3} {
-		row := exchangeInSheath(t, Drive{Tones: []Tone{{Harmonic: 1, Amplitude: 300}}}, path)
+		row, r := exchangeInSheath(t, wave, path, 500)
 		row.Quantity = fmt.Sprintf("mean energy at the wall, 27 MHz sheath, lambda %g mm", 1e3*path)
 		row.Status, row.Limit, row.LimitKind = "approximate", 0.03, validation.Relative
-		row.Note += "; exchanges happen more often in phases of strong field, which the mean " +
-			"potential does not know"
+		cells := r.config.Cells / 4 // the plasma is kept up beyond, and little moves the ions there
+		if float64(cells)*r.config.CellSize() >= 5*path {
+			row.Note += lawRows(t, row, r, path, cells)
+		}
 		record(t, row)
 	}
 }
 
 // exchangeInSheath compares the mean energy of ions at the powered wall with that in the mean
-// potential.
-func exchangeInSheath(t *testing.T, drive Drive, path float64) validation.Row {
+// potential, over a number of periods.
+func exchangeInSheath(t *testing.T, drive Drive, path float64, periods int,
+) (validation.Row, *radioSheath) {
 	t.Helper()
-	r := newRadioSheath(6.6465e-27, 200, 100)
+	r := newRadioSheath(6.6465e-27, 200, periods)
 	r.config.Drive = drive
 	ion := &r.config.Species[1]
 	ion.Collisions = exchangeOnly(t, &r.config, ion.Mass, ion.Every, path, 500)
@@ -201,5 +208,5 @@ func exchangeInSheath(t *testing.T, drive Drive, path float64) validation.Row {
 		Seed:      r.config.Seed,
 		Note: fmt.Sprintf("helium ions, mean sheath voltage %.0f V, %.1f V per free path at the wall",
 			middle[len(middle)-1]-middle[0], (middle[1]-middle[0])/r.config.CellSize()*path),
-	}
+	}, r
 }
