@@ -35,22 +35,23 @@ const (
 // and the neutralization of ions that none of them has.
 func (p *Plan) pairs() []crosssections.Pair {
 	var list []crosssections.Pair
-	have := func(a, b string) bool {
+	have := func(list []crosssections.Pair, a, b string) bool {
 		return slices.ContainsFunc(list, func(q crosssections.Pair) bool {
 			return q.Reactants == [2]string{a, b} || q.Reactants == [2]string{b, a}
 		})
 	}
 	for _, g := range p.Gases {
+		others := list // of other gases
 		for _, q := range g.Pairs {
 			a, b := q.Reactants[0], q.Reactants[1]
-			if p.speciesIndex(a) >= 0 && p.speciesIndex(b) >= 0 && !have(a, b) {
+			if p.speciesIndex(a) >= 0 && p.speciesIndex(b) >= 0 && !have(others, a, b) {
 				list = append(list, q)
 			}
 		}
 	}
 	for _, a := range p.heavy {
 		for _, b := range p.heavy {
-			if a.Charge != 1 || b.Charge != -1 || have(a.Name, b.Name) {
+			if a.Charge != 1 || b.Charge != -1 || have(list, a.Name, b.Name) {
 				continue
 			}
 			q, ok := crosssections.DefaultNeutralization(
@@ -78,20 +79,40 @@ func (p *Plan) speciesIndex(name string) int {
 	return i + 1
 }
 
+// neutralIndex is the index of the fast species of the one neutral among the products, 0 for none.
+func (p *Plan) neutralIndex(products []string) int {
+	neutrals := slices.DeleteFunc(slices.Clone(products), func(name string) bool {
+		return name == crosssections.ElectronName
+	})
+	if len(neutrals) != 1 {
+		return 0
+	}
+	return 1 + slices.IndexFunc(p.heavy, func(h heavySpecies) bool {
+		return h.Name == neutrals[0] && h.Charge == 0
+	})
+}
+
 // addPairs gives the simulation the reactions of charged species with each other.
 func (p *Plan) addPairs(c *pic.Config, n Numerics) {
 	for _, q := range p.pairs() {
 		table := q.Table
-		if haste := p.haste; haste > 1 && q.Reactants[0] != crosssections.ElectronName {
+		// What ends negative ions is as hasty as what makes them.
+		ends := q.Reactants[0] != crosssections.ElectronName || q.Kind == crosssections.Detachment
+		if haste := p.haste; haste > 1 && ends {
 			table.CrossSection = slices.Clone(table.CrossSection)
 			for i := range table.CrossSection {
 				table.CrossSection[i] *= haste
 			}
 		}
-		c.Pairs = append(c.Pairs, pic.Neutralization{
+		reaction := pic.PairReaction{
 			A: p.speciesIndex(q.Reactants[0]), B: p.speciesIndex(q.Reactants[1]),
 			Rate: mcc.NewPairRate(&table, q.Masses, pairTop),
-		})
+		}
+		if q.Kind == crosssections.Detachment {
+			reaction.Detach = mcc.NewDetachment(q.Masses, q.Threshold, p.sharing())
+			reaction.Neutral = p.neutralIndex(q.Products)
+		}
+		c.Pairs = append(c.Pairs, reaction)
 	}
 	moves := n.StepsPerPeriod / n.IonSubsteps
 	c.PairEvery = n.IonSubsteps
@@ -127,10 +148,13 @@ func (p *Plan) attachment(te float64) float64 {
 }
 
 // negativeStart is the negative ions over the electrons of the density [1/m3] at which as many are
-// made as neutralized: r (1 + r) = nu/(k n).
+// made as ended by positive ions (k) and by electrons (d): r (1 + r + d/k) = nu/(k n).
 func (p *Plan) negativeStart(te, density float64) float64 {
-	k := 0.0
+	k, detached := 0.0, 0.0
 	for _, q := range p.pairs() {
+		if q.Kind == crosssections.Detachment {
+			detached = math.Max(detached, maxwellRate(&q.Table, te))
+		}
 		if q.Reactants[0] == crosssections.ElectronName {
 			continue
 		}
@@ -142,7 +166,8 @@ func (p *Plan) negativeStart(te, density float64) float64 {
 		return 0
 	}
 	ratio := p.attachment(te) / (k * density)
-	return math.Min(mostNegative, 0.5*(math.Sqrt(1+4*ratio)-1))
+	b := 1 + detached/k
+	return math.Min(mostNegative, 0.5*(math.Sqrt(b*b+4*ratio)-b))
 }
 
 // negativeCount is what became of a negative species since its number was last changed.

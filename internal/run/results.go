@@ -169,7 +169,8 @@ func (m *machine) references() []store.Reference {
 	for _, g := range m.plan.Gases {
 		list = append(list, sources(g.Name, g.Electron)...)
 	}
-	return append(list, m.plan.heavySources()...)
+	list = append(list, m.plan.heavySources()...)
+	return append(list, m.plan.pairSources()...)
 }
 
 // historyTable is one row a period.
