@@ -1,13 +1,11 @@
 package run
 
 import (
-	"fmt"
 	"math"
 	"slices"
 
 	"ionfall/crosssections"
 	"ionfall/internal/phys"
-	"ionfall/internal/store"
 	"ionfall/mcc"
 	"ionfall/pic"
 )
@@ -23,12 +21,6 @@ const (
 	mostHaste = 30.0
 	// hastyLoss is the part of the electrons' losses that attachment may make up in the pilot.
 	hastyLoss = 0.03
-	// negativeEvents is how many negative ions must have come and gone to judge their balance.
-	negativeEvents = 600
-	// leastNegative is the change of their number that is not worth it.
-	leastNegative = 0.02
-	// fewNegative is the part of the electrons below which negative ions do not matter.
-	fewNegative = 0.01
 )
 
 // pairs are the reactions of the charged species of the run with each other: those of the gases,
@@ -168,83 +160,4 @@ func (p *Plan) negativeStart(te, density float64) float64 {
 	ratio := p.attachment(te) / (k * density)
 	b := 1 + detached/k
 	return math.Min(mostNegative, 0.5*(math.Sqrt(b*b+4*ratio)-b))
-}
-
-// negativeCount is what became of a negative species since its number was last changed.
-type negativeCount struct {
-	Born, Lost int64
-	Settled    bool // as many were made as lost when it was looked at last
-}
-
-// countNegative adds a period's births and losses of negative ions.
-func (c *control) countNegative(species []pic.Species, l *pic.Ledger) {
-	if len(c.Negative) != len(species) {
-		c.Negative = make([]negativeCount, len(species))
-	}
-	for i := 1; i < len(species); i++ {
-		if species[i].Charge < 0 {
-			sp := &l.Species[i]
-			c.Negative[i].Born += sp.Born
-			c.Negative[i].Lost += sp.Gone + sp.Absorbed[0] + sp.Absorbed[1]
-		}
-	}
-}
-
-// balanceNegative brings negative ions to the number at which they would stand: their losses follow
-// the positive ions, of which there are as many as electrons and negative ions together. With N
-// of them beside e electrons, b made and l lost in a time, N' (e + N') l = b N (e + N). Reports
-// whether it changed anything, or has seen too little to tell.
-func (m *machine) balanceNegative() (open bool) {
-	c := &m.control
-	changed, scaled := false, false
-	for i, sp := range m.sim.Species() {
-		if i == 0 || sp.Charge >= 0 || i >= len(c.Negative) {
-			continue
-		}
-		born, lost := float64(c.Negative[i].Born), float64(c.Negative[i].Lost)
-		n, electrons := float64(sp.Count()), float64(m.sim.Species()[0].Count())
-		if born+lost < negativeEvents {
-			open = open || !c.Negative[i].Settled && n > fewNegative*electrons
-			continue
-		}
-		ratio := born / math.Max(1, lost)
-		stands := 0.5 * (math.Sqrt(electrons*electrons+4*ratio*n*(electrons+n)) - electrons)
-		factor := math.Max(0.4, math.Min(2.5, stands/n))
-		chance := math.Sqrt(1/math.Max(1, born) + 1/math.Max(1, lost))
-		c.Negative[i] = negativeCount{Settled: math.Abs(factor-1) < 2*chance}
-		if math.Abs(factor-1) < leastNegative {
-			continue
-		}
-		m.sim.ScaleNegative(i, factor)
-		c.Event = fmt.Sprintf("%s projected by %+.0f %%", sp.Name, 100*(factor-1))
-		changed = changed || !c.Negative[i].Settled
-		scaled = true
-	}
-	if scaled {
-		m.rebase()
-	}
-	return open || changed
-}
-
-// negativeChecks judge whether as many negative ions are made as lost: they follow so slowly that
-// an average sees no drift.
-func (m *machine) negativeChecks() []store.Check {
-	t := &m.control.Averaged
-	born, lost := 0.0, 0.0
-	for i, sp := range m.sim.Species() {
-		if i > 0 && sp.Charge < 0 && i < len(t.NegativeBorn) {
-			born += t.NegativeBorn[i]
-			lost += t.NegativeLost[i]
-		}
-	}
-	if born+lost == 0 {
-		return nil
-	}
-	events := born + lost
-	chance := driftErrors / math.Sqrt(events/2)
-	b := bounds{negativeBalance.warn + chance, negativeBalance.fail + chance}
-	return []store.Check{above("negative_ion_balance",
-		math.Abs(born-lost)/math.Max(born, lost), b, fmt.Sprintf("difference of negative ions made "+
-			"and lost, over the average; of %.0f events, chance alone makes up to %.2g %%", events,
-			100*chance))}
 }
