@@ -40,8 +40,8 @@ func (k Sharing) share(s *rng.Stream, width float64) float64 {
 // opalExcess is above the largest ratio of the law to that with the exponent 2: 1.01368 at 0.54.
 const opalExcess = 1.0137
 
-// opal draws x from 1/(1 + x^2.1) up to most, by rejection from 1/(1 + x^2), which has an inverse in
-// closed form.
+// opal draws x from 1/(1 + x^2.1) up to most, by rejection from 1/(1 + x^2), which has an inverse
+// in closed form.
 func opal(s *rng.Stream, most float64) float64 {
 	angle := math.Atan(most)
 	for {

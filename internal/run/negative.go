@@ -137,8 +137,8 @@ func (m *machine) enoughNegative(n, electrons float64) float64 {
 	return math.Max(negativeEvents, one*one/(tolerance*tolerance))
 }
 
-// negativeEffect is by how much ln of ion flux, density and power may change with ln of the number of
-// negative ions, which is less where electrons carry the negative charge.
+// negativeEffect is by how much ln of ion flux, density and power may change with ln of the number
+// of negative ions, which is less where electrons carry the negative charge.
 func negativeEffect(n, electrons float64) float64 {
 	if n == 0 {
 		return 0
