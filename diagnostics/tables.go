@@ -88,7 +88,9 @@ func ColumnName(species string) string {
 
 // SetWander sets the relative error that the slow wander of the particle number leaves in densities
 // and what is proportional to them, the least that the tables state; for negative ions another one.
-func (r *Recorder) SetWander(relative, negative float64) { r.wander, r.negative = relative, negative }
+func (r *Recorder) SetWander(relative, negative float64) {
+	r.wander, r.negative = relative, negative
+}
 
 // errors returns the standard errors of a grid quantity.
 func (r *Recorder) errors(quantity int, v *stats.Vector) []float64 {

@@ -55,8 +55,9 @@ func (c *control) countNegative(species []pic.Species, l *pic.Ledger) {
 }
 
 // off is ln of the number at which negative ions would stand over their number n, and the standard
-// error of it by the given births and losses. Losses follow the positive ions, of which there are as
-// many as electrons and negative ions together: with b made and l lost, n' (e + n') l = b n (e + n).
+// error of it by the given births and losses. Losses follow the positive ions, of which there are
+// as many as electrons and negative ions together: with b made and l lost,
+// n' (e + n') l = b n (e + n).
 func off(born, lost int64, n, electrons float64) (ln, se float64) {
 	if born+lost == 0 || n == 0 {
 		return 0, math.Inf(1)
@@ -72,10 +73,11 @@ func offError(events int64, n, electrons float64) float64 {
 	return 2 / math.Sqrt(float64(events)) / (1 + n/(electrons+n))
 }
 
-// judge looks at what was seen of n negative ions beside the electrons since their number was changed,
-// and returns the ln of the factor by which to change it, 0 for none. While what is seen agrees with
-// what the number was set by, both count by their births and losses, so that the number becomes the
-// more exact the longer it goes on; else all begins anew. Enough of both together make it settled.
+// judge looks at what was seen of n negative ions beside the electrons since their number was
+// changed, and returns the ln of the factor by which to change it, 0 for none. While what is seen
+// agrees with what the number was set by, both count by their births and losses, so that the number
+// becomes the more exact the longer it goes on; else all begins anew. Enough of both together make
+// it settled.
 func (k *negativeCount) judge(n, electrons, enough float64) (ln float64) {
 	events := k.Born + k.Lost
 	ln, se := off(k.Born, k.Lost, n, electrons)
@@ -146,8 +148,8 @@ func negativeEffect(n, electrons float64) float64 {
 	return negativeLeverage * n / (electrons + n)
 }
 
-// negativeError returns the relative standard error of the number of negative ions, and that which it
-// makes in the ion flux and the density. What was seen since the number was set counts by its
+// negativeError returns the relative standard error of the number of negative ions, and that which
+// it makes in the ion flux and the density. What was seen since the number was set counts by its
 // births and losses, beside those that it was set by; where the number does not stand, it is off by
 // the difference, too.
 func (m *machine) negativeError() (number, effect float64) {
@@ -186,8 +188,9 @@ func (m *machine) negativeChecks() []store.Check {
 		events += k.Known + k.Born + k.Lost
 	}
 	check := above("negative_ion_balance", number, negativeBalance, fmt.Sprintf(
-		"relative standard error of the number of negative ions, by %d births and losses; the errors of "+
-			"fluxes and densities hold the %.2g %% that it makes of them", events, 100*effect))
+		"relative standard error of the number of negative ions, by %d births and losses; the "+
+			"errors of fluxes and densities hold the %.2g %% that it may make of them", events,
+		100*effect))
 	if effect < negativeLeverage*fewNegative {
 		check.Verdict, check.Bound = store.OK, negativeBalance.warn
 		check.Text += "; there are so few that it does not matter"
