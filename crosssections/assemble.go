@@ -191,7 +191,9 @@ func (r *gasReader) pairList(folder string, tables map[string]*TableFile) []Pair
 	var list []Pair
 	for i := range r.out.pairs {
 		e := &r.out.pairs[i]
-		p := Pair{Name: e.name, Products: e.products, Source: e.source}
+		p := Pair{
+			Name: e.name, Kind: e.kind, Threshold: e.threshold, Products: e.products, Source: e.source,
+		}
 		for k, name := range e.reactants {
 			p.Reactants[k], p.Masses[k] = name, r.massOf(name)
 		}
@@ -199,12 +201,24 @@ func (r *gasReader) pairList(folder string, tables map[string]*TableFile) []Pair
 			p.Table = e.law.table(0, p.Masses[0]*p.Masses[1]/(p.Masses[0]+p.Masses[1]))
 		} else {
 			t := tables[e.file]
-			p.Table, p.Source, p.SHA256 = t.Table, t.Source, t.SHA256
+			p.Table, p.Source, p.SHA256 = t.Table.scaled(r.pairFactor(e, t.Frame)), t.Source, t.SHA256
 			p.File = path.Join(folder, e.file)
+			if p.Kind == Detachment {
+				p.Table.Onset = max(p.Threshold, p.Table.Energy[0])
+			}
 		}
 		list = append(list, p)
 	}
 	return list
+}
+
+// pairFactor is the energy of the relative motion over that of a pair's table.
+func (r *gasReader) pairFactor(p *pairEntry, frame Frame) float64 {
+	first, second := r.massOf(p.reactants[0]), r.massOf(p.reactants[1])
+	if frame != Lab || first+second == 0 {
+		return 1
+	}
+	return second / (first + second)
 }
 
 // lawHash is the fingerprint of a cross section that has no file.
@@ -243,6 +257,9 @@ func (g *Gas) hash(gasFile []byte) {
 		for _, p := range list {
 			h.Write([]byte("\n" + p.Name + " " + p.SHA256))
 		}
+	}
+	for _, p := range g.Pairs {
+		h.Write([]byte("\n" + p.Name + " " + p.SHA256))
 	}
 	g.SHA256 = hex.EncodeToString(h.Sum(nil))
 }

@@ -151,35 +151,6 @@ func (r *gasReader) checkBranches(p *processEntry) {
 // branchTolerance is the rounding allowed of parts that sum to 1.
 const branchTolerance = 1e-6
 
-// checkPairs demands known reactants of opposite charge and the balance of charge and atoms.
-func (r *gasReader) checkPairs() {
-	for i := range r.out.pairs {
-		p := &r.out.pairs[i]
-		sum := 0
-		for _, name := range p.reactants {
-			if name != ElectronName && !r.isIon(name) {
-				r.atUnknown(p.at, "reactants", "", name, "e and the ions of the gas", r.ionNames())
-			}
-			sum += chargeOf(name)
-		}
-		if len(p.reactants) != 2 || chargeOf(p.reactants[0])*chargeOf(p.reactants[1]) >= 0 {
-			r.at(p.at, "reactants", strings.Join(p.reactants, ", "), "two of opposite charge")
-			continue
-		}
-		have := 0
-		for _, name := range p.products {
-			have += chargeOf(name)
-		}
-		if have != sum || sum != 0 {
-			r.at(p.at, "products", fmt.Sprintf("charge %+d in all", have),
-				"0, from reactants of charge 0 in all")
-		}
-		if off := imbalance(p.reactants, p.products); off != "" {
-			r.at(p.at, "products", off, "the atoms of "+strings.Join(p.reactants, " and "))
-		}
-	}
-}
-
 // targetOf is the formula of the gas that a process collides with.
 func (r *gasReader) targetOf(p *processEntry) string {
 	if p.target != "" {
@@ -264,10 +235,9 @@ func (r *gasReader) checkMembers(set *setEntry, members []processEntry, at *yaml
 		"1")
 }
 
-// checkTable demands that nothing happens below the threshold, which is factor times higher in
-// the frame of the table, and something above it.
-func checkTable(p *processEntry, t *TableFile, factor float64, c *complaints) {
-	threshold := p.cost() * factor
+// checkTable demands that nothing happens below the threshold [eV], in the frame of the table, and
+// something above it.
+func checkTable(threshold float64, t *TableFile, c *complaints) {
 	for i, e := range t.Table.Energy {
 		if q := t.Table.CrossSection[i]; e < threshold*(1-1e-9) && q != 0 {
 			c.add(t.lines[i], 1, "cross_section_m2", fmt.Sprintf("%g m2 at %g eV", q, e),

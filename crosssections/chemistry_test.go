@@ -53,6 +53,12 @@ pairs:
     rate: {value_m3ps: 1e-13, exponent: -0.5}
     reference: nobody
     status: memory
+  - name: detachment
+    kind: detachment
+    reactants: [e, SiH3-]
+    products: [e, e, SiH3]
+    threshold_eV: 1.41
+    file: p.csv
 `
 
 func chemical(gas string) fstest.MapFS {
@@ -60,6 +66,7 @@ func chemical(gas string) fstest.MapFS {
 		"SiH4/gas.yaml": {Data: []byte(gas)},
 		"SiH4/m.csv":    {Data: []byte(goodHeader + "0,3e-20\n100,3e-20\n")},
 		"SiH4/x.csv":    {Data: []byte(goodHeader + "10,0\n11,2e-20\n14,4e-20\n100,4e-20\n")},
+		"SiH4/p.csv":    {Data: []byte(goodHeader + "3,0\n10,2e-20\n100,2e-20\n")},
 	}
 }
 
@@ -95,6 +102,12 @@ func TestChemistry(t *testing.T) {
 			t.Errorf("at %g eV the rate is %g m3/s", e, k)
 		}
 	}
+	// The table's energy is that of the electron, which the ion at rest takes a part of.
+	d := gas.Pairs[1]
+	if d.Kind != Detachment || d.Threshold != 1.41 || d.Table.At(2.99) != 0 ||
+		math.Abs(d.Table.At(10)/2e-20-1) > 1e-9 || math.Abs(d.Table.Onset/3-1+1.77e-5) > 1e-6 {
+		t.Errorf("detachment: %v, threshold %g eV, from %.9g eV on", d.Kind, d.Threshold, d.Table.Onset)
+	}
 	if sum := r.Out[0].Mass + r.Out[1].Mass; math.Abs(sum/(ion.Mass+gas.Mass)-1) > 1e-6 {
 		t.Errorf("products weigh %g kg, reactants %g", sum, ion.Mass+gas.Mass)
 	}
@@ -127,6 +140,23 @@ func TestChemistryErrors(t *testing.T) {
 			`got no "reference"`,
 		},
 		{"status: memory}\nions", "status: sure}\nions", "want one of read, computed, derived, memory"},
+		{"kind: detachment", "kind: detachmnt", "gas.yaml:45:11: pairs.kind: got \"detachmnt\", " +
+			"want one of neutralization, detachment"},
+		{"    threshold_eV: 1.41\n", "", "gas.yaml:44:5: threshold_eV: got nothing, want a threshold: " +
+			"detachment costs energy"},
+		{"threshold_eV: 1.41", "threshold_eV: 1.2", "gas.yaml:44:5: threshold_eV: got 1.2 eV, want at " +
+			"least the electron affinity, 1.41 eV"},
+		{"threshold_eV: 1.41", "threshold_eV: 12", "want 0 below the threshold of"},
+		{"[e, SiH3-]", "[e, SiH3+]", "gas.yaml:44:5: reactants: got e, SiH3+, want e and an ion of " +
+			"the charge -1, in this order"},
+		{"[e, e, SiH3]", "[e, SiH3-]", "products: got 1 electrons and charge -2 in all, want 2 " +
+			"electrons and neutrals"},
+		{"[e, e, SiH3]", "[e, e, SiH2]", "products: got H missing, want the atoms of e and SiH3-"},
+		{
+			"kind: detachment", "kind: neutralization",
+			"gas.yaml:44:5: threshold_eV: got 1.41 eV, want none: neutralization has no threshold",
+		},
+		{"name: detachment", "name: recombination", `got a second pair "recombination"`},
 		{"kind: isotropic", "kind: isotropc", "want one of isotropic, backscatter, reaction"},
 	} {
 		if !strings.Contains(chemicalGas, c.old) {

@@ -55,13 +55,19 @@
 //	    status: memory
 //	neutral:                     # fast neutrals; left out, hard spheres of the diameters
 //	  - {name: Xx isotropic, projectile: Xx, kind: isotropic, file: neutral-isotropic.csv}
-//	pairs:                       # of charged particles; k ~ T^exponent
+//	pairs:                       # of charged particles; k ~ T^exponent, or a file
 //	  - name: recombination
 //	    reactants: [e, Xx+]
 //	    products: [Xx]
 //	    rate: {value_m3ps: 1e-13, exponent: -0.5}
 //	    reference: ...
 //	    status: memory
+//	  - name: detachment         # the kind is neutralization, unless it says detachment
+//	    kind: detachment         # e + Xx- -> Xx + 2 e
+//	    reactants: [e, Xx-]      # in this order
+//	    products: [e, e, Xx]
+//	    threshold_eV: 1.0        # the electron affinity, or more
+//	    file: pair-detachment.csv
 //	sets:                        # left out, all processes make the default set
 //	  default: {title: in words, processes: [elastic, ionization, Xx+ isotropic]}
 //
@@ -79,7 +85,7 @@
 // Energies are in eV and cross sections in m2. The energy of an electron is that in the frame of
 // the target. For ions it matters which energy a table means, and published tables differ:
 // Frame says Lab (the projectile's energy with the target at rest) or CenterOfMass (the energy
-// of the relative motion, half of it for equal masses).
+// of the relative motion, half of it for equal masses). A pair's first reactant is its projectile.
 //
 // # Policy outside a table
 //

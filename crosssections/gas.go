@@ -62,9 +62,27 @@ type Particle struct {
 	Charge int
 }
 
+// PairKind is what becomes of two charged particles that react.
+type PairKind int
+
+// The kinds of pairs.
+const (
+	// Neutralization of opposite charges: recombination with electrons, or of ions.
+	Neutralization PairKind = iota
+	// Detachment of the electron of a negative ion by another electron.
+	Detachment
+)
+
+var pairKindNames = [...]string{Neutralization: "neutralization", Detachment: "detachment"}
+
+// String is the name of the kind in gas.yaml.
+func (k PairKind) String() string { return pairKindNames[k] }
+
 // Pair is a reaction between two charged particles.
 type Pair struct {
 	Name      string
+	Kind      PairKind
+	Threshold float64 // energy that it takes from the relative motion [eV]
 	Reactants [2]string
 	Masses    [2]float64 // of the reactants [kg]
 	Products  []string

@@ -177,9 +177,20 @@ func (r *gasReader) pair(n *yaml.Node) {
 		reactants: r.texts(m["reactants"], section+".reactants"),
 		products:  r.texts(m["products"], section+".products"),
 	}
+	if k := m["kind"]; k != nil {
+		i := slices.Index(pairKindNames[:], k.Value)
+		if i < 0 {
+			r.at(k, section+".kind", quoted(k.Value),
+				"one of "+strings.Join(pairKindNames[:], ", "))
+		}
+		p.kind = PairKind(max(0, i))
+	}
+	if t := m["threshold_eV"]; t != nil {
+		p.threshold = r.number(t, section+".threshold_eV")
+	}
 	p.file, p.law = r.crossSection(n, m, section)
 	if p.law != nil {
-		p.source = r.source(n, m, section)
+		p.source, p.law.from = r.source(n, m, section), p.threshold
 	}
 	r.out.pairs = append(r.out.pairs, p)
 }

@@ -63,6 +63,8 @@ type branchEntry struct {
 
 type pairEntry struct {
 	name      string
+	kind      PairKind
+	threshold float64 // [eV]
 	reactants []string
 	products  []string
 	file      string
@@ -94,7 +96,9 @@ var (
 		"name", "kind", "projectile", "target", "defect_eV", "kinetic_part", "products", "scattering",
 		"file", "rate", "langevin",
 	}, sourceKeys)
-	pairKeys   = slices.Concat([]string{"name", "reactants", "products", "file", "rate"}, sourceKeys)
+	pairKeys = slices.Concat([]string{
+		"name", "kind", "reactants", "products", "threshold_eV", "file", "rate",
+	}, sourceKeys)
 	branchKeys = []string{"products", "part", "appearance_eV"}
 	setKeys    = []string{"title", "processes"}
 	sourceKeys = []string{"reference", "database", "date", "status", "bib", "note"}

@@ -210,9 +210,14 @@ func (r *gasReader) readTables(read readFile, folder string) map[string]*TableFi
 		return true
 	}
 	for i := range r.out.pairs {
-		if p := &r.out.pairs[i]; p.law == nil {
-			load(p.file, p.fileAt)
+		p := &r.out.pairs[i]
+		if p.law != nil || !load(p.file, p.fileAt) {
+			continue
 		}
+		c := complaints{file: path.Join(folder, p.file)}
+		t := tables[p.file]
+		checkTable(p.threshold/r.pairFactor(p, t.Frame), t, &c)
+		r.list = append(r.list, c.list...)
 	}
 	for i := range r.out.processes {
 		p := &r.out.processes[i]
@@ -221,7 +226,7 @@ func (r *gasReader) readTables(read readFile, folder string) map[string]*TableFi
 		}
 		name := path.Join(folder, p.file)
 		c := complaints{file: name}
-		checkTable(p, tables[p.file], r.labFactor(p, tables[p.file].Frame), &c)
+		checkTable(p.cost()*r.labFactor(p, tables[p.file].Frame), tables[p.file], &c)
 		r.list = append(r.list, c.list...)
 	}
 	return tables

@@ -49,6 +49,20 @@ func (t *Table) continuation(energyEV float64) float64 {
 	return last * math.Pow(energyEV/t.Energy[n-1], slope)
 }
 
+// scaled is the table with other energies, times the factor.
+func (t *Table) scaled(factor float64) Table {
+	s := *t
+	if factor == 1 {
+		return s
+	}
+	s.Energy = make([]float64, len(t.Energy))
+	for i, e := range t.Energy {
+		s.Energy[i] = factor * e
+	}
+	s.Onset, s.ValidTo = factor*t.Onset, factor*t.ValidTo
+	return s
+}
+
 // Max is the energy of the last row [eV].
 func (t *Table) Max() float64 {
 	if len(t.Energy) == 0 {

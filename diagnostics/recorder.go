@@ -15,8 +15,9 @@ type Recorder struct {
 	species []*speciesRecord
 	stride  int64
 	on      bool
-	wander  float64 // see SetWander
-	phases  int     // bins of RF phase
+	// see SetWander
+	wander, negative float64
+	phases           int // bins of RF phase
 
 	thresholds []float64 // [eV]
 	volume     []float64 // of the nodes, per area of the powered electrode [m]

@@ -87,8 +87,10 @@ func ColumnName(species string) string {
 }
 
 // SetWander sets the relative error that the slow wander of the particle number leaves in densities
-// and what is proportional to them, the least that the tables state.
-func (r *Recorder) SetWander(relative float64) { r.wander = relative }
+// and what is proportional to them, the least that the tables state; for negative ions another one.
+func (r *Recorder) SetWander(relative, negative float64) {
+	r.wander, r.negative = relative, negative
+}
 
 // errors returns the standard errors of a grid quantity.
 func (r *Recorder) errors(quantity int, v *stats.Vector) []float64 {
@@ -96,8 +98,13 @@ func (r *Recorder) errors(quantity int, v *stats.Vector) []float64 {
 	follows := quantity == gridIonization || quantity >= gridFixed &&
 		(quantity-gridFixed)%gridPerSpecies != gridEnergy
 	if follows {
+		least := r.wander
+		of := (quantity - gridFixed) / gridPerSpecies
+		if quantity > gridFixed && of > 0 && r.species[of].charge < 0 {
+			least = math.Max(least, r.negative)
+		}
 		for i := range se {
-			se[i] = math.Max(se[i], r.wander*math.Abs(v.Mean[i]))
+			se[i] = math.Max(se[i], least*math.Abs(v.Mean[i]))
 		}
 	}
 	return se

@@ -12,7 +12,8 @@ import (
 type PairRate struct {
 	perSpeed float64   // rows per m/s
 	rows     []float64 // rate coefficients [m3/s]
-	lowest   float64   // speed below which the rate coefficient is that at it [m/s]
+	lowest   float64   // speed below which the rate coefficient is that at it, or zero [m/s]
+	onset    bool      // it is zero
 	most     float64   // [m3/s]
 }
 
@@ -27,7 +28,7 @@ func NewPairRate(t *crosssections.Table, masses [2]float64, topEV float64) *Pair
 	first := math.Max(t.Energy[0], 1e-6)
 	r := &PairRate{
 		perSpeed: pairRows / math.Sqrt(top), rows: make([]float64, pairRows+2),
-		lowest: math.Sqrt(2 * first * phys.ElementaryCharge / mu),
+		lowest: math.Sqrt(2 * first * phys.ElementaryCharge / mu), onset: t.Onset > 0,
 	}
 	for i := range r.rows {
 		root := float64(i) / r.perSpeed
@@ -40,6 +41,9 @@ func NewPairRate(t *crosssections.Table, masses [2]float64, topEV float64) *Pair
 
 // At returns the rate coefficient at the relative speed g [m/s], in m3/s.
 func (r *PairRate) At(g float64) float64 {
+	if r.onset && g < r.lowest {
+		return 0
+	}
 	at := math.Min(math.Sqrt(math.Max(g, r.lowest))*r.perSpeed, pairRows)
 	i := int(at)
 	return r.rows[i] + (at-float64(i))*(r.rows[i+1]-r.rows[i])

@@ -77,6 +77,10 @@ func swarmQuantities() []swarmQuantity {
 			func(r *SwarmResult) stats.Estimate { return r.Ionization },
 		},
 		{
+			"loss_m3ps", "attachment rate coefficient", "m3/s",
+			func(r *SwarmResult) stats.Estimate { return r.Loss },
+		},
+		{
 			"townsend_m2", "ionization per length and density", "m2",
 			func(r *SwarmResult) stats.Estimate { return r.Townsend },
 		},

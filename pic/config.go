@@ -52,8 +52,8 @@ type Config struct {
 	Electrodes [2]Electrode // by Wall
 	Species    []Species
 	Relaxation Relaxation
-	// Pairs end each other once every PairEvery steps, a multiple of all species' sub-cycling.
-	Pairs     []Neutralization
+	// Pairs react once every PairEvery steps, a multiple of all species' sub-cycling.
+	Pairs     []PairReaction
 	PairEvery int
 	Weight    float64 // W [1/m2]
 	Chunks    int

@@ -13,7 +13,7 @@ type tally struct {
 	gone                         int64    // ended by collisions
 	emitted, reflected, absorbed [2]int64 // by wall
 	bornV2                       float64
-	goneV2                       float64 // of those that met another
+	goneV2                       float64 // of those that a pair's reaction ended or changed
 	emittedV2                    float64
 	absorbedV2                   [2]float64
 }
@@ -38,11 +38,11 @@ type SpeciesLedger struct {
 	Born       int64      // by collisions
 	Gone       int64      // ended by collisions: attached, neutralized, or of another species now
 	BornEnergy float64    // [J/m2]
-	GoneEnergy float64    // of those that met a particle of opposite charge [J/m2]
+	GoneEnergy float64    // of those that a reaction of a pair ended or changed [J/m2]
 	Absorbed   [2]int64   // by Wall
 	WallEnergy [2]float64 // carried to it [J/m2]
 	Emitted    [2]int64   // electrons set free at the Wall by ions
-	EmitEnergy float64    // of these, and of electrons that ions set free in the gas [J/m2]
+	EmitEnergy float64    // of these, of electrons set free by ions in the gas, or off ions [J/m2]
 	Reflected  [2]int64
 	Collisions []int64   // by channel
 	Losses     []float64 // energy lost to the gas by channel [J/m2]

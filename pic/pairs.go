@@ -9,11 +9,16 @@ import (
 	"ionfall/mcc"
 )
 
-// Neutralization lets the particles of two species end each other, in pairs within a cell: the
-// recombination of electrons with ions, or of positive with negative ions.
-type Neutralization struct {
+// PairReaction lets particles of two species react in pairs within a cell. They end each other, as
+// electrons and positive ions, or positive and negative ions do; or, with Detach, an electron sets
+// that of a negative ion free.
+type PairReaction struct {
 	A, B int // indices of the species
 	Rate *mcc.PairRate
+	// Detach, if not nil, makes another electron and a neutral of B; A are the electrons.
+	Detach *mcc.Detachment
+	// Neutral is the species of the neutral, if such are followed; 0 for none.
+	Neutral int
 }
 
 // Chunks are random samples of all particles, so the particles of one chunk meet each other as
@@ -30,9 +35,17 @@ func (c *Config) checkPairs() error {
 	}
 	most := 1
 	for _, p := range c.Pairs {
-		if p.A < 0 || p.B < 0 || p.A >= len(c.Species) || p.B >= len(c.Species) || p.A == p.B ||
-			c.Species[p.A].Charge+c.Species[p.B].Charge != 0 {
+		switch {
+		case p.A < 0 || p.B < 0 || p.A >= len(c.Species) || p.B >= len(c.Species) || p.A == p.B:
+			return fmt.Errorf("pic: no species %d and %d that could react", p.A, p.B)
+		case p.Detach == nil && c.Species[p.A].Charge+c.Species[p.B].Charge != 0:
 			return fmt.Errorf("pic: species %d and %d cannot end each other", p.A, p.B)
+		case p.Detach != nil && (p.A != 0 || c.Species[p.A].Charge != -1 ||
+			c.Species[p.B].Charge != -1):
+			return fmt.Errorf("pic: species %d cannot detach electrons of %d", p.A, p.B)
+		case p.Neutral < 0 || p.Neutral >= len(c.Species) ||
+			p.Neutral > 0 && c.Species[p.Neutral].Charge != 0:
+			return fmt.Errorf("pic: species %d is no neutral", p.Neutral)
 		}
 		most = max(most, c.Species[p.A].Every, c.Species[p.B].Every)
 	}
@@ -49,8 +62,8 @@ func (c *Config) checkPairs() error {
 	return nil
 }
 
-// neutralize ends pairs of chunk c when it is time: at a step in which all species move.
-func (s *Simulation) neutralize(w *worker, c int) {
+// react lets pairs of chunk c react when it is time: at a step in which all species move.
+func (s *Simulation) react(w *worker, c int) {
 	if len(s.config.Pairs) == 0 {
 		return
 	}
@@ -65,11 +78,11 @@ func (s *Simulation) neutralize(w *worker, c int) {
 			Seed: s.config.Seed, Purpose: rng.Pairs, Species: uint16(i), Chunk: uint32(c),
 			Step: uint64(w.step),
 		}.Stream()
-		s.neutralizePair(w, p, c, &stream)
+		s.reactPair(w, p, c, &stream)
 	}
 }
 
-func (s *Simulation) neutralizePair(w *worker, p *Neutralization, c int, stream *rng.Stream) {
+func (s *Simulation) reactPair(w *worker, p *PairReaction, c int, stream *rng.Stream) {
 	a, b := &s.species[p.A].chunks[c], &s.species[p.B].chunks[c]
 	if len(a.x) == 0 || len(b.x) == 0 {
 		return
@@ -100,10 +113,17 @@ func (s *Simulation) neutralizePair(w *worker, p *Neutralization, c int, stream 
 			if stream.Float64()*p.Rate.Most() >= p.Rate.At(g) {
 				continue
 			}
-			w.ended[0], w.ended[1] = append(w.ended[0], ia), append(w.ended[1], ib)
-			last := len(listA) - 1
-			listA[ka], listA = listA[last], listA[:last]
-			last = len(listB) - 1
+			if p.Detach != nil {
+				if !s.detach(w, p, c, ia, ib, stream) {
+					continue
+				}
+			} else {
+				w.ended[0] = append(w.ended[0], ia)
+				last := len(listA) - 1
+				listA[ka], listA = listA[last], listA[:last]
+			}
+			w.ended[1] = append(w.ended[1], ib)
+			last := len(listB) - 1
 			listB[kb], listB = listB[last], listB[:last]
 		}
 	}

@@ -23,7 +23,7 @@ func pairGas(t *testing.T, n int, rate *mcc.PairRate, spread float64) *Simulatio
 			{Name: "X-", Charge: -1, Mass: mass, Every: 1},
 		},
 		Weight: 1e16 * 0.01 / float64(n), Chunks: 4, Seed: 7,
-		Pairs: []Neutralization{{A: 0, B: 1, Rate: rate}}, PairEvery: 10,
+		Pairs: []PairReaction{{A: 0, B: 1, Rate: rate}}, PairEvery: 10,
 	}
 	s, err := New(c)
 	if err != nil {
@@ -59,7 +59,7 @@ func TestPairsDecay(t *testing.T) {
 		w := s.workers[0]
 		for range periods { // nothing moves, so that no field disturbs
 			for c := range s.config.Chunks {
-				s.neutralize(w, c)
+				s.react(w, c)
 			}
 			w.step += 10
 		}

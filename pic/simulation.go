@@ -56,7 +56,7 @@ type worker struct {
 	events         []Event
 	half           halfKick
 	pairs          pairing
-	meeting        [2]pairing // of the two species of a Neutralization
+	meeting        [2]pairing // of the two species of a PairReaction
 	ended          [2][]int32
 }
 
@@ -232,8 +232,8 @@ func (s *Simulation) work(w *worker) {
 		s.observe(w)                // read-only: diagnostics
 		s.carryDensity(w)           // species that rest keep their deposit
 		for c := w.index; c < s.config.Chunks; c += len(s.workers) {
-			s.relax(w, c)      // electrons with each other
-			s.neutralize(w, c) // pairs of opposite charge
+			s.relax(w, c) // electrons with each other
+			s.react(w, c) // pairs of charged particles
 			for i := range s.species {
 				if s.species[i].due(w.step) {
 					s.collide(w, i, c) // null-collision Monte Carlo with the gas

@@ -148,7 +148,8 @@ func describeGas(g *crosssections.Gas, from string) *shownGas {
 	for _, q := range g.Pairs {
 		t := &q.Table
 		s.Processes = append(s.Processes, shownProcess{
-			Name: q.Name, Projectile: q.Reactants[0], Target: q.Reactants[1], Kind: "pair",
+			Name: q.Name, Projectile: q.Reactants[0], Target: q.Reactants[1],
+			Kind: q.Kind.String(), Threshold: q.Threshold,
 			Products: q.Products, From: t.Energy[0], To: t.Max(), ValidTo: t.Limit(),
 			Rows: len(t.Energy), Frame: crosssections.CenterOfMass.String(),
 			Source: q.Source.Citation, Database: q.Source.Database, Date: q.Source.Date,

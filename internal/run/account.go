@@ -98,7 +98,6 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, species []pic.Species,
 		t.Work = make([]float64, len(l.Species))
 		t.Collisions = make([]float64, len(l.Species))
 		t.Moves = make([]float64, len(l.Species))
-		t.NegativeBorn, t.NegativeLost = make([]float64, len(l.Species)), make([]float64, len(l.Species))
 	}
 	t.Periods++
 	t.Electric += l.Electric
@@ -112,10 +111,6 @@ func (t *accountTotals) add(l *pic.Ledger, row Row, species []pic.Species,
 		}
 		t.Beyond += float64(sp.Beyond)
 		t.Moves[i] += float64(sp.Count) * float64(l.Steps)
-		if i > 0 && species[i].Charge < 0 {
-			t.NegativeBorn[i] += float64(sp.Born)
-			t.NegativeLost[i] += float64(sp.Gone + sp.Absorbed[0] + sp.Absorbed[1])
-		}
 		if species[i].Charge > 0 {
 			t.Born += l.Weight * float64(sp.Born)
 			t.Lost += l.Weight * float64(sp.Absorbed[0]+sp.Absorbed[1]+sp.Gone)
@@ -145,10 +140,14 @@ func (m *machine) wander() float64 {
 	return math.Sqrt(2 * q * (1 - q*(1-math.Exp(-1/q))) / ions)
 }
 
-// atLeast raises an estimate's error to that of the wander, for what follows the density.
+// atLeast raises an estimate's error to that of the wander, for what follows the density, and adds
+// what the number of negative ions makes.
 func (m *machine) atLeast(e stats.Estimate) stats.Estimate {
 	if least := m.wander() * math.Abs(e.Mean); e.StdErr < least {
 		e.StdErr = least
+	}
+	if _, effect := m.negativeError(); effect > 0 {
+		e.StdErr = math.Hypot(e.StdErr, effect*e.Mean)
 	}
 	return e
 }

@@ -1,6 +1,7 @@
 package run
 
 import (
+	"cmp"
 	"fmt"
 
 	"ionfall/crosssections"
@@ -66,15 +67,20 @@ func (p *Plan) heavySources() []store.Reference {
 func sources(gas string, processes []crosssections.Process) []store.Reference {
 	var list []store.Reference
 	for _, p := range processes {
-		key := p.Source.Bib
-		if key == "" {
-			key = p.File
-		}
-		if key == "" {
-			key = p.Name
-		}
+		key := cmp.Or(p.Source.Bib, p.File, p.Name)
 		why := fmt.Sprintf("cross section of %s: %s (%s)", gas, p.Name, p.Source.Status)
 		list = append(list, store.Reference{Key: key, Citation: p.Source.Citation, Why: why})
+	}
+	return list
+}
+
+// pairSources lists where the reactions of charged species with each other come from.
+func (p *Plan) pairSources() []store.Reference {
+	var list []store.Reference
+	for _, q := range p.pairs() {
+		key := cmp.Or(q.Source.Bib, q.File, q.Name)
+		why := fmt.Sprintf("%v: %s (%s)", q.Kind, q.Name, q.Source.Status)
+		list = append(list, store.Reference{Key: key, Citation: q.Source.Citation, Why: why})
 	}
 	return list
 }

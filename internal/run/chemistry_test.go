@@ -54,6 +54,13 @@ ion:
     reference: nobody
     status: memory
   - {name: GeH3+ exchange, projectile: GeH3+, kind: backscatter, products: [GeH3+, GeH4], file: exchange.csv}
+pairs:
+  - name: detachment
+    kind: detachment
+    reactants: [e, GeH3-]
+    products: [e, e, GeH3]
+    threshold_eV: 1.6
+    file: detachment.csv
 `
 
 const inventedHeader = `# what: invented
@@ -77,6 +84,7 @@ func TestAGasOfFilesAlone(t *testing.T) {
 		"gas.yaml": germane, "elastic.csv": "0,2e-19\n1000,1e-20\n",
 		"vibration.csv": "0.2,0\n1,5e-20\n10,2e-20\n1000,1e-22\n", "exchange.csv": "0.001,3e-18\n1000,2e-19\n",
 		"ionization.csv": "11,0\n60,5e-20\n1000,1e-20\n", "attachment.csv": "6,0\n8,4e-22\n12,0\n",
+		"detachment.csv": "3,0\n10,5e-20\n1000,2e-20\n",
 	} {
 		if name != "gas.yaml" {
 			rows = inventedHeader + rows
@@ -132,6 +140,11 @@ numerics: {cells: 48, steps_per_period: 960, particles_per_cell: 60, ion_substep
 		return strings.Contains(r.Why, "GeH3-") && strings.Contains(r.Why, "computed")
 	}) {
 		t.Error("the estimated collisions of GeH3- are not among the references")
+	}
+	if !slices.ContainsFunc(s.References, func(r store.Reference) bool {
+		return r.Why == "detachment: detachment (memory)"
+	}) {
+		t.Error("detachment by electrons is not among the references")
 	}
 	confined(t, out, "GeH3_minus_density_m3")
 }

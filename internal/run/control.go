@@ -64,8 +64,6 @@ type accountTotals struct {
 	Moves      []float64 // by species
 	Beyond     float64
 	AllCollide float64
-	// NegativeBorn and NegativeLost are simulated particles by species.
-	NegativeBorn, NegativeLost []float64
 }
 
 // Row is one RF period of the history.

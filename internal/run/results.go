@@ -2,6 +2,7 @@ package run
 
 import (
 	"fmt"
+	"math"
 	"path/filepath"
 	"runtime"
 	"strings"
@@ -169,7 +170,8 @@ func (m *machine) references() []store.Reference {
 	for _, g := range m.plan.Gases {
 		list = append(list, sources(g.Name, g.Electron)...)
 	}
-	return append(list, m.plan.heavySources()...)
+	list = append(list, m.plan.heavySources()...)
+	return append(list, m.plan.pairSources()...)
 }
 
 // historyTable is one row a period.
@@ -224,7 +226,8 @@ func (m *machine) write() (*store.Summary, error) {
 		"program": "ionfall " + m.options.version(), "input_sha256": m.plan.InputSHA256(),
 		"verdict": s.Verdict, "seed": fmt.Sprint(m.plan.Case.Seed),
 	}
-	m.rec.SetWander(m.wander())
+	number, effect := m.negativeError()
+	m.rec.SetWander(math.Hypot(m.wander(), effect), number)
 	for _, t := range []*table.Table{
 		m.rec.Profiles(), m.rec.Phases(), m.rec.IonEnergy(), m.rec.IonAngle(),
 		m.rec.ElectronEnergy(), m.rec.Waveforms(), m.historyTable(),

@@ -43,6 +43,7 @@ const generated = "Written by `go generate ./crosssections`; linear interpolatio
 func tables(library fs.FS) ([]file, error) {
 	files := append(argonElectrons(), argonIons()...)
 	files = append(files, heliumFormulas()...)
+	files = append(files, detachment("O2"), detachment("CO2"))
 	derived, err := heliumDerived(library)
 	if err != nil {
 		return nil, err
@@ -113,6 +114,27 @@ func argonIons() []file {
 			fits.ArgonIonIsotropic),
 		table("ion-backscatter.csv", "Ar+ on argon, backscattering (charge exchange)",
 			fits.ArgonIonBackscatter),
+	}
+}
+
+// detachment is that of O- by electrons, in the folder of a gas that has the ion.
+func detachment(gas string) file {
+	return file{
+		name: gas + "/pair-Om-e.csv",
+		rows: tabulate(fits.OxygenIonDetachment, fits.DetachmentOnset, 1000),
+		header: [][2]string{
+			{"what", "electrons with O-, detachment"},
+			{"reference", "L. Vejby-Christensen et al., Phys. Rev. A 53, 2371 (1996)"},
+			{"status", "memory"},
+			{"frame", "center_of_mass"},
+			{"valid_to_eV", "30"},
+			{"note", fmt.Sprintf("Recalled is a fit of the rate coefficient to the measurement, "+
+				"%g Te^%g exp(-%g/Te) m3/s with Te in eV, of models of oxygen discharges; the rows "+
+				"are the cross section that has this rate coefficient at every Te.",
+				fits.DetachmentRate, fits.DetachmentPower, fits.DetachmentOnset)},
+			{"note", "As recalled, the measurement reaches up to some 30 eV."},
+			{"note", generated},
+		},
 	}
 }
 
