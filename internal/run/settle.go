@@ -53,7 +53,6 @@ func (m *machine) project(row *Row) (done bool, undisturbed int) {
 	chance := projection * c.Residence / float64(r.Length) *
 		math.Sqrt(2*float64(r.Length)/c.Residence/float64(row.Ions))
 	content := row.Content
-	undisturbed = r.Length
 	switch calm := math.Abs(jump) < math.Max(leastJump, 2*chance); {
 	case r.Number == 1: // sees the start's own transient
 	case calm:
@@ -63,11 +62,13 @@ func (m *machine) project(row *Row) (done bool, undisturbed int) {
 		m.sim.ScaleWeight(math.Exp(jump))
 		m.rebase()
 		content *= math.Exp(jump)
-		undisturbed = 0
 		c.Event = fmt.Sprintf("density projected by %+.1f %%", 100*math.Expm1(jump))
 	}
 	if m.balanceNegative() {
 		done = false
+	}
+	if c.Event == "" {
+		undisturbed = r.Length
 	}
 	c.startRound(content)
 	return done || r.Number >= mostRounds, undisturbed
