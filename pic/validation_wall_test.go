@@ -189,14 +189,17 @@ func (r *reservoir) rows() []validation.Row {
 	return []validation.Row{
 		row("wall potential", "V", -r.electron*eta, potential.Mean, potential.StdErr),
 		row("surface charge", "C/m2", r.sheet(), charge.Mean, charge.StdErr),
+		// As many of both arrive but for the change of the surface charge, less than sqrt(hits).
+		row("electrons that hit the wall, by ions", "", 1, r.hits[0]/r.hits[1],
+			math.Sqrt(1/r.hits[0]+1/r.hits[1])),
 		row("mean energy of electrons at the wall", "eV", 2*r.electron, r.energy[0]/r.hits[0], spread),
 		row("mean energy of ions at the wall", "eV", r.electron*(eta+r.mach*r.mach/2),
 			r.energy[1]/r.hits[1], potential.StdErr),
 	}
 }
 
-// Goal: an isolated wall takes the potential and the charge of kinetic theory, and what hits it has
-// the energies of theory. Method: the exact solution of the half space; the errors are
+// Goal: an isolated wall takes the potential and the charge of kinetic theory, no net current flows
+// to it, and what hits it has the energies of theory. Method: the exact solution of the half space; the errors are
 // statistical. Slow fluctuations of the potential shift its mean by var/(2 Te), 0.01 % with the
 // 0.07 V that means over 20/omega_p fluctuate by; the grid of a quarter Debye length changes the
 // charge by (dx/lambda_D)^2/24 = 0.3 % at most.

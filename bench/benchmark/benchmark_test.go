@@ -12,6 +12,7 @@ import (
 	"testing"
 
 	"ionfall/crosssections"
+	"ionfall/internal/validation"
 )
 
 func mustParse(t *testing.T, args ...string) *options {
@@ -227,5 +228,30 @@ func TestWrongCommandLines(t *testing.T) {
 		if err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("%s: %v, want %s", args, err, want)
 		}
+	}
+}
+
+// Goal: many runs that are a little too high together are seen, and a reference that they share
+// counts once. Method: three runs of two references, by hand.
+func TestMeanOfRuns(t *testing.T) {
+	row := func(quantity string, reference, ours, stdErr float64) validation.Row {
+		return validation.Row{
+			Section: "helium benchmark, case 1", Quantity: quantity + sameTables,
+			Reference: reference, Ours: ours, OursError: stdErr,
+		}
+	}
+	rows := []validation.Row{
+		row("a", 2, 2.06, 0.02), row("b", 2, 2.1, 0.04), row("c", 4, 4.16, 0.04),
+		{Section: "helium benchmark, case 1", Quantity: "d, against the published", Reference: 1},
+	}
+	mean, ok := meanRow(rows)
+	ours := math.Sqrt(0.01*0.01+0.02*0.02+0.01*0.01) / 3
+	shared := math.Sqrt(2*2+1) * independentError / 3
+	if !ok || math.Abs(mean.Ours-1.04) > 1e-12 || math.Abs(mean.OursError-ours) > 1e-12 ||
+		math.Abs(mean.ReferenceError-shared) > 1e-12 || mean.Pass != (mean.Deviation < 4) {
+		t.Errorf("%v %+v, want 1.04 +- %g and 1 +- %g", ok, mean, ours, shared)
+	}
+	if _, ok := meanRow(rows[:1]); ok {
+		t.Error("a mean of one run")
 	}
 }

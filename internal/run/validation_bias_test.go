@@ -51,7 +51,8 @@ func biasRow(quantity string, want, wantErr, got, gotErr, limit float64, kind va
 // changes its sign with the phase, is opposite at 0 and 90 degrees, and whose magnitude is that of
 // the analytic model for the voltage ratio of the sheaths. Method: runs to 2 %. The model neglects
 // bulk and floating voltage: about the 5 Te of a floating potential in argon. At 45 degrees the
-// extremes are alike, but not the slopes of the voltage, so that symmetry does not ask for 0.
+// extremes are alike, but not the slopes of the voltage, so that symmetry does not ask for 0: it
+// asks for the opposite at 135 degrees, where the waveform is that of 45 with its sign changed.
 func TestValidationBiasOfTwoTones(t *testing.T) {
 	onlyWhenValidating(t, "some minutes")
 	const symmetry = "symmetry of equal electrodes (common practice)"
@@ -62,7 +63,7 @@ func TestValidationBiasOfTwoTones(t *testing.T) {
 			"series: {shape: asymmetric, frequency: 13.56 MHz, amplitude: 300 V, phase: %d deg}", phase)}
 	}
 	list := biasRuns(t, [2]string{"{}", "tones: [{frequency: 13.56 MHz, amplitude: 200 V}]"},
-		two(0), two(45), two(90))
+		two(0), two(45), two(90), two(135))
 	one := lookup(t, list[0], "self_bias_V")
 	rows := []validation.Row{
 		biasRow("one tone, 200 V", 0, 0, one.Value, one.SE, 4, validation.Sigma, symmetry, "exact", ""),
@@ -78,9 +79,11 @@ func TestValidationBiasOfTwoTones(t *testing.T) {
 				"sheaths' largest voltages, from their ion densities; with ratio 1 %.1f V", eps,
 				-150*(extremes[0]+extremes[1]))))
 	}
-	a, b := lookup(t, list[1], "self_bias_V"), lookup(t, list[3], "self_bias_V")
-	rows = append(rows, biasRow("two tones, 90 against 0 deg", -a.Value, a.SE, b.Value, b.SE, 4,
-		validation.Sigma, symmetry, "exact", ""))
+	for k, name := range []string{"90 against 0 deg", "135 against 45 deg"} {
+		a, b := lookup(t, list[1+k], "self_bias_V"), lookup(t, list[3+k], "self_bias_V")
+		rows = append(rows, biasRow("two tones, "+name, -a.Value, a.SE, b.Value, b.SE, 4,
+			validation.Sigma, symmetry, "exact", ""))
+	}
 	record(t, "bias.json", rows...)
 }
 
