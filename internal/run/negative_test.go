@@ -112,12 +112,19 @@ func TestNegativeErrorIsStated(t *testing.T) {
 		{negativeCount{Born: 20_000, Lost: 2000}, 1, store.Fail},
 	} {
 		m.control.Negative[ion] = c.count
-		number, effect := m.negativeError()
+		number, effect := m.negativeError(true)
 		if math.Abs(number/c.number-1) > 1e-9 {
 			t.Errorf("%+v: error %.4g, want %.4g", c.count, number, c.number)
 		}
 		if want := negativeLeverage * many / (electrons + many) * c.number; math.Abs(effect-want) > 1e-9 {
 			t.Errorf("%+v: effect %.4g, want %.4g", c.count, effect, want)
+		}
+		off := c.count.Born+c.count.Lost >= negativeEvents && c.count.Born > 2*c.count.Lost
+		if m.negativeOff() != off {
+			t.Errorf("%+v: off %v", c.count, !off)
+		}
+		if chance, _ := m.negativeError(false); off && chance > 0.1*number {
+			t.Errorf("%+v: error %.4g of which by chance %.4g", c.count, number, chance)
 		}
 		got := m.atLeast(stats.Estimate{Mean: 3, StdErr: 0.04}).StdErr
 		if want := math.Hypot(0.04, 3*effect); math.Abs(got-want) > 1e-12 {
@@ -135,7 +142,7 @@ func TestNegativeErrorIsStated(t *testing.T) {
 	if m.sim, err = p.assemble(n, 1e9); err != nil {
 		t.Fatal(err)
 	}
-	if number, effect := m.negativeError(); number != 0 || effect != 0 || m.negativeChecks() != nil {
+	if number, effect := m.negativeError(true); number != 0 || effect != 0 || m.negativeChecks() != nil {
 		t.Errorf("no negative ions: errors %g and %g", number, effect)
 	}
 }
