@@ -74,7 +74,8 @@ func piecesOfPhysics() []part {
 				"pressure.",
 			command: "go test ./mcc -run 'HydrogenIonsReact|SilaneAttachment' -count 1 -validate " +
 				"-update; go test ./pic -run 'PairsDecay|DetachmentDecay' -count 1 -update; " +
-				"go test ./internal/run -run EnergyAtTheWalls -count 1 -update",
+				"go test ./internal/run -run 'EnergyAtTheWalls|NegativeIonsSettle' " +
+				"-count 1 -update",
 			takes: "some minutes",
 		},
 	}
