@@ -69,11 +69,13 @@ func piecesOfPhysics() []part {
 		},
 		{
 			file: "gases.json", title: "Gases of film deposition: ions that change, fast neutrals",
-			about: "Ions that become others, attachment, charged particles that end each other, and " +
-				"where the energy of the ions goes at a high pressure.",
+			about: "Ions that become others, attachment, charged particles that end each other, " +
+				"electrons that detach negative ions, and where the energy of the ions goes at a high " +
+				"pressure.",
 			command: "go test ./mcc -run 'HydrogenIonsReact|SilaneAttachment' -count 1 -validate " +
-				"-update; go test ./pic -run PairsDecay -count 1 -update; " +
-				"go test ./internal/run -run EnergyAtTheWalls -count 1 -update",
+				"-update; go test ./pic -run 'PairsDecay|DetachmentDecay' -count 1 -update; " +
+				"go test ./internal/run -run 'EnergyAtTheWalls|NegativeIonsSettle' " +
+				"-count 1 -update",
 			takes: "some minutes",
 		},
 	}

@@ -143,11 +143,17 @@ func (m *machine) wander() float64 {
 // atLeast raises an estimate's error to that of the wander, for what follows the density, and adds
 // what the number of negative ions makes.
 func (m *machine) atLeast(e stats.Estimate) stats.Estimate {
+	_, effect := m.negativeError(true)
+	return m.withErrors(e, effect)
+}
+
+// withErrors does so for a given part that negative ions make.
+func (m *machine) withErrors(e stats.Estimate, negative float64) stats.Estimate {
 	if least := m.wander() * math.Abs(e.Mean); e.StdErr < least {
 		e.StdErr = least
 	}
-	if _, effect := m.negativeError(); effect > 0 {
-		e.StdErr = math.Hypot(e.StdErr, effect*e.Mean)
+	if negative > 0 {
+		e.StdErr = math.Hypot(e.StdErr, negative*e.Mean)
 	}
 	return e
 }

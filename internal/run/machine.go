@@ -220,7 +220,12 @@ func (m *machine) decideAveraging() {
 	if !m.accurate() {
 		return
 	}
-	if ok, _, name := m.steady(len(m.history) - c.StagePeriods); !ok && c.Restarts < mostRestarts {
+	ok, _, name := m.steady(len(m.history) - c.StagePeriods)
+	if m.negativeOff() {
+		ok, name = false, "the number of negative ions"
+	}
+	if !ok && c.Restarts < mostRestarts {
+		m.balanceNegative()
 		c.Restarts++
 		c.Event = name + " drifts: the average starts again"
 		m.rec = m.newRecorder()
@@ -242,11 +247,14 @@ const (
 	mostRestarts = 3
 )
 
-// accurate tells whether the errors at every substrate are as small as was asked for.
+// accurate tells whether the errors at every substrate are as small as was asked for, those that
+// become smaller with time.
 func (m *machine) accurate() bool {
 	want := m.plan.Case.Accuracy
 	for _, wall := range m.plan.substrates() {
-		energy, flux := m.progressAt(wall)
+		energy, flux := m.rec.Progress(wall)
+		_, effect := m.negativeError(false)
+		flux = m.withErrors(flux, effect)
 		if !(energy.StdErr <= want.IonEnergy*energy.Mean && flux.StdErr <= want.IonFlux*flux.Mean) {
 			return false
 		}

@@ -151,10 +151,10 @@ func negativeEffect(n, electrons float64) float64 {
 // negativeError returns the relative standard error of the number of negative ions, and that which
 // it makes in the ion flux and the density. What was seen since the number was set counts by its
 // births and losses, beside those that it was set by; where the number does not stand, it is off by
-// the difference, too.
-func (m *machine) negativeError() (number, effect float64) {
+// the difference, too, which is left out of the error by chance alone.
+func (m *machine) negativeError(all bool) (number, effect float64) {
 	electrons := float64(m.sim.Species()[0].Count())
-	all, sum := 0.0, 0.0
+	ions, sum := 0.0, 0.0
 	for i, sp := range m.sim.Species() {
 		if i == 0 || sp.Charge >= 0 || i >= len(m.control.Negative) {
 			continue
@@ -164,22 +164,49 @@ func (m *machine) negativeError() (number, effect float64) {
 		if seen := k.Born + k.Lost; seen+k.Known > 0 {
 			ln, _ := off(k.Born, k.Lost, n, electrons)
 			ln *= float64(seen) / float64(seen+k.Known)
+			if !all {
+				ln = 0
+			}
 			relative = math.Min(1, math.Hypot(ln, offError(seen+k.Known, n, electrons)))
 		}
-		all += n
+		ions += n
 		sum += n * n * relative * relative
 	}
-	if all == 0 {
+	if ions == 0 {
 		return 0, 0
 	}
-	number = math.Sqrt(sum) / all
-	return number, negativeEffect(all, electrons) * number
+	number = math.Sqrt(sum) / ions
+	return number, negativeEffect(ions, electrons) * number
+}
+
+// negativeOff tells whether what was seen since the number of negative ions was set says that it is
+// off, by more than chance and enough to matter.
+func (m *machine) negativeOff() bool {
+	electrons := float64(m.sim.Species()[0].Count())
+	for i, sp := range m.sim.Species() {
+		if i == 0 || sp.Charge >= 0 || i >= len(m.control.Negative) {
+			continue
+		}
+		k, n := &m.control.Negative[i], float64(sp.Count())
+		if k.Born+k.Lost < negativeEvents {
+			continue
+		}
+		ln, se := off(k.Born, k.Lost, n, electrons)
+		if k.Known > 0 {
+			se = math.Hypot(se, offError(k.Known, n, electrons))
+		}
+		tolerance := negativeShare * m.plan.Case.Accuracy.IonFlux
+		if math.Abs(ln) > driftErrors*se && math.Abs(ln)*negativeEffect(n, electrons) > tolerance {
+			return true
+		}
+	}
+	return false
 }
 
 // negativeChecks judge how well the number of negative ions is known: they follow so slowly that an
 // average sees no drift.
 func (m *machine) negativeChecks() []store.Check {
-	number, effect := m.negativeError()
+	number, effect := m.negativeError(true)
 	if number == 0 {
 		return nil
 	}

@@ -226,7 +226,7 @@ func (m *machine) write() (*store.Summary, error) {
 		"program": "ionfall " + m.options.version(), "input_sha256": m.plan.InputSHA256(),
 		"verdict": s.Verdict, "seed": fmt.Sprint(m.plan.Case.Seed),
 	}
-	number, effect := m.negativeError()
+	number, effect := m.negativeError(true)
 	m.rec.SetWander(math.Hypot(m.wander(), effect), number)
 	for _, t := range []*table.Table{
 		m.rec.Profiles(), m.rec.Phases(), m.rec.IonEnergy(), m.rec.IonAngle(),
