@@ -27,16 +27,16 @@ const (
 
 // publishedNote is what was found about the difference from the published values.
 const publishedNote = "the benchmark prescribes a set of cross sections that is not bundled. " +
-	"Tested, case 1: four bundled sets span 1.7 to 2.2e14, and an independent program finds the same with " +
-	"the same sets (3 % less on average) and 1.3 to 2.2e14 with others; the elastic cross section " +
-	"above 15 eV counts by a power of about 2.3. Not tested: the prescribed set; "
+	"Tested, case 1: four bundled sets span 1.7 to 2.2e14, and an independent program finds the " +
+	"same with the same sets (3 % less on average) and 1.3 to 2.2e14 with others; the elastic " +
+	"cross section above 15 eV counts by a power of about 2.3. Not tested: the prescribed set; "
 
 // meanNote is what was found about the difference from the independent program.
-const meanNote = "tested, means of 512 periods: set phelps (2.156 +- 0.006)e14, with velocities left " +
-	"half a step behind at collisions, as is usual, (2.123 +- 0.005)e14, 1.6 +- 0.4 % less: if the " +
-	"other program does so, half of the difference comes from this. The very rows of the other " +
-	"program (elastic up to 2.4 % larger between 26 and 95 eV) give (2.174 +- 0.008)e14, 0.8 +- 0.4 % " +
-	"more. The rest, 2.3 +- 0.9 %, is not explained"
+const meanNote = "tested, means of 512 periods: set phelps (2.156 +- 0.006)e14, with velocities " +
+	"left half a step behind at collisions, as is usual, (2.123 +- 0.005)e14, 1.6 +- 0.4 % less: " +
+	"if the other program does so, half of the difference comes from this. The very rows of the " +
+	"other program (elastic up to 2.4 % larger between 26 and 95 eV) give (2.174 +- 0.008)e14, " +
+	"0.8 +- 0.4 % more. The rest, 2.3 +- 0.9 %, is not explained"
 
 // recordRows merges the results in the JSON files into the rows of a validation file. Runs that
 // were not finished are refused.
