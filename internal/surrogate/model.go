@@ -23,19 +23,26 @@ type Model struct {
 	low, span    []float64 // of the inputs
 	x            [][]float64
 	scale, shift float64 // of the values
-	params       params
-	chol         mat.Cholesky
-	constant     float64
-	constantVar  float64
-	ones         *mat.VecDense // K^-1 1
-	weights      *mat.VecDense // K^-1 (y - constant)
 	values       []float64
+	noise        []float64 // variances of the values
+	likely       *process  // with the most likely parameters
+	draws        []*process
 }
 
 // params are what the likelihood decides.
 type params struct {
 	amplitude float64   // s, in standard deviations of the samples
 	lengths   []float64 // l, in ranges of the inputs
+}
+
+// process is a Gaussian process with given parameters, conditioned on the samples.
+type process struct {
+	params      params
+	chol        mat.Cholesky
+	constant    float64
+	constantVar float64
+	ones        *mat.VecDense // K^-1 1
+	weights     *mat.VecDense // K^-1 (y - constant)
 }
 
 // Fit finds the surrogate of the samples: at least two more than there are inputs, at
@@ -58,16 +65,17 @@ func Fit(samples []Sample) (*Model, error) {
 		m.low[i], m.span[i] = low, high-low
 	}
 	m.normalize(samples)
-	noise := make([]float64, len(samples))
-	for i, s := range samples {
+	for _, s := range samples {
 		m.x = append(m.x, m.scaled(s.X))
-		noise[i] = s.StdErr * s.StdErr / (m.scale * m.scale)
+		m.noise = append(m.noise, s.StdErr*s.StdErr/(m.scale*m.scale))
 	}
-	m.params = m.mostLikely(noise)
-	if _, ok := m.condition(m.params, noise); !ok {
+	best := m.mostLikely()
+	var ok bool
+	if m.likely, _, ok = m.condition(best); !ok {
 		return nil, errors.New("surrogate: the covariance of the samples is singular: " +
 			"are samples without error at one place?")
 	}
+	m.draws = m.sampleParams(best)
 	return m, nil
 }
 
@@ -138,32 +146,33 @@ func (p params) kernel(a, b []float64) float64 {
 // nugget is added to the diagonal for the rounding, in amplitudes squared.
 const nugget = 1e-9
 
-// condition prepares predictions with the parameters. It returns the logarithm of the
+// condition prepares predictions with the parameters. It returns, too, the logarithm of the
 // restricted likelihood of the samples, up to a constant, and whether the covariance is regular.
-func (m *Model) condition(p params, noise []float64) (logLikelihood float64, ok bool) {
+func (m *Model) condition(p params) (c *process, logLikelihood float64, ok bool) {
 	n := len(m.x)
 	k := mat.NewSymDense(n, nil)
 	for i := range n {
 		for j := range i {
 			k.SetSym(i, j, p.kernel(m.x[i], m.x[j]))
 		}
-		k.SetSym(i, i, p.amplitude*p.amplitude*(1+nugget)+noise[i])
+		k.SetSym(i, i, p.amplitude*p.amplitude*(1+nugget)+m.noise[i])
 	}
-	if !m.chol.Factorize(k) {
-		return math.Inf(-1), false
+	c = &process{params: p}
+	if !c.chol.Factorize(k) {
+		return nil, math.Inf(-1), false
 	}
 	one := mat.NewVecDense(n, nil)
 	for i := range n {
 		one.SetVec(i, 1)
 	}
 	y := mat.NewVecDense(n, append([]float64(nil), m.values...))
-	m.ones, m.weights = mat.NewVecDense(n, nil), mat.NewVecDense(n, nil)
+	c.ones, c.weights = mat.NewVecDense(n, nil), mat.NewVecDense(n, nil)
 	// An ill-conditioned solution is still one: the nugget bounds the condition number.
-	_ = m.chol.SolveVecTo(m.ones, one)
-	precision := mat.Dot(one, m.ones)
-	m.constant, m.constantVar = mat.Dot(m.ones, y)/precision, 1/precision
-	y.AddScaledVec(y, -m.constant, one)
-	_ = m.chol.SolveVecTo(m.weights, y)
-	l := -0.5*mat.Dot(y, m.weights) - 0.5*m.chol.LogDet() - 0.5*math.Log(precision)
-	return l, !math.IsNaN(l)
+	_ = c.chol.SolveVecTo(c.ones, one)
+	precision := mat.Dot(one, c.ones)
+	c.constant, c.constantVar = mat.Dot(c.ones, y)/precision, 1/precision
+	y.AddScaledVec(y, -c.constant, one)
+	_ = c.chol.SolveVecTo(c.weights, y)
+	l := -0.5*mat.Dot(y, c.weights) - 0.5*c.chol.LogDet() - 0.5*math.Log(precision)
+	return c, l, !math.IsNaN(l)
 }
