@@ -72,12 +72,41 @@ func Fit(samples []Sample) (*Model, error) {
 	best := m.mostLikely()
 	var ok bool
 	if m.likely, _, ok = m.condition(best); !ok {
-		return nil, errors.New("surrogate: the covariance of the samples is singular: " +
-			"are samples without error at one place?")
+		return nil, errSingular
 	}
 	m.draws = m.sampleParams(best)
 	return m, nil
 }
+
+// Known returns the surrogate with a given amplitude, in the unit of the values, and lengths in those
+// of the inputs: for few samples of a quantity whose kind is known well. It costs little.
+func Known(samples []Sample, amplitude float64, lengths []float64) (*Model, error) {
+	if len(samples) == 0 || len(samples[0].X) != len(lengths) {
+		return nil, fmt.Errorf("surrogate: %d samples, want some with %d inputs", len(samples),
+			len(lengths))
+	}
+	if err := checkFinite(samples); err != nil {
+		return nil, err
+	}
+	d := len(lengths)
+	m := &Model{low: make([]float64, d), span: make([]float64, d), scale: 1}
+	for i := range d {
+		m.span[i] = 1
+	}
+	for _, s := range samples {
+		m.x, m.values = append(m.x, s.X), append(m.values, s.Value)
+		m.noise = append(m.noise, s.StdErr*s.StdErr)
+	}
+	var ok bool
+	if m.likely, _, ok = m.condition(params{amplitude, lengths}); !ok {
+		return nil, errSingular
+	}
+	m.draws = []*process{m.likely}
+	return m, nil
+}
+
+var errSingular = errors.New("surrogate: the covariance of the samples is singular: are samples " +
+	"without error at one place?")
 
 func checkSamples(samples []Sample) error {
 	if len(samples) == 0 {
@@ -88,6 +117,11 @@ func checkSamples(samples []Sample) error {
 		return fmt.Errorf("surrogate: %d samples of %d inputs, want at least one input, two samples "+
 			"more than inputs, and at most %d samples", len(samples), d, MaxSamples)
 	}
+	return checkFinite(samples)
+}
+
+func checkFinite(samples []Sample) error {
+	d := len(samples[0].X)
 	for i, s := range samples {
 		if len(s.X) != d {
 			return fmt.Errorf("surrogate: sample %d has %d inputs, the first has %d", i, len(s.X), d)
