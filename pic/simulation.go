@@ -176,18 +176,7 @@ func (s *Simulation) Advance(steps int64) error {
 		s.startLeapfrog()
 	}
 	s.stop = s.step + steps
-	var group errgroup.Group
-	for _, w := range s.workers {
-		group.Go(func() error {
-			if len(s.workers) > 1 {
-				runtime.LockOSThread()
-				defer runtime.UnlockOSThread()
-			}
-			s.work(w)
-			return nil
-		})
-	}
-	if err := group.Wait(); err != nil {
+	if err := s.workAll(); err != nil {
 		return err
 	}
 	s.step = s.stop
@@ -203,6 +192,25 @@ func (s *Simulation) Advance(steps int64) error {
 			"a shorter time step or finer grid is needed", e, s.step)
 	}
 	return nil
+}
+
+// workAll has every worker work up to s.stop. A single one works in the caller's thread, whose
+// processor time is then that of the work.
+func (s *Simulation) workAll() error {
+	if len(s.workers) == 1 {
+		s.work(s.workers[0])
+		return nil
+	}
+	var group errgroup.Group
+	for _, w := range s.workers {
+		group.Go(func() error {
+			runtime.LockOSThread()
+			defer runtime.UnlockOSThread()
+			s.work(w)
+			return nil
+		})
+	}
+	return group.Wait()
 }
 
 // checkDeposits makes sure that no cell's word comes near its end.

@@ -1,186 +1,221 @@
 // Command scan measures a scan of 60 points of argon on this machine and writes bench/SCAN.md:
 //
-//	go run ./bench/scan [-accuracy 3] [-write] [-keep DIR]
+//	go run ./bench/scan [-dir DIR] [-short]
 //
-// The points are pressure x amplitude x gap, run one a core. For comparison, points of the scan are
-// run as separate processes, as many at once as there are cores. It takes a quiet machine.
+// It is run in the folder of go.mod and takes about a quarter of an hour of a machine of two cores
+// that does nothing else. The points are pressure x amplitude x gap. Then pairs of points are run
+// in turn as two separate processes and as a scan of two points. What is done is kept in DIR:
+// after an interruption the same command continues. With -short a plan of six coarse
+// points shows that all works, and the page is only printed.
 package main
 
 import (
-	"bytes"
 	"context"
-	"encoding/json"
+	"crypto/sha256"
+	"encoding/hex"
 	"errors"
 	"flag"
 	"fmt"
+	"io/fs"
 	"os"
 	"os/exec"
+	"os/signal"
 	"path/filepath"
 	"runtime"
-	"sync"
+	"syscall"
 	"time"
 
 	"ionfall/internal/scan"
 	"ionfall/internal/store"
 )
 
-const base = `gap: 40 mm
+const page = "bench/SCAN.md"
+
+// study is what is run.
+type study struct {
+	what       string // for the page
+	base, plan string
+	// firsts are the first points of the pairs; the second is half the plan further.
+	firsts []int
+}
+
+func whole() study {
+	return study{
+		what: "Argon, 5 pressures from 5 to 20 Pa x 4 amplitudes from 100 to 250 V x gaps of 20, 25 " +
+			"and 30 mm, `numerics: auto`, `accuracy: 3 %` of mean ion energy and ion flux",
+		base: `gap: 25 mm
 gas: {pressure: 5 Pa, mixture: {Ar: 1}}
 drive: {tones: [{frequency: 13.56 MHz, amplitude: 250 V}]}
-accuracy: {ion_energy: %[1]g %%, ion_flux: %[1]g %%}
-`
-
-const plan = `base: base.yaml
+accuracy: {ion_energy: 3 %, ion_flux: 3 %}
+`,
+		plan: `base: base.yaml
 vary:
-  gas.pressure: {from: 3 Pa, to: 12 Pa, points: 4, spacing: log}
-  drive.tones.0.amplitude: {from: 100 V, to: 300 V, points: 5}
-  gap: [30 mm, 40 mm, 50 mm]
-`
+  gas.pressure: {from: 5 Pa, to: 20 Pa, points: 5, spacing: log}
+  drive.tones.0.amplitude: {from: 100 V, to: 250 V, points: 4}
+  gap: [20 mm, 25 mm, 30 mm]
+`,
+		firsts: []int{2, 7, 15, 19, 26},
+	}
+}
+
+func short() study {
+	return study{
+		what: "Helium, six points of coarse numerics, which show only that the measurement works",
+		base: `gap: 20 mm
+gas: {pressure: 60 Pa, mixture: {He: 1}}
+drive: {tones: [{frequency: 13.56 MHz, amplitude: 200 V}]}
+initial: {density: 8e14 /m3, electron_temperature: 5 eV}
+numerics: {cells: 32, steps_per_period: 480, particles_per_cell: 40, ion_substeps: 4, periods: 60}
+`,
+		plan: `base: base.yaml
+vary:
+  gas.pressure: [50 Pa, 60 Pa]
+  drive.tones.0.amplitude: {from: 150 V, to: 250 V, points: 3}
+`,
+		firsts: []int{1, 3},
+	}
+}
 
 func main() {
-	accuracy := flag.Float64("accuracy", 3, "relative error of ion energy and flux [%]")
-	write := flag.Bool("write", false, "write bench/SCAN.md instead of printing")
-	keep := flag.String("keep", "", "do it in the folder `DIR` and keep it")
+	dir := flag.String("dir", filepath.Join(os.TempDir(), "ionfall-bench-scan"),
+		"work in the folder `DIR`")
+	brief := flag.Bool("short", false, "six coarse points; print the page")
 	flag.Parse()
-	text, err := measure(*accuracy, *keep)
-	if err == nil && *write {
-		err = os.WriteFile("bench/SCAN.md", text, 0o644)
-	} else if err == nil {
-		_, err = os.Stdout.Write(text)
-	}
-	if err != nil {
+	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
+	defer stop()
+	if err := measure(ctx, *dir, *brief); err != nil {
 		fmt.Fprintln(os.Stderr, "scan:", err)
 		os.Exit(1)
 	}
 }
 
-func measure(accuracy float64, keep string) (text []byte, err error) {
-	dir := keep
-	if dir == "" {
-		if dir, err = os.MkdirTemp("", "scan"); err != nil {
-			return nil, err
-		}
-		defer func() { err = errors.Join(err, os.RemoveAll(dir)) }()
-	}
-	for name, content := range map[string]string{
-		"base.yaml": fmt.Sprintf(base, accuracy), "plan.yaml": plan,
-	} {
-		if err := os.WriteFile(filepath.Join(dir, name), []byte(content), 0o666); err != nil {
-			return nil, err
-		}
-	}
-	p, err := scan.Load(filepath.Join(dir, "plan.yaml"))
-	if err != nil {
-		return nil, err
-	}
-	ctx := context.Background()
-	f, err := scan.Open(ctx, p, filepath.Join(dir, "scan"))
-	if err != nil {
-		return nil, err
-	}
-	r, err := f.Run(ctx, scan.Options{})
-	if err != nil {
-		return nil, err
-	}
-	return report(f, r, accuracy, dir)
+// bench is a measurement in progress.
+type bench struct {
+	study
+	dir     string // of this program and plan
+	program string
+	folder  *scan.Folder
 }
 
-// report compares the scan with separate processes.
-func report(f *scan.Folder, r *scan.Report, accuracy float64, dir string) ([]byte, error) {
-	verdicts, moves := map[string]int{}, 0.0
-	for _, p := range f.Plan.Points {
-		s, err := store.ReadSummary(filepath.Join(f.PointDir(p.Number), store.SummaryFile))
-		if err != nil {
-			return nil, err
-		}
-		verdicts[s.Verdict]++
-		moves += steps(s)
+func measure(ctx context.Context, dir string, brief bool) error {
+	b := &bench{study: whole()}
+	if brief {
+		b.study = short()
 	}
-	alone, same, err := processes(f, dir)
+	if err := b.prepare(ctx, dir); err != nil {
+		return err
+	}
+	fmt.Fprintln(os.Stderr, "working in", b.dir)
+	if err := b.scanAll(ctx); err != nil {
+		return err
+	}
+	if err := b.measurePairs(ctx); err != nil {
+		return err
+	}
+	text, err := b.text()
 	if err != nil {
-		return nil, err
+		return err
 	}
-	speed := moves / r.Elapsed.Seconds()
-	var b bytes.Buffer
-	fmt.Fprintf(&b, "# Scan\n\nWritten by `go run ./bench/scan -write` on %s: %s/%s, "+
-		"%d processors.\n\n", time.Now().UTC().Format(time.DateOnly), runtime.GOOS,
-		runtime.GOARCH, runtime.NumCPU())
-	fmt.Fprintf(&b, "Argon, 4 pressures x 5 amplitudes x 3 gaps, accuracy %g %%, a point a core.\n\n",
-		accuracy)
-	fmt.Fprintf(&b, "| quantity | value |\n|---|---|\n| points done | %d of %d |\n", r.Done, r.Total)
-	fmt.Fprintf(&b, "| time | %.1f min |\n", r.Elapsed.Minutes())
-	fmt.Fprintf(&b, "| verdicts | %d ok, %d warn, %d fail |\n", verdicts[store.OK],
-		verdicts[store.Warn], verdicts[store.Fail])
-	fmt.Fprintf(&b, "| particle moves a second, all cores | %.3g |\n", speed)
-	fmt.Fprintf(&b, "| the same of separate processes, %d points at once | %.3g |\n",
-		runtime.NumCPU(), alone)
-	fmt.Fprintf(&b, "| scan over separate processes | %.1f %% |\n", 100*speed/alone)
-	fmt.Fprintf(&b, "| time foreseen after a tenth of the points, off by | %+.1f %% |\n",
-		100*(r.Predicted.Seconds()/r.Elapsed.Seconds()-1))
-	fmt.Fprintf(&b, "| points run by themselves with the same results, bit for bit | %d of %d |\n",
-		same, runtime.NumCPU())
-	return b.Bytes(), nil
+	if brief {
+		_, err = os.Stdout.Write(text)
+	} else {
+		err = os.WriteFile(page, text, 0o644)
+	}
+	if err != nil {
+		return err
+	}
+	return os.RemoveAll(b.dir)
 }
 
-func steps(s *store.Summary) float64 {
-	v, _ := s.Provenance["particle_steps"].(float64) // a summary without it counts as none
-	return v
-}
-
-// processes runs points in the middle of the plan as separate single-threaded processes, all at
-// once, and returns their particle moves a second, and how many gave the results of the scan.
-func processes(f *scan.Folder, dir string) (speed float64, same int, err error) {
-	program := filepath.Join(dir, "ionfall.exe")
-	out, err := exec.Command("go", "build", "-o", program, "ionfall/cmd/ionfall").CombinedOutput()
+// prepare builds the program and begins or finds the scan. Another program or plan has another
+// folder, so that nothing is continued that was begun differently.
+func (b *bench) prepare(ctx context.Context, dir string) error {
+	if err := os.MkdirAll(dir, 0o777); err != nil {
+		return err
+	}
+	built := filepath.Join(dir, "ionfall.exe")
+	out, err := exec.CommandContext(ctx, "go", "build", "-trimpath", "-buildvcs=false", "-o", built,
+		"ionfall/cmd/ionfall").CombinedOutput()
 	if err != nil {
-		return 0, 0, fmt.Errorf("building the program: %w\n%s", err, out)
+		return fmt.Errorf("building the program: %w\n%s", err, out)
 	}
-	n := runtime.NumCPU()
-	speeds, errs, equal := make([]float64, n), make([]error, n), make([]bool, n)
-	var all sync.WaitGroup
-	for k := range n {
-		number := f.Plan.Points[(2*k+1)*len(f.Plan.Points)/(2*n)].Number
-		all.Go(func() { speeds[k], equal[k], errs[k] = process(f, program, dir, number) })
+	binary, err := os.ReadFile(built)
+	if err != nil {
+		return err
 	}
-	all.Wait()
-	for k := range n {
-		speed += speeds[k]
-		if equal[k] {
-			same++
+	sum := sha256.Sum256(append(binary, b.base+b.plan...))
+	b.dir = filepath.Join(dir, hex.EncodeToString(sum[:6]))
+	if err := os.MkdirAll(b.dir, 0o777); err != nil {
+		return err
+	}
+	b.program = filepath.Join(b.dir, "ionfall.exe")
+	if err := os.Rename(built, b.program); err != nil {
+		return err
+	}
+	for name, content := range map[string]string{"base.yaml": b.base, "plan.yaml": b.plan} {
+		if err := os.WriteFile(filepath.Join(b.dir, name), []byte(content), 0o666); err != nil {
+			return err
 		}
 	}
-	return speed, same, errors.Join(errs...)
+	p, err := scan.Load(b.planFile())
+	if err != nil {
+		return err
+	}
+	b.folder, err = scan.Open(ctx, p, filepath.Join(b.dir, "scan"))
+	return err
 }
 
-func process(f *scan.Folder, program, dir string, number int) (
-	speed float64, same bool, err error,
-) {
-	result := filepath.Join(dir, fmt.Sprintf("alone-%d", number))
-	c := exec.Command(program, "run", filepath.Join(f.PointDir(number), "input.yaml"), "--out", result,
-		"--cores", "1", "--quiet")
-	c.Env = append(os.Environ(), "GOMAXPROCS=1")
-	begin := time.Now()
-	out, err := c.CombinedOutput()
-	took := time.Since(begin).Seconds()
-	var exit *exec.ExitError
-	if errors.As(err, &exit) && exit.ExitCode() == 3 { // done, with the verdict fail
+func (b *bench) planFile() string { return filepath.Join(b.dir, "plan.yaml") }
+
+// sitting is a part of the scan from a start of this command to its end.
+type sitting struct {
+	ElapsedS   float64
+	PredictedS float64 // of the whole scan after a tenth of its points; 0 for none
+	Done       int
+	When       string
+}
+
+const sittingsFile = "sittings.json"
+
+// scanAll runs what is left of the scan and keeps how long it took.
+func (b *bench) scanAll(ctx context.Context) error {
+	sittings, err := load[[]sitting](b.dir, sittingsFile)
+	if err != nil || len(sittings) > 0 && sittings[len(sittings)-1].Done == b.points() {
+		return err
+	}
+	sittings = append(sittings, sitting{When: time.Now().UTC().Format(time.RFC3339)})
+	now := &sittings[len(sittings)-1]
+	var failed error
+	note := func(s scan.Snapshot) {
+		now.ElapsedS, now.PredictedS, now.Done = s.Elapsed.Seconds(), s.Predicted.Seconds(), s.Done
+		failed = errors.Join(failed, keep(b.dir, sittingsFile, sittings))
+	}
+	last := time.Time{}
+	r, err := b.folder.Run(ctx, scan.Options{Progress: func(s scan.Snapshot) {
+		note(s)
+		if time.Since(last) > time.Minute {
+			last = time.Now()
+			fmt.Fprintf(os.Stderr, "%d of %d points, about %.0f s left\n", s.Done, s.Total,
+				s.Left.Expected.Seconds())
+		}
+	}})
+	if r != nil {
+		note(r.Snapshot)
+	}
+	if err == nil && r.Done < r.Total {
+		err = fmt.Errorf("%d of %d points done: see %s", r.Done, r.Total, b.folder.Dir)
+	}
+	return errors.Join(err, failed)
+}
+
+func (b *bench) points() int { return len(b.folder.Plan.Points) }
+
+// load reads what was kept, the zero value if nothing was.
+func load[T any](dir, name string) (v T, err error) {
+	if err = store.ReadJSON(filepath.Join(dir, name), &v); errors.Is(err, fs.ErrNotExist) {
 		err = nil
 	}
-	if err != nil {
-		return 0, false, fmt.Errorf("point %d alone: %w\n%s", number, err, out)
-	}
-	alone, err := store.ReadSummary(filepath.Join(result, store.SummaryFile))
-	if err != nil {
-		return 0, false, err
-	}
-	inScan, err := store.ReadSummary(filepath.Join(f.PointDir(number), store.SummaryFile))
-	if err != nil {
-		return 0, false, err
-	}
-	a, err := json.Marshal(alone.Results)
-	if err != nil {
-		return 0, false, err
-	}
-	b, err := json.Marshal(inScan.Results)
-	return steps(alone) / took, bytes.Equal(a, b), err
+	return v, err
 }
+
+func cores() int { return runtime.NumCPU() }

@@ -1,6 +1,7 @@
 package scan
 
 import (
+	"maps"
 	"math"
 	"slices"
 	"time"
@@ -15,27 +16,33 @@ const (
 	// priorSpread is how far a run's time is from the estimate before anything has been run: a
 	// factor of 3.
 	priorSpread = 1.1
+	// timeAmplitude and timeLength are those of the surrogate of the logarithm of the time over the
+	// estimate, on axes from 0 to 1: smooth surfaces with a change of a factor of 2 or so along an
+	// axis, and little bend. So few points are known at first that they cannot tell this themselves.
+	timeAmplitude, timeLength = 2.0, 3.0
 	// mostFitted bounds the points that a forecast is fitted to.
 	mostFitted = 80
 )
 
 // forecast predicts how long points take. What is fitted is the logarithm of the time over the
-// estimate made from the input: a Gaussian process of the axes where there are enough points,
-// their mean else.
+// estimate made from the input, as a Gaussian process of the axes.
 type forecast struct {
 	estimate []float64 // of each point [s]
 	where    [][]float64
 	took     map[int]float64 // wall time of points that are done [s]
 
-	fitted  int
-	model   *surrogate.Model
-	mean    float64
-	spread  float64
-	columns []int // of where, that differ among the fitted points
+	fitted   int       // points that the predictions are fitted to
+	expected []float64 // of each point [s]
+	spread   []float64 // standard errors of the logarithms
 }
 
 func newForecast(p *Plan, estimate []float64) *forecast {
-	return &forecast{estimate: estimate, where: p.place(), took: map[int]float64{}}
+	f := &forecast{estimate: estimate, where: p.place(), took: map[int]float64{}}
+	f.expected = estimate
+	for range estimate {
+		f.spread = append(f.spread, priorSpread)
+	}
+	return f
 }
 
 // add enters the time that a point took.
@@ -45,18 +52,14 @@ func (f *forecast) add(i int, seconds float64) {
 	}
 }
 
-// fit renews the model when a fifth more points are known.
+// fit renews the predictions when a tenth more points are known.
 func (f *forecast) fit() {
 	n := len(f.took)
-	if n == 0 || f.fitted > 0 && 5*n < 6*f.fitted {
+	if n == 0 || f.fitted > 0 && 10*n < 11*f.fitted {
 		return
 	}
 	f.fitted = n
-	var known []int
-	for i := range f.took {
-		known = append(known, i)
-	}
-	slices.Sort(known)
+	known := slices.Sorted(maps.Keys(f.took))
 	if len(known) > mostFitted { // evenly spread over the numbers
 		var some []int
 		for k := range mostFitted {
@@ -64,66 +67,45 @@ func (f *forecast) fit() {
 		}
 		known = some
 	}
-	ratios := make([]float64, len(known))
-	sum, squares := 0.0, 0.0
-	for k, i := range known {
-		ratios[k] = math.Log(f.took[i] / f.estimate[i])
-		sum += ratios[k]
-	}
-	f.mean = sum / float64(len(known))
-	for _, r := range ratios {
-		squares += (r - f.mean) * (r - f.mean)
-	}
-	f.spread = priorSpread / math.Sqrt(float64(len(known)))
-	if len(known) > 2 {
-		f.spread = math.Sqrt(squares / float64(len(known)-1))
-	}
-	f.surface(known, ratios)
-}
-
-// surface fits the dependence on the axes.
-func (f *forecast) surface(known []int, ratios []float64) {
-	f.model, f.columns = nil, nil
-	for k := range f.where[0] {
-		for _, i := range known {
-			if f.where[i][k] != f.where[known[0]][k] {
-				f.columns = append(f.columns, k)
-				break
-			}
-		}
-	}
-	if len(f.columns) == 0 || len(known) < len(f.columns)+3 {
-		return
-	}
 	var samples []surrogate.Sample
-	for k, i := range known {
+	for _, i := range known {
 		samples = append(samples, surrogate.Sample{
-			X: f.at(i), Value: ratios[k], StdErr: timeSpread,
+			X: f.where[i], Value: math.Log(f.took[i] / f.estimate[i]), StdErr: timeSpread,
 		})
 	}
-	// Without a surface the mean has to do.
-	f.model, _ = surrogate.Fit(samples)
-}
-
-func (f *forecast) at(i int) []float64 {
-	var x []float64
-	for _, k := range f.columns {
-		x = append(x, f.where[i][k])
+	lengths := make([]float64, len(f.where[0]))
+	for k := range lengths {
+		lengths[k] = timeLength
 	}
-	return x
+	m, err := surrogate.Known(samples, timeAmplitude, lengths)
+	if err != nil {
+		return // the estimates have to do: with an error for each sample this does not happen
+	}
+	f.expected, f.spread = make([]float64, len(f.estimate)), make([]float64, len(f.estimate))
+	for i := range f.expected {
+		p := m.At(f.where[i])
+		f.expected[i] = f.estimate[i] * math.Exp(p.Mean)
+		f.spread[i] = math.Hypot(p.StdErr, timeSpread)
+	}
 }
 
 // seconds predicts the time of a point, and the standard error of its logarithm.
 func (f *forecast) seconds(i int) (expected, spread float64) {
-	if len(f.took) == 0 {
-		return f.estimate[i], priorSpread
-	}
 	f.fit()
-	if f.model != nil {
-		p := f.model.At(f.at(i))
-		return f.estimate[i] * math.Exp(p.Mean), math.Hypot(p.StdErr, timeSpread)
+	return f.expected[i], f.spread[i]
+}
+
+// remaining predicts what is left of a run that has gone on for the elapsed seconds and itself says
+// how much that is, below 0 for nothing. At the start of its average a run knows its error badly and
+// tends to say too much: then the truth is likely between both.
+func (f *forecast) remaining(i int, elapsed, own float64) float64 {
+	expected, _ := f.seconds(i)
+	// A run that takes longer than expected is likely to go on for a while.
+	foreseen := max(0.1*expected, expected-elapsed, 0.3*elapsed)
+	if own < 0 {
+		return foreseen
 	}
-	return f.estimate[i] * math.Exp(f.mean), math.Max(f.spread, timeSpread)
+	return min(own, math.Sqrt(own*max(0.1*expected, expected-elapsed)))
 }
 
 // Left is a prediction of the time to the end of a scan.

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"math/rand/v2"
 	"slices"
 
 	"gonum.org/v1/gonum/mat"
@@ -26,7 +27,8 @@ type search struct {
 	wants  []Want // one a quantity; of those after them only the surrogate is kept
 	extra  int    // quantities without a want
 	models []*fitted
-	places [][]float64 // at which the window is judged
+	places [][]float64 // at which observations may be made, and settings recommended
+	judges [][]float64 // others, at which the window is judged
 }
 
 // fitted is the surrogate of a quantity, of its logarithm where that is smoother.
@@ -36,23 +38,52 @@ type fitted struct {
 	noise float64 // median variance of the observations, in the scale of the model
 }
 
-// mostPlaces at which the window is judged: their covariance matrix is the work of a step.
-const mostPlaces = 625
+const (
+	// mostPlaces at which observations may be made: their covariance matrix is the work of a step.
+	mostPlaces = 625
+	// mostJudges is enough to tell a part of 0.1 %.
+	mostJudges = 1024
+	// placeSeed makes the places the same at every search.
+	placeSeed = 1
+)
 
-// judged returns places that fill the cube: a grid in one and two dimensions, Halton's sequence in
-// more.
-func judged(dimensions int) [][]float64 {
-	if dimensions == 1 {
-		return gridPlaces(1, 201)
+// newSearch lays out its places: grids in one and two dimensions, Halton's sequence in more. The
+// window is judged at other places than those of the observations, which lie where the boundary is
+// doubtful and take the doubt away just there.
+func newSearch(wants []Want, dimensions int) *search {
+	s := &search{wants: wants}
+	switch dimensions {
+	case 1:
+		s.places, s.judges = gridPlaces(1, 201), middles(1, 400)
+	case 2:
+		s.places, s.judges = gridPlaces(2, 25), middles(2, 32)
+	default:
+		all := haltonPlaces(dimensions, mostPlaces+mostJudges)
+		s.places, s.judges = all[:mostPlaces], all[mostPlaces:]
 	}
-	if dimensions == 2 {
-		return gridPlaces(2, 25)
-	}
-	batch := mat.NewDense(mostPlaces, dimensions, nil)
-	samplemv.Halton{Kind: samplemv.Owen, Q: distmv.NewUnitUniform(dimensions, nil)}.Sample(batch)
-	places := make([][]float64, mostPlaces)
+	return s
+}
+
+func haltonPlaces(dimensions, count int) [][]float64 {
+	batch := mat.NewDense(count, dimensions, nil)
+	source := rand.NewPCG(placeSeed, 0)
+	samplemv.Halton{
+		Kind: samplemv.Owen, Q: distmv.NewUnitUniform(dimensions, source), Src: source,
+	}.Sample(batch)
+	places := make([][]float64, count)
 	for i := range places {
 		places[i] = mat.Row(nil, i, batch)
+	}
+	return places
+}
+
+// middles are those of the cells of a grid.
+func middles(dimensions, side int) [][]float64 {
+	places := gridPlaces(dimensions, side)
+	for _, u := range places {
+		for k := range u {
+			u[k] = (u[k]*float64(side-1) + 0.5) / float64(side)
+		}
 	}
 	return places
 }
@@ -156,11 +187,11 @@ func (s *search) probability(u []float64) float64 {
 // known now: the mean of the smaller of the probabilities of in and out.
 func (s *search) doubt() float64 {
 	sum := 0.0
-	for _, u := range s.places {
+	for _, u := range s.judges {
 		p := s.probability(u)
 		sum += math.Min(p, 1-p)
 	}
-	return sum / float64(len(s.places))
+	return sum / float64(len(s.judges))
 }
 
 // next returns the places, count of them, at which observations decide most about the boundary. The

@@ -69,7 +69,7 @@ func gridError(r *rand.Rand, side, repeats int) float64 {
 // searchFor spends a number of points, a third of them on a first spread.
 func searchFor(t *testing.T, r *rand.Rand, points int) *search {
 	t.Helper()
-	s := &search{wants: testWants(), places: judged(2)}
+	s := newSearch(testWants(), 2)
 	var known []observation
 	for _, i := range coarseFirst(s.places, max(5, points/3)) {
 		known = append(known, observe(r, s.places[i]))
@@ -90,7 +90,9 @@ func searchFor(t *testing.T, r *rand.Rand, points int) *search {
 
 // Goal: the search finds the boundary with a third of the points of the grid that gives the same
 // error. Method: a map of 8 x 8 points against a search with 21, both with the same noise; the
-// part of the plan on the wrong side, averaged over repeats.
+// part of the plan on the wrong side, averaged over repeats. What the search expects must not be
+// less than it makes, beyond the scatter of few repeats: judged at the places where it observes,
+// its doubt was 0.6 of the error that it made.
 func TestSearchNeedsAThirdOfTheGrid(t *testing.T) {
 	r := rand.New(rand.NewPCG(1, 1))
 	const side, repeats = 8, 6
@@ -108,7 +110,7 @@ func TestSearchNeedsAThirdOfTheGrid(t *testing.T) {
 		t.Errorf("with a third of the points %.2f %% of the plan is on the wrong side, the grid has "+
 			"%.2f %%", 100*found, 100*grid)
 	}
-	if ratio := expected / sum; ratio < 0.4 || ratio > 2.5 {
+	if ratio := expected / sum; ratio < 0.75 || ratio > 2.5 {
 		t.Errorf("the search expects %.2g times the error that it makes", ratio)
 	}
 }

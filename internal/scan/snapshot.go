@@ -16,6 +16,9 @@ type Snapshot struct {
 	Elapsed             time.Duration
 	Left                Left
 	Cores               int
+	// Predicted is the whole time as foreseen after a tenth of the points; 0 if there was no such
+	// moment.
+	Predicted time.Duration
 }
 
 // RunningPoint is a run in progress.
@@ -29,9 +32,6 @@ type Report struct {
 	Snapshot
 	// Computed and Wrong count the points of this runner.
 	Computed, Wrong int
-	// Predicted is the whole time as foreseen after a tenth of the points; 0 if there was no such
-	// moment.
-	Predicted time.Duration
 	// Deadline says that Until ended it.
 	Deadline bool
 }
@@ -68,13 +68,7 @@ func (r *runner) predict() {
 func (r *runner) left() Left {
 	var running []float64
 	for i, s := range r.running {
-		seconds := s.Remaining.Seconds()
-		if s.Remaining < 0 {
-			// A run that takes longer than expected is likely to go on for a while.
-			expected, _ := r.forecast.seconds(i)
-			elapsed := s.Elapsed.Seconds()
-			seconds = max(0.1*expected, expected-elapsed, 0.3*elapsed)
-		}
+		seconds := r.forecast.remaining(i, s.Elapsed.Seconds(), s.Remaining.Seconds())
 		running = append(running, seconds)
 	}
 	slices.Sort(running)
@@ -87,6 +81,7 @@ func (r *runner) snapshot() Snapshot {
 	s := Snapshot{
 		Total: r.report.Total, Done: r.report.Done, Failed: r.report.Failed,
 		Elsewhere: len(r.busy), Elapsed: time.Since(r.started), Cores: r.cores, Left: r.left(),
+		Predicted: r.report.Predicted,
 	}
 	for i, status := range r.running {
 		s.Running = append(s.Running,

@@ -75,7 +75,7 @@ func (f *Folder) findWindow(ctx context.Context, o WindowOptions) (*Window, erro
 	if err != nil {
 		return nil, err
 	}
-	s := &search{wants: o.Wants, places: judged(len(cube))}
+	s := newSearch(o.Wants, len(cube))
 	paths := []string{}
 	for _, w := range o.Wants {
 		paths = append(paths, w.Path)
@@ -229,9 +229,9 @@ func (f *Folder) writeWindow(cube []Axis, s *search, paths []string) error {
 func (f *Folder) confirm(ctx context.Context, o WindowOptions, w *Window, cube []Axis, s *search,
 	paths []string, best int,
 ) error {
-	for _, u := range s.places {
+	for _, u := range s.judges {
 		if s.probability(u) > 0.5 {
-			w.Share += 1 / float64(len(s.places))
+			w.Share += 1 / float64(len(s.judges))
 		}
 	}
 	u, inside := s.recommended(best, !o.Smallest, o.Probability)

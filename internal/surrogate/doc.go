@@ -7,12 +7,13 @@
 //
 // (Matern, smoothness 5/2: twice differentiable). What is known are samples with their own standard
 // errors, taken as independent and normal. The amplitude s and the lengths l_i, one an input, are
-// those of the largest restricted marginal likelihood of the samples, times a broad prior on the
-// lengths, which keeps them finite where a quantity hardly depends on an input.
+// drawn from their posterior: the restricted marginal likelihood of the samples times a broad prior,
+// which keeps them finite where a quantity hardly depends on an input.
 //
-// A prediction is that of the quantity itself, not of a new noisy sample. Its error holds the
-// errors of the samples, the distance to them and the unknown constant, but not the uncertainty of
-// s and l. The tests measure how often the intervals hold.
+// A prediction is that of the quantity itself, not of a new noisy sample. It averages over the
+// draws. Its error holds the errors of the samples, the distance to them, the unknown constant and
+// the uncertainty of s and l, which is much of it where samples are few. The tests measure how
+// often the intervals hold.
 //
 //	m, err := surrogate.Fit(samples)
 //	p := m.At([]float64{5, 250})
@@ -23,5 +24,5 @@
 //
 // Refs: C. E. Rasmussen and C. K. I. Williams, Gaussian Processes for Machine Learning (MIT Press,
 // 2006), ch. 2, 4 and 5; H. D. Patterson and R. Thompson, Biometrika 58, 545 (1971) for the
-// restricted likelihood; formulas from memory.
+// restricted likelihood; R. M. Neal, Ann. Stat. 31, 705 (2003) for the draws; formulas from memory.
 package surrogate

@@ -17,32 +17,46 @@ const (
 	evaluations = 400
 )
 
-// mostLikely returns the parameters of the largest posterior density.
-func (m *Model) mostLikely(noise []float64) params {
+// badness is minus the logarithm of the posterior density of the parameters, as logarithms: the
+// lengths, then the amplitude.
+func (m *Model) badness(v []float64) float64 {
 	d := len(m.low)
-	unpack := func(v []float64) params {
-		p := params{amplitude: math.Exp(v[d]), lengths: make([]float64, d)}
-		for i := range d {
-			p.lengths[i] = math.Exp(v[i])
-		}
-		return p
+	sum := square((v[d] - math.Log(priorAmplitude)) / amplitudeSpread)
+	for i := range d {
+		sum += square((v[i] - math.Log(priorLength)) / priorSpread)
 	}
-	badness := func(v []float64) float64 {
-		sum := square((v[d] - math.Log(priorAmplitude)) / amplitudeSpread)
-		for i := range d {
-			sum += square((v[i] - math.Log(priorLength)) / priorSpread)
-		}
-		for _, x := range v {
-			if math.Abs(x) > 12 {
-				return math.Inf(1)
-			}
-		}
-		l, ok := m.condition(unpack(v), noise)
-		if !ok {
+	for _, x := range v {
+		if math.Abs(x) > 12 {
 			return math.Inf(1)
 		}
-		return sum/2 - l
 	}
+	_, l, ok := m.condition(unpack(v))
+	if !ok {
+		return math.Inf(1)
+	}
+	return sum/2 - l
+}
+
+func unpack(v []float64) params {
+	d := len(v) - 1
+	p := params{amplitude: math.Exp(v[d]), lengths: make([]float64, d)}
+	for i := range d {
+		p.lengths[i] = math.Exp(v[i])
+	}
+	return p
+}
+
+func (p params) pack() []float64 {
+	var v []float64
+	for _, l := range p.lengths {
+		v = append(v, math.Log(l))
+	}
+	return append(v, math.Log(p.amplitude))
+}
+
+// mostLikely returns the parameters of the largest posterior density.
+func (m *Model) mostLikely() params {
+	d := len(m.low)
 	best, least := params{}, math.Inf(1)
 	for _, length := range []float64{0.25, 1, 4} {
 		start := make([]float64, d+1)
@@ -51,7 +65,7 @@ func (m *Model) mostLikely(noise []float64) params {
 		}
 		start[d] = math.Log(math.Max(1, length))
 		// Nelder-Mead never fails on its own; a start that gets nowhere is passed over.
-		r, _ := optimize.Minimize(optimize.Problem{Func: badness}, start,
+		r, _ := optimize.Minimize(optimize.Problem{Func: m.badness}, start,
 			&optimize.Settings{
 				FuncEvaluations: evaluations, Concurrent: 1,
 				Converger: &optimize.FunctionConverge{Absolute: 1e-5, Iterations: 30},

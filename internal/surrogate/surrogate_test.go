@@ -27,6 +27,18 @@ func sampled(r *rand.Rand, f func([]float64) float64, n int, noise float64) []Sa
 	return list
 }
 
+// likelyAt predicts with given parameters alone.
+func likelyAt(t *testing.T, m *Model, p params, x []float64) Prediction {
+	t.Helper()
+	c, _, ok := m.condition(p)
+	if !ok {
+		t.Fatal("singular")
+	}
+	one := *m
+	one.draws = []*process{c}
+	return one.At(x)
+}
+
 func fit(t *testing.T, samples []Sample) *Model {
 	t.Helper()
 	m, err := Fit(samples)
@@ -98,21 +110,21 @@ func TestParametersAreRecovered(t *testing.T) {
 	r := rand.New(rand.NewPCG(7, 8))
 	sum, n := 0.0, 12
 	for range n {
-		truth := &Model{params: params{amplitude: 2, lengths: []float64{0.3}}}
+		truth := &Model{}
 		var samples []Sample
 		truth.low, truth.span = []float64{0}, []float64{1}
 		for i := range 40 {
 			truth.x = append(truth.x, []float64{float64(i) / 39})
 			truth.values = append(truth.values, 0)
 		}
-		noise := make([]float64, 40)
-		for i := range noise {
-			noise[i] = 0.01
+		for range 40 {
+			truth.noise = append(truth.noise, 0.01)
 		}
-		if _, ok := truth.condition(truth.params, noise); !ok {
+		c, _, ok := truth.condition(params{amplitude: 2, lengths: []float64{0.3}})
+		if !ok {
 			t.Fatal("singular")
 		}
-		u := truth.chol.RawU()
+		u := c.chol.RawU()
 		z := make([]float64, 40)
 		for i := range z {
 			z[i] = r.NormFloat64()
@@ -140,18 +152,14 @@ func TestResidualsLeaveOneOut(t *testing.T) {
 	m := fit(t, samples)
 	z := m.Residuals()
 	for i := range samples {
-		rest := &Model{low: m.low, span: m.span, scale: m.scale, shift: m.shift, params: m.params}
-		var noise []float64
-		for j, s := range samples {
+		rest := &Model{low: m.low, span: m.span, scale: m.scale, shift: m.shift}
+		for j := range samples {
 			if j != i {
 				rest.x, rest.values = append(rest.x, m.x[j]), append(rest.values, m.values[j])
-				noise = append(noise, square(s.StdErr/m.scale))
+				rest.noise = append(rest.noise, m.noise[j])
 			}
 		}
-		if _, ok := rest.condition(m.params, noise); !ok {
-			t.Fatal("singular")
-		}
-		p := rest.At(samples[i].X)
+		p := likelyAt(t, rest, m.likely.params, samples[i].X)
 		want := (samples[i].Value - p.Mean) / math.Hypot(p.StdErr, samples[i].StdErr)
 		if math.Abs(z[i]-want) > 1e-4 {
 			t.Errorf("sample %d: got %g, want %g", i, z[i], want)
@@ -236,23 +244,18 @@ func TestJointPredictions(t *testing.T) {
 	places := [][]float64{{3, 40}, {5, 45}, {18, 90}}
 	mean, cov := m.Joint(places)
 	for i, x := range places {
-		p := m.At(x)
+		p := likelyAt(t, m, m.likely.params, x)
 		if math.Abs(mean[i]-p.Mean) > 1e-9 || math.Abs(math.Sqrt(cov.At(i, i))-p.StdErr) > 1e-9 {
 			t.Errorf("place %d: got %g +- %g, want %+v", i, mean[i], math.Sqrt(cov.At(i, i)), p)
 		}
 	}
-	more := &Model{low: m.low, span: m.span, scale: m.scale, shift: m.shift, params: m.params}
-	var noise []float64
-	for i, s := range append(samples, Sample{X: places[1], Value: f(places[1])}) {
+	more := &Model{low: m.low, span: m.span, scale: m.scale, shift: m.shift}
+	for _, s := range append(samples, Sample{X: places[1], Value: f(places[1])}) {
 		more.x = append(more.x, m.scaled(s.X))
 		more.values = append(more.values, (s.Value-m.shift)/m.scale)
-		noise = append(noise, square(samples[min(i, 19)].StdErr/m.scale))
+		more.noise = append(more.noise, square(s.StdErr/m.scale))
 	}
-	noise[20] = 0
-	if _, ok := more.condition(m.params, noise); !ok {
-		t.Fatal("singular")
-	}
-	want := more.At(places[0]).StdErr
+	want := likelyAt(t, more, m.likely.params, places[0]).StdErr
 	got := math.Sqrt(cov.At(0, 0) - square(cov.At(0, 1))/cov.At(1, 1))
 	if math.Abs(got-want) > 1e-6 {
 		t.Errorf("with one more sample the error would be %g, want %g", got, want)
