@@ -214,7 +214,7 @@ func (m *machine) decideAveraging() {
 	c := &m.control
 	n, length := m.rec.Batches()
 	if c.StagePeriods%length != 0 || n < 2*stats.MinBatches ||
-		float64(c.StagePeriods) < math.Max(float64(2*c.Window), averagingLives*c.Residence) {
+		float64(c.StagePeriods) < math.Max(float64(2*c.Window), m.plan.leastLives()*c.Residence) {
 		return
 	}
 	if !m.accurate() {
@@ -239,23 +239,35 @@ func (m *machine) decideAveraging() {
 }
 
 const (
-	// averagingLives is the least length of the average in residence times of an ion. The density
-	// remembers for about one, so an error estimated over much less would be a guess. Over a third,
-	// the quoted errors of 40 runs of argon still were what they scattered by.
-	averagingLives = 1.0 / 3
+	// wholeLife is the accuracy from which on the average lasts for at least one residence time of an
+	// ion; with a coarser one it may be shorter in proportion, down to shortestLife of it. The density
+	// remembers for about that time, so that the error of a shorter average rests on what the wander
+	// of the ion number is taken to be, which is good enough for a coarse answer.
+	wholeLife    = 0.01
+	shortestLife = 1.0 / 3
 	// mostRestarts bounds how often a drifting average is thrown away.
 	mostRestarts = 3
 )
 
+// leastLives is the least length of the average in residence times of an ion.
+func (p *Plan) leastLives() float64 {
+	want := math.Min(p.Case.Accuracy.IonEnergy, p.Case.Accuracy.IonFlux)
+	return math.Max(shortestLife, math.Min(1, wholeLife/want))
+}
+
 // accurate tells whether the errors at every substrate are as small as was asked for, those that
-// become smaller with time.
+// become smaller with time. An error from n batches is itself known to one part in sqrt(2 (n-1)) only;
+// an average that ends as soon as it looks small enough would end where it is underestimated.
 func (m *machine) accurate() bool {
 	want := m.plan.Case.Accuracy
+	small := func(e stats.Estimate, part float64) bool {
+		return e.StdErr*(1+1/math.Sqrt(2*float64(e.N-1))) <= part*e.Mean
+	}
 	for _, wall := range m.plan.substrates() {
 		energy, flux := m.rec.Progress(wall)
 		_, effect := m.negativeError(false)
 		flux = m.withErrors(flux, effect)
-		if !(energy.StdErr <= want.IonEnergy*energy.Mean && flux.StdErr <= want.IonFlux*flux.Mean) {
+		if !(small(energy, want.IonEnergy) && small(flux, want.IonFlux)) {
 			return false
 		}
 	}

@@ -64,7 +64,7 @@ func (m *machine) remaining() time.Duration {
 	if c.Stage == StageDone {
 		return 0
 	}
-	least := math.Max(float64(2*c.Window), averagingLives*c.Residence)
+	least := math.Max(float64(2*c.Window), m.plan.leastLives()*c.Residence)
 	if c.Stage == StageSettling && !c.Projecting {
 		return time.Duration(least+math.Max(0, float64(c.Window-c.StagePeriods))) * perPeriod
 	}

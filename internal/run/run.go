@@ -252,6 +252,6 @@ func (p *Plan) expectedMoves(n Numerics, q plasma, e estimate) (moves, periods f
 	want := math.Min(p.Case.Accuracy.IonEnergy, p.Case.Accuracy.IonFlux)
 	hits := 1 / (want * want) // impacts that an error of that size takes
 	perHit := 2 * residence / float64(n.Cells*n.ParticlesPerCell)
-	periods = 2*leastSettling + math.Max(averagingLives*residence, hits*perHit)
+	periods = 2*leastSettling + math.Max(p.leastLives()*residence, hits*perHit)
 	return perPeriod * periods * 1.2, periods
 }

@@ -165,7 +165,7 @@ func (m *machine) statisticsChecks() []store.Check {
 		above("accuracy", worst, bounds{1, 5},
 			"largest standard error of ion energy and flux at a substrate, over that asked for"),
 		below("averaging_time", float64(periods)/math.Max(1, c.Residence),
-			bounds{0.99 * averagingLives, 0.1},
+			bounds{0.99 * m.plan.leastLives(), 0.1},
 			fmt.Sprintf("periods averaged over those that an ion stays in the gap (%.0f)", c.Residence)),
 		below("batches", float64(n), bounds{stats.MinBatches, 2},
 			fmt.Sprintf("batches of %d periods from which the errors are taken", length)),
