@@ -209,23 +209,26 @@ func (m *machine) decideSettling(row *Row) {
 }
 
 // decideAveraging ends the run when the asked-for errors are reached, over a time that is long
-// against the memory of the discharge, and nothing drifts.
+// against the memory of the discharge, and nothing drifts. Negative ions, which drift more slowly
+// than errors fall, are set anew as soon as they are seen to be off.
 func (m *machine) decideAveraging() {
 	c := &m.control
 	n, length := m.rec.Batches()
-	if c.StagePeriods%length != 0 || n < 2*stats.MinBatches ||
+	if c.StagePeriods%length != 0 ||
 		float64(c.StagePeriods) < math.Max(float64(2*c.Window), m.plan.leastLives()*c.Residence) {
 		return
 	}
-	if !m.accurate() {
+	if c.Restarts < mostRestarts && m.negativeOff() {
+		m.balanceNegative()
+		c.Restarts++
+		m.rec = m.newRecorder()
+		m.enter(StageSettling)
 		return
 	}
-	ok, _, name := m.steady(len(m.history) - c.StagePeriods)
-	if m.negativeOff() {
-		ok, name = false, "the number of negative ions"
+	if n < 2*stats.MinBatches || !m.accurate() {
+		return
 	}
-	if !ok && c.Restarts < mostRestarts {
-		m.balanceNegative()
+	if ok, _, name := m.steady(len(m.history) - c.StagePeriods); !ok && c.Restarts < mostRestarts {
 		c.Restarts++
 		c.Event = name + " drifts: the average starts again"
 		m.rec = m.newRecorder()

@@ -128,6 +128,18 @@ func (m *machine) balanceNegative() (open bool) {
 	return open
 }
 
+// mostlyNegative tells whether negative ions outnumber electrons. The density that is projected is
+// then that of the electrons, which stay for a short time.
+func (m *machine) mostlyNegative() bool {
+	negative := 0
+	for i, sp := range m.sim.Species() {
+		if i > 0 && sp.Charge < 0 {
+			negative += sp.Count()
+		}
+	}
+	return negative > m.sim.Species()[0].Count()
+}
+
 // enoughNegative is how many births and losses tell the number of n negative ions beside the
 // electrons as exactly as the asked-for flux needs it; the pilot's need not be as exact.
 func (m *machine) enoughNegative(n, electrons float64) float64 {

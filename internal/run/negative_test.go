@@ -89,22 +89,8 @@ func TestNegativeIonsSettle(t *testing.T) {
 // Method: the silane example's plasma as loaded, with few and many births and losses, balanced and
 // not; a state without negative ions, and one with a few of which nothing is known.
 func TestNegativeErrorIsStated(t *testing.T) {
-	p, err := Prepare("../../examples/silane-hydrogen/input.yaml")
-	if err != nil {
-		t.Fatal(err)
-	}
-	n := Numerics{
-		Cells: 32, StepsPerPeriod: 800, ParticlesPerCell: 50, IonSubsteps: 8, Chunks: 4,
-		Scheme: "energy_conserving",
-	}
-	s, err := p.assemble(n, 1e9)
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := p.fill(s, 1600, 30_000); err != nil {
-		t.Fatal(err)
-	}
-	m := &machine{plan: p, sim: s}
+	m := silaneMachine(t)
+	s, p := m.sim, m.plan
 	ion := p.speciesIndex("SiH3-")
 	many, electrons := float64(s.Species()[ion].Count()), float64(s.Species()[0].Count())
 	m.control.Negative = make([]negativeCount, len(s.Species()))
@@ -146,10 +132,72 @@ func TestNegativeErrorIsStated(t *testing.T) {
 	if check := m.negativeChecks(); len(check) != 1 || check[0].Verdict != store.OK {
 		t.Errorf("few negative ions: %+v", check)
 	}
-	if m.sim, err = p.assemble(n, 1e9); err != nil {
+	empty, err := p.assemble(smallNumerics(), 1e9)
+	if err != nil {
 		t.Fatal(err)
 	}
+	m.sim = empty
 	if number, effect := m.negativeError(true); number != 0 || effect != 0 || m.negativeChecks() != nil {
 		t.Errorf("no negative ions: errors %g and %g", number, effect)
+	}
+}
+
+func smallNumerics() Numerics {
+	return Numerics{
+		Cells: 32, StepsPerPeriod: 800, ParticlesPerCell: 50, IonSubsteps: 8, Chunks: 4,
+		Scheme: "energy_conserving",
+	}
+}
+
+// silaneMachine is a run of the silane example as it begins, small.
+func silaneMachine(t *testing.T) *machine {
+	t.Helper()
+	p, err := Prepare("../../examples/silane-hydrogen/input.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	s, err := p.assemble(smallNumerics(), 1e9)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := p.fill(s, 1600, 30_000); err != nil {
+		t.Fatal(err)
+	}
+	return &machine{plan: p, sim: s}
+}
+
+// Goal: an average during which negative ions turn out to be off is given up, their number is set, and
+// the run settles again; at most three times. Method: 24 periods of a small run, with many more births
+// than losses put into the account.
+func TestNegativeIonsThatAreOffSettleAgain(t *testing.T) {
+	m := silaneMachine(t)
+	c := &m.control
+	c.Numerics, c.Stage, c.Window, c.Residence = smallNumerics(), StageAveraging, 4, 10
+	m.rec = m.newRecorder()
+	m.rebase()
+	m.rec.Start(1)
+	for range 24 {
+		if err := m.sim.Advance(int64(c.Numerics.StepsPerPeriod)); err != nil {
+			t.Fatal(err)
+		}
+		l := m.sim.TakeLedger()
+		m.rec.EndPeriod(l.Weight)
+		m.account(&l)
+		c.StagePeriods++
+	}
+	ion := m.plan.speciesIndex("SiH3-")
+	before := m.sim.Species()[ion].Count()
+	for _, restarts := range []int{mostRestarts, 0} {
+		c.Restarts = restarts
+		c.Negative[ion] = negativeCount{Born: 4000, Lost: 2000}
+		m.decideAveraging()
+		if restarts == mostRestarts && c.Stage != StageAveraging {
+			t.Errorf("in the %s stage after too many restarts", c.Stage)
+		}
+	}
+	after := m.sim.Species()[ion].Count()
+	if c.Stage != StageSettling || c.Restarts != 1 || c.StagePeriods != 0 || after < before*5/4 {
+		t.Errorf("in the %s stage after %d restarts, %d negative ions of %d", c.Stage, c.Restarts, after,
+			before)
 	}
 }

@@ -58,6 +58,7 @@ func (m *machine) project(row *Row) (done bool, undisturbed int) {
 	case calm:
 		done = r.Last
 		c.Round.Doubled++
+	case m.mostlyNegative(): // electrons follow soon by themselves; negative ions would be scaled, too
 	default:
 		m.sim.ScaleWeight(math.Exp(jump))
 		m.rebase()
