@@ -96,8 +96,8 @@ func (f *forecast) seconds(i int) (expected, spread float64) {
 }
 
 // remaining predicts what is left of a run that has gone on for the elapsed seconds and itself says
-// how much that is, below 0 for nothing. At the start of its average a run knows its error badly and
-// tends to say too much: then the truth is likely between both.
+// how much that is, below 0 for nothing. At the start of its average a run knows its error badly
+// and tends to say too much: then the truth is likely between both.
 func (f *forecast) remaining(i int, elapsed, own float64) float64 {
 	expected, _ := f.seconds(i)
 	// A run that takes longer than expected is likely to go on for a while.

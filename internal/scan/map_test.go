@@ -48,7 +48,7 @@ func TestContours(t *testing.T) {
 	for _, level := range []float64{3, 12, 27, 46} {
 		list := r.contour(level)
 		for _, s := range list {
-			for _, end := range [][2]float64{{s.x0, s.y0}, {s.x1, s.y1}} {
+			for _, end := range [][2]float64{{s.X0, s.Y0}, {s.X1, s.Y1}} {
 				if v := end[0] + end[1]/10; math.Abs(v-level) > 1e-9 {
 					t.Errorf("level %g passes through %v, where the value is %g", level, end, v)
 				}
