@@ -157,7 +157,7 @@ func (s *Scan) shown() []ScanColumn {
 	return list
 }
 
-// Figures draws the results over every input that varies, and maps of them. Sound
+// Figures draws the results over every input that varies, after maps of them. Sound
 // points and those that failed are two sets, told apart by shape and name.
 func (s *Scan) Figures() []Figure {
 	var list []Figure
@@ -196,7 +196,7 @@ func (s *Scan) Figures() []Figure {
 			list = append(list, f)
 		}
 	}
-	return append(list, s.Maps()...)
+	return append(s.Maps(), list...)
 }
 
 // padded is the range of an input with some room, so that no point lies on the frame.

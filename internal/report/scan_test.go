@@ -30,10 +30,10 @@ func TestScanPage(t *testing.T) {
 			len(s.Points), s.failed())
 	}
 	figures := s.Figures()
-	if len(figures) != 3 || figures[2].Map == nil {
-		t.Fatalf("%d figures, want two of curves and a map", len(figures))
+	if len(figures) != 3 || figures[0].Map == nil {
+		t.Fatalf("%d figures, want a map and two of curves", len(figures))
 	}
-	for _, f := range figures[:2] {
+	for _, f := range figures[1:] {
 		svg, err := f.SVG()
 		if err != nil {
 			t.Fatal(err)
