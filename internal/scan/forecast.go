@@ -10,16 +10,17 @@ import (
 )
 
 const (
-	// timeSpread is the standard error taken for the logarithm of one run's time: the machine is
-	// busy with other things, and how long a run averages is chance to some degree.
-	timeSpread = 0.1
+	// timeSpread is the standard error taken for the logarithm of one run's time: how long a run
+	// settles and averages is chance to some degree, as the recorded times in the tests show, and the
+	// machine is busy with other things.
+	timeSpread = 0.2
 	// priorSpread is how far a run's time is from the estimate before anything has been run: a
 	// factor of 3.
 	priorSpread = 1.1
 	// timeAmplitude and timeLength are those of the surrogate of the logarithm of the time over the
-	// estimate, on axes from 0 to 1: smooth surfaces with a change of a factor of 2 or so along an
-	// axis, and little bend. So few points are known at first that they cannot tell this themselves.
-	timeAmplitude, timeLength = 2.0, 3.0
+	// estimate, on axes from 0 to 1: smooth surfaces with a change of a factor of 1.5 or so along
+	// an axis, and little bend. So few points are known at first that they cannot tell this themselves.
+	timeAmplitude, timeLength = 1.0, 3.0
 	// mostFitted bounds the points that a forecast is fitted to.
 	mostFitted = 80
 )
