@@ -359,7 +359,7 @@ vary:
 func TestSlurmTimeLimit(t *testing.T) {
 	c := newCluster(t, 1)
 	defer c.cancelAll(t)
-	dir := scanInputs(t, "base: base.yaml\nvary: {numerics.periods: [8000]}\n")
+	dir := scanInputs(t, "base: base.yaml\nvary: {numerics.periods: [12000]}\n")
 	ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "1", "--warning", "50")
 	c.until(t, "the point is interrupted", clusterPatience, func() bool {
 		if count(t, dir, "done") > 0 {
