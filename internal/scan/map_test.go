@@ -15,7 +15,8 @@ import (
 // trusted.
 func plane() *Map {
 	m := &Map{
-		Of: "ion_mean_energy_eV.grounded.all", Unit: "eV",
+		Short: []string{"pressure", "amplitude"},
+		Of:    "ion_mean_energy_eV.grounded.all", Unit: "eV",
 		Axes: []Axis{{Path: "gas.pressure", Unit: "Pa"}, {Path: "drive.tones.0.amplitude", Unit: "V"}},
 	}
 	for i := range 5 {
@@ -78,7 +79,8 @@ func TestPicture(t *testing.T) {
 			t.Fatal(err)
 		}
 		for _, want := range []string{
-			"<svg", ">ok<", ">warn<", ">not trusted<", ">not computed<", "gas.pressure [Pa]",
+			"<svg", ">ok<", ">warn<", ">not trusted<", ">not computed<", ">pressure [Pa]<",
+			"ion mean energy, grounded [eV]",
 		} {
 			if !strings.Contains(string(picture), want) {
 				t.Errorf("%d axes: %q is missing from the picture", against, want)
