@@ -94,13 +94,14 @@ func (b *bench) text() ([]byte, error) {
 }
 
 const how = `
-How it was measured: the efficiency compares the scan with separate single-threaded processes, one a
-core. Part of it is how evenly the points fill the cores to the end (the sum of the points' own times
-over cores x time of the scan). The other part is what a point costs in a scan beyond what it costs
-alone: pairs of points are run as two separate processes at once, and as a scan of these two points, which
-way first in turn; all processor time of the processes counts, also for starting and writing.
-Processor time depends less than the clock on what else the machine does. Errors are standard errors
-over the pairs. The same results means: all numbers of all tables and all scalars, bit for bit.
+How it was measured: the efficiency compares the scan with separate single-threaded processes, one
+a core. Part of it is how evenly the points fill the cores to the end (the sum of the points' own
+times over cores x time of the scan). The other part is what a point costs in a scan beyond what
+it costs alone: pairs of points are run as two separate processes at once, and as a scan of these
+two points, which way first in turn; all processor time of the processes counts, also for starting
+and writing. Processor time depends less than the clock on what else the machine does. Errors are
+standard errors over the pairs. The same results means: all numbers of all tables and all scalars,
+bit for bit.
 
 | points | separate: processor s, s | scan: processor s, s |
 |---|---|---|

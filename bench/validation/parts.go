@@ -127,6 +127,14 @@ func discharges() []part {
 			pkg: "./cmd/ionfall", pattern: "ValidationClosedLoop", flags: "-timeout 1h",
 			takes: "some minutes",
 		},
+		{
+			file: "window.json", title: "Operating window: is the recommended point as predicted?",
+			about: "A search over pressure and voltage in argon for a mean ion energy below 22 eV at an " +
+				"ion flux above 6e17 1/(m2 s), as large as possible; a fresh run at the settings that it " +
+				"recommends against its own prediction. The numerics are coarse: it tests the search, not " +
+				"the discharge.",
+			pkg: "./internal/scan", pattern: "ValidationWindow", takes: "a minute",
+		},
 	}
 }
 

@@ -3,6 +3,7 @@ package main
 import (
 	"bytes"
 	"fmt"
+	"math/rand/v2"
 	"net"
 	"os"
 	"os/exec"
@@ -67,7 +68,8 @@ SelectType=select/cons_tres
 SelectTypeParameters=CR_Core
 SchedulerParameters=batch_sched_delay=0,sched_interval=1
 KillWait=5
-SlurmdTimeout=10
+SlurmdTimeout=30
+MessageTimeout=60
 MailProg=/bin/true
 SlurmdParameters=config_overrides
 `, host, dir, freePort(t))
@@ -96,21 +98,46 @@ SlurmdParameters=config_overrides
 	for _, name := range list {
 		c.nodes[name] = c.start(t, "slurmd", "-D", "-c", "-N", name, "-f", path)
 	}
-	c.until(t, "the nodes are idle", time.Minute, func() bool {
+	c.until(t, "the nodes are idle", clusterPatience, func() bool {
+		c.daemonsLive(t)
 		out, err := exec.Command("sinfo", "-h", "-N", "-t", "idle", "-o", "%N").Output()
 		return err == nil && len(strings.Fields(string(out))) == nodes
 	})
 	return c
 }
 
+// clusterPatience is for what comes within seconds on a machine that does nothing else.
+const clusterPatience = 5 * time.Minute
+
+// daemonsLive fails at once, with the log, when a daemon has ended: nothing would come of waiting.
+func (c *cluster) daemonsLive(t *testing.T) {
+	t.Helper()
+	for _, cmd := range c.all {
+		stat, err := os.ReadFile(fmt.Sprintf("/proc/%d/stat", cmd.Process.Pid))
+		if err != nil || bytes.Contains(stat, []byte(") Z ")) {
+			t.Fatalf("%s has ended", cmd)
+		}
+	}
+}
+
+// freePort finds one below those that the system gives to others: between here and the start of a
+// daemon nobody takes it but another cluster, whose ports are as random.
 func freePort(t *testing.T) int {
 	t.Helper()
-	l, err := net.Listen("tcp", "127.0.0.1:0")
-	if err != nil {
-		t.Fatal(err)
+	const low, count = 20_000, 10_000
+	for range 100 {
+		port := low + rand.IntN(count)
+		l, err := net.Listen("tcp", fmt.Sprintf("127.0.0.1:%d", port))
+		if err != nil {
+			continue
+		}
+		if err := l.Close(); err != nil {
+			t.Fatal(err)
+		}
+		return port
 	}
-	defer func() { _ = l.Close() }()
-	return l.Addr().(*net.TCPAddr).Port
+	t.Fatal("no port is free")
+	return 0
 }
 
 func (c *cluster) start(t *testing.T, name string, args ...string) *exec.Cmd {
@@ -132,7 +159,6 @@ func (c *cluster) start(t *testing.T, name string, args ...string) *exec.Cmd {
 func (c *cluster) stop(t *testing.T) {
 	if len(c.all) > 0 {
 		_ = exec.Command("scancel", "--user=root").Run() // there may be none
-		time.Sleep(500 * time.Millisecond)
 	}
 	for name := range c.nodes {
 		c.killProcesses(t, name)
@@ -155,6 +181,21 @@ func (c *cluster) stop(t *testing.T) {
 	}
 }
 
+// cancelAll ends the jobs and waits until nothing of them runs: they write into the folder of the
+// test, which is removed after it.
+func (c *cluster) cancelAll(t *testing.T) {
+	t.Helper()
+	_ = exec.Command("scancel", "--user=root").Run() // there may be none
+	c.until(t, "no task runs", clusterPatience, func() bool {
+		for name := range c.nodes {
+			if len(c.processes(t, name)) > 0 {
+				return false
+			}
+		}
+		return true
+	})
+}
+
 // killNode ends a node and all that runs on it, as a power cut would.
 func (c *cluster) killNode(t *testing.T, name string) {
 	t.Helper()
@@ -163,14 +204,27 @@ func (c *cluster) killNode(t *testing.T, name string) {
 	c.killProcesses(t, name)
 }
 
-// killProcesses kills what was run on a node of this cluster, which is known by its environment, and
-// the daemons of its steps, which are the parents of the scripts.
+// killProcesses kills what was run on a node of this cluster, and the daemons of its steps, which
+// are the parents of the scripts.
 func (c *cluster) killProcesses(t *testing.T, node string) {
+	t.Helper()
+	for _, pid := range c.processes(t, node) {
+		// They may be gone since.
+		if parent := parentOf(pid, "slurmstepd"); parent > 1 {
+			_ = syscall.Kill(parent, syscall.SIGKILL)
+		}
+		_ = syscall.Kill(pid, syscall.SIGKILL)
+	}
+}
+
+// processes are those of tasks on a node of this cluster, which are known by their environment.
+func (c *cluster) processes(t *testing.T, node string) []int {
 	t.Helper()
 	entries, err := os.ReadDir("/proc")
 	if err != nil {
 		t.Fatal(err)
 	}
+	var list []int
 	for _, e := range entries {
 		pid, err := strconv.Atoi(e.Name())
 		if err != nil || pid == os.Getpid() {
@@ -182,13 +236,10 @@ func (c *cluster) killProcesses(t *testing.T, node string) {
 		}
 		if bytes.Contains(environment, []byte("SLURM_CONF="+c.dir+"/")) &&
 			bytes.Contains(environment, []byte("SLURMD_NODENAME="+node+"\x00")) {
-			// They may be gone since.
-			if parent := parentOf(pid, "slurmstepd"); parent > 1 {
-				_ = syscall.Kill(parent, syscall.SIGKILL)
-			}
-			_ = syscall.Kill(pid, syscall.SIGKILL)
+			list = append(list, pid)
 		}
 	}
+	return list
 }
 
 // parentOf is the parent of a process if it bears the name, else 0.
@@ -260,6 +311,7 @@ func withoutCost(text string) string {
 // the array cancelled, then all is submitted again to the node that is left.
 func TestSlurmKilledNode(t *testing.T) {
 	c := newCluster(t, 2)
+	defer c.cancelAll(t)
 	dir := scanInputs(t, `base: base.yaml
 vary:
   gas.pressure: [50 Pa, 60 Pa]
@@ -273,16 +325,16 @@ vary:
 	done := func(n int) func() bool {
 		return func() bool { return count(t, dir, "done") >= n }
 	}
-	c.until(t, "two points are done", 2*time.Minute, done(2))
+	c.until(t, "two points are done", clusterPatience, done(2))
 	c.killNode(t, "n2")
 	now := count(t, dir, "done")
-	c.until(t, "the other node goes on", 2*time.Minute, done(min(12, now+2)))
+	c.until(t, "the other node goes on", clusterPatience, done(min(12, now+2)))
 	if err := exec.Command("scancel", "--user=root").Run(); err != nil {
 		t.Fatal(err)
 	}
-	c.until(t, "no task is left", time.Minute, func() bool {
+	c.until(t, "no task is left", clusterPatience, func() bool {
 		out, err := exec.Command("squeue", "-h", "-t", "R,CG", "-w", "n1").Output()
-		return err == nil && len(bytes.TrimSpace(out)) == 0
+		return err == nil && len(bytes.TrimSpace(out)) == 0 && len(c.processes(t, "n1")) == 0
 	})
 	if left := 12 - count(t, dir, "done"); left > 0 {
 		ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "10", "--max-running", "3")
@@ -290,7 +342,7 @@ vary:
 	} else {
 		t.Error("all points were done before the second submission: the test shows too little")
 	}
-	c.until(t, "all points are done", 3*time.Minute, done(12))
+	c.until(t, "all points are done", clusterPatience, done(12))
 	ionfall(t, dir, "scan", "collect", "p.yaml")
 	cluster := ionfall(t, dir, "scan", "table", "p.yaml", "--csv")
 	ionfall(t, dir, "scan", "run", "p.yaml", "--out", "local", "--quiet")
@@ -300,22 +352,45 @@ vary:
 	}
 }
 
-// Goal: before its time ends a task writes a checkpoint and goes back into the queue. Method: a
-// point that takes far longer than the limit of a minute, with a warning 50 s before.
+// Goal: before its time ends a task writes a checkpoint and goes back into the queue; when it runs
+// again it takes the point up and ends it, with the bits of a run that was never interrupted. Method:
+// a point that takes longer than the warning leaves of a limit of a minute. A requeued task is held
+// back for two minutes; the test lets it go at once, as often as it is requeued.
 func TestSlurmTimeLimit(t *testing.T) {
 	c := newCluster(t, 1)
-	dir := scanInputs(t, "base: base.yaml\nvary: {numerics.periods: [900000]}\n")
+	defer c.cancelAll(t)
+	dir := scanInputs(t, "base: base.yaml\nvary: {numerics.periods: [12000]}\n")
 	ionfall(t, dir, "scan", "submit", "p.yaml", "--time", "1", "--warning", "50")
-	c.until(t, "the point is interrupted", 2*time.Minute, func() bool {
+	c.until(t, "the point is interrupted", clusterPatience, func() bool {
+		if count(t, dir, "done") > 0 {
+			t.Fatal("the point was done before the warning: the test shows nothing")
+		}
 		return count(t, dir, "interrupted") == 1
-	})
-	c.until(t, "the task is in the queue again", time.Minute, func() bool {
-		out, err := exec.Command("squeue", "-h", "-t", "PD").Output()
-		return err == nil && len(bytes.TrimSpace(out)) > 0
 	})
 	checkpoint := filepath.Join(dir, "scans", "p", "points", "point=0001.running", "checkpoint.bin")
 	if _, err := os.Stat(checkpoint); err != nil {
 		t.Error(err)
+	}
+	requeued := 0
+	c.until(t, "the requeued task ends the point", 2*clusterPatience, func() bool {
+		out, err := exec.Command("squeue", "-h", "-r", "-t", "PD", "-o", "%i %r").Output()
+		for line := range strings.Lines(string(out)) {
+			if words := strings.Fields(line); err == nil && words[len(words)-1] == "BeginTime" {
+				requeued++
+				// It may have been let go by itself since.
+				_ = exec.Command("scontrol", "update", "jobid="+words[0], "starttime=now").Run()
+			}
+		}
+		return count(t, dir, "done") == 1
+	})
+	if requeued == 0 {
+		t.Error("the task was never in the queue again")
+	}
+	cluster := ionfall(t, dir, "scan", "table", "p.yaml", "--csv")
+	ionfall(t, dir, "scan", "run", "p.yaml", "--out", "local", "--quiet")
+	local := ionfall(t, dir, "scan", "table", "local", "--csv")
+	if withoutCost(cluster) != withoutCost(local) {
+		t.Errorf("the table of the cluster is\n%s\nthe local one\n%s", cluster, local)
 	}
 }
 

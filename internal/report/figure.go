@@ -70,7 +70,12 @@ type Map struct {
 	Z      Numbers `json:"z"`
 	SE     Numbers `json:"se"`
 	Value  Axis    `json:"value"`
-	Signed bool    `json:"signed"` // the middle of the colours is zero
+	Signed bool    `json:"signed"`          // the middle of the colours is zero
+	Close  bool    `json:"close,omitempty"` // the colours end with the values
+	Marks  []Mark  `json:"marks,omitempty"` // points of a scan that are not coloured
+	// MiddleX and MiddleY are where the points of a scan lie in its cells; empty for others.
+	MiddleX Numbers `json:"-"`
+	MiddleY Numbers `json:"-"`
 }
 
 // Bar is one amount.

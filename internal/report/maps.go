@@ -109,7 +109,7 @@ func (m *Map) limits() (low, high float64) {
 	case m.Signed:
 		high = math.Max(math.Abs(low), math.Abs(high))
 		low = -high
-	case low >= 0:
+	case low >= 0 && !m.Close:
 		low = 0
 	}
 	if low == high {

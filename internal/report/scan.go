@@ -157,25 +157,24 @@ func (s *Scan) shown() []ScanColumn {
 	return list
 }
 
-// Figures draws the results over every input that varies. Sound points and those that failed are
-// two sets, told apart by shape and name.
+// Figures draws the results over every input that varies, after maps of them. Sound
+// points and those that failed are two sets, told apart by shape and name.
 func (s *Scan) Figures() []Figure {
 	var list []Figure
 	for _, result := range s.shown() {
 		for _, input := range s.varied() {
 			f := Figure{
 				ID: slug(result.Name + "-" + input.Name), Kind: "scan",
-				Title: result.Doc + " over " + input.Name,
 				About: "Every point of the scan; the other inputs differ, too. Bars are standard " +
 					"errors; crosses are points whose verdict is FAIL, which are not to be used.",
 				Runs: []RunMark{
 					{s.Name + ", sound points", store.OK}, {s.Name + ", failed points", store.Fail},
 				},
-				X:       Axis{Name: input.Name, Label: input.Name},
-				Y:       Axis{Name: result.Name, Label: result.Name},
+				X:       Axis{Name: input.Name, Label: s.shortNames([]ScanColumn{input})[0], Unit: input.Unit},
+				Y:       Axis{Name: result.Name, Label: table.ResultName(result.Name), Unit: result.Unit},
 				Crossed: true,
 			}
-			f.Title = result.Name + " over " + input.Name
+			f.Title = f.Y.Label + " over " + f.X.Label
 			sound := Series{Label: "points", Run: 0, Dots: true}
 			failed := Series{Label: "points", Run: 1, Dots: true, Cross: true}
 			for i := range s.Points {
@@ -197,7 +196,7 @@ func (s *Scan) Figures() []Figure {
 			list = append(list, f)
 		}
 	}
-	return list
+	return append(s.Maps(), list...)
 }
 
 // padded is the range of an input with some room, so that no point lies on the frame.
@@ -242,7 +241,11 @@ func ScanPage(s *Scan) ([]byte, error) {
 	}
 	columns := append(slices.Clone(s.Inputs), s.shown()...)
 	for _, c := range columns {
-		p.Heads = append(p.Heads, c.Name)
+		name := table.ResultName(c.Name)
+		if c.SE == nil {
+			name = s.shortNames([]ScanColumn{c})[0]
+		}
+		p.Heads = append(p.Heads, Axis{Label: name, Unit: prettyUnit(c.Unit)}.Title())
 	}
 	for i, point := range s.Points {
 		row := scanRow{

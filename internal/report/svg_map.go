@@ -31,6 +31,7 @@ func (d *drawing) drawMap() error {
 	d.add(`<image href="data:image/png;base64,%s" x="%.1f" y="%.1f" width="%.1f" height="%.1f" `+
 		`preserveAspectRatio="none"/>`, base64.StdEncoding.EncodeToString(picture), leftEdge,
 		d.top, d.right-leftEdge, d.y.from-d.top)
+	d.overlay()
 	d.axes(f.X, f.Y)
 	d.colorBar()
 	return nil

@@ -67,8 +67,7 @@ func (p *Plan) balanceTemperature(length, ion float64) float64 {
 	low, high := 0.3, 30.0
 	for range 50 {
 		te := math.Sqrt(low * high)
-		_, _, rate, _ := p.rates(te)
-		if rate*p.gasDensity()*length > math.Sqrt(phys.ElementaryCharge*te/ion) {
+		if p.ionizationRate(te)*p.gasDensity()*length > math.Sqrt(phys.ElementaryCharge*te/ion) {
 			high = te
 		} else {
 			low = te
@@ -90,14 +89,26 @@ func (p *Plan) rates(te float64) (ionizeEV, exciteEV, ionize, elastic float64) {
 			case crosssections.Elastic:
 				elastic += rate
 			case crosssections.Ionization:
-				ionize += rate
 				ionizeEV += rate * process.Threshold
 			default:
 				exciteEV += rate * process.Threshold
 			}
 		}
 	}
-	return ionizeEV, exciteEV, math.Max(ionize, 1e-30), elastic
+	return ionizeEV, exciteEV, p.ionizationRate(te), elastic
+}
+
+// ionizationRate is the rate coefficient of ionization alone, which costs the least [m3/s].
+func (p *Plan) ionizationRate(te float64) float64 {
+	sum := 0.0
+	for i, g := range p.Gases {
+		for k := range g.Electron {
+			if process := &g.Electron[k]; process.Kind == crosssections.Ionization {
+				sum += p.Case.Gas.Mixture[i].Fraction * maxwellRate(&process.Table, te)
+			}
+		}
+	}
+	return math.Max(sum, 1e-30)
 }
 
 // maxwellRate returns the mean of sigma v over a Maxwellian of temperature te [eV], by the

@@ -19,6 +19,12 @@
 // or another process works at it. So there is no list of work to be damaged, no server, and a
 // runner that is killed leaves nothing that the next one cannot take up.
 //
+// # When it will be done
+//
+// A tenth of the points goes first, chosen to stand for the cost of all. The logarithm of their
+// times over the estimates made from the inputs is a smooth surface over the axes, which is carried
+// on to the other points. At its end a scan says how far off the first such prediction was.
+//
 // # The same bits
 //
 // A point's input is text made from the plan alone. Running it by itself gives the bits of the

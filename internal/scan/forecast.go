@@ -10,16 +10,17 @@ import (
 )
 
 const (
-	// timeSpread is the standard error taken for the logarithm of one run's time: the machine is
-	// busy with other things, and how long a run averages is chance to some degree.
-	timeSpread = 0.1
+	// timeSpread is the standard error taken for the logarithm of one run's time: how long a run
+	// settles and averages is chance to some degree, as the recorded times in the tests show, and the
+	// machine is busy with other things.
+	timeSpread = 0.2
 	// priorSpread is how far a run's time is from the estimate before anything has been run: a
 	// factor of 3.
 	priorSpread = 1.1
 	// timeAmplitude and timeLength are those of the surrogate of the logarithm of the time over the
-	// estimate, on axes from 0 to 1: smooth surfaces with a change of a factor of 2 or so along an
-	// axis, and little bend. So few points are known at first that they cannot tell this themselves.
-	timeAmplitude, timeLength = 2.0, 3.0
+	// estimate, on axes from 0 to 1: smooth surfaces with a change of a factor of 1.5 or so along
+	// an axis, and little bend. So few points are known at first that they cannot tell this themselves.
+	timeAmplitude, timeLength = 1.0, 3.0
 	// mostFitted bounds the points that a forecast is fitted to.
 	mostFitted = 80
 )
@@ -96,8 +97,8 @@ func (f *forecast) seconds(i int) (expected, spread float64) {
 }
 
 // remaining predicts what is left of a run that has gone on for the elapsed seconds and itself says
-// how much that is, below 0 for nothing. At the start of its average a run knows its error badly and
-// tends to say too much: then the truth is likely between both.
+// how much that is, below 0 for nothing. At the start of its average a run knows its error badly
+// and tends to say too much: then the truth is likely between both.
 func (f *forecast) remaining(i int, elapsed, own float64) float64 {
 	expected, _ := f.seconds(i)
 	// A run that takes longer than expected is likely to go on for a while.

@@ -6,6 +6,7 @@ import (
 	"slices"
 	"strings"
 
+	"ionfall/internal/report"
 	"ionfall/internal/store"
 	"ionfall/internal/table"
 )
@@ -15,6 +16,7 @@ type Map struct {
 	Of     string
 	Unit   string
 	Axes   []Axis   // one or two, across and up
+	Short  []string // their short names
 	Fixed  []string // the other inputs and their values, for the title
 	Points []MapPoint
 	// Scattered says that other inputs vary, too: neighbours on the map must not be joined.
@@ -85,6 +87,7 @@ func (f *Folder) choose(m *Map, against []string, at map[string]string) (
 	for _, a := range axes {
 		names = append(names, a.Path)
 	}
+	short := table.ShortNames(names)
 	if len(against) == 0 {
 		against = names[:min(2, len(names))]
 	}
@@ -94,7 +97,7 @@ func (f *Folder) choose(m *Map, against []string, at map[string]string) (
 			return nil, nil, fmt.Errorf("got %s to draw against, want one or two of the inputs that "+
 				"vary as numbers: %s", strings.Join(against, ", "), strings.Join(names, ", "))
 		}
-		shown, m.Axes = append(shown, k), append(m.Axes, axes[k])
+		shown, m.Axes, m.Short = append(shown, k), append(m.Axes, axes[k]), append(m.Short, short[k])
 	}
 	fixed := map[int]string{}
 	for name := range at {
@@ -110,13 +113,13 @@ func (f *Folder) choose(m *Map, against []string, at map[string]string) (
 		}
 		if sampled && at[a.Path] == "" {
 			m.Scattered = true
-			m.Fixed = append(m.Fixed, a.Path+" varies")
+			m.Fixed = append(m.Fixed, short[k]+" varies")
 			continue
 		}
 		if fixed[k], err = f.valueOf(k, at[a.Path]); err != nil {
 			return nil, nil, err
 		}
-		m.Fixed = append(m.Fixed, a.Path+" "+fixed[k])
+		m.Fixed = append(m.Fixed, short[k]+" "+fixed[k])
 	}
 	return shown, func(p Point) bool {
 		for k, text := range fixed {
@@ -192,54 +195,7 @@ func (m *Map) raster() *raster {
 	return r
 }
 
-// segment is a piece of a contour.
-type segment struct{ x0, y0, x1, y1 float64 }
-
-// contour returns where the value crosses a level. Each cell is cut into four triangles about its
-// middle, which leaves no ambiguous case. A cell with a corner that is not sound has no contour.
-func (r *raster) contour(level float64) []segment {
-	var list []segment
-	for i := range len(r.x) - 1 {
-		for j := range len(r.y) - 1 {
-			corners := [4][3]float64{
-				{r.x[i], r.y[j], r.z[i][j]},
-				{r.x[i+1], r.y[j], r.z[i+1][j]},
-				{r.x[i+1], r.y[j+1], r.z[i+1][j+1]},
-				{r.x[i], r.y[j+1], r.z[i][j+1]},
-			}
-			var middle [3]float64
-			for _, c := range corners {
-				for k := range middle {
-					middle[k] += c[k] / 4
-				}
-			}
-			if math.IsNaN(middle[2]) {
-				continue
-			}
-			for k := range corners {
-				triangle := [3][3]float64{corners[k], corners[(k+1)%4], middle}
-				if s, ok := cut(triangle, level); ok {
-					list = append(list, s)
-				}
-			}
-		}
-	}
-	return list
-}
-
-// cut returns where a plane triangle crosses a level.
-func cut(t [3][3]float64, level float64) (segment, bool) {
-	var ends [][2]float64
-	for k := range t {
-		a, b := t[k], t[(k+1)%3]
-		if a[2] >= level == (b[2] >= level) {
-			continue
-		}
-		u := (level - a[2]) / (b[2] - a[2])
-		ends = append(ends, [2]float64{a[0] + u*(b[0]-a[0]), a[1] + u*(b[1]-a[1])})
-	}
-	if len(ends) != 2 {
-		return segment{}, false
-	}
-	return segment{ends[0][0], ends[0][1], ends[1][0], ends[1][1]}, true
+// contour returns where the value crosses a level.
+func (r *raster) contour(level float64) []report.Segment {
+	return report.Contour(r.x, r.y, r.z, level)
 }

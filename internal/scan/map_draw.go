@@ -16,6 +16,8 @@ import (
 	"gonum.org/v1/plot/vg/vgsvg"
 
 	"ionfall/internal/progress"
+	"ionfall/internal/report"
+	"ionfall/internal/table"
 )
 
 const (
@@ -57,17 +59,17 @@ func (p MapPoint) mark() string {
 // SVG draws the map. Only points that are sound are coloured, joined by contours or lines.
 func (m *Map) SVG() ([]byte, error) {
 	p := plot.New()
-	p.Title.Text = m.Of + " [" + m.Unit + "]"
+	p.Title.Text = m.title()
 	if len(m.Fixed) > 0 {
 		p.Title.Text += "\n" + strings.Join(m.Fixed, ", ")
 	}
-	p.X.Label.Text = axisTitle(m.Axes[0])
+	p.X.Label.Text = m.axisTitle(0)
 	var err error
 	if len(m.Axes) == 2 {
-		p.Y.Label.Text = axisTitle(m.Axes[1])
+		p.Y.Label.Text = m.axisTitle(1)
 		err = m.drawPlane(p)
 	} else {
-		p.Y.Label.Text = m.Of + " [" + m.Unit + "]"
+		p.Y.Label.Text = m.title()
 		err = m.drawLine(p)
 	}
 	if err == nil {
@@ -87,11 +89,13 @@ func (m *Map) SVG() ([]byte, error) {
 	return b.Bytes(), err
 }
 
-func axisTitle(a Axis) string {
-	if a.Unit == "" {
-		return a.Path
-	}
-	return a.Path + " [" + a.Unit + "]"
+// title is the result with its unit.
+func (m *Map) title() string {
+	return report.Axis{Label: table.ResultName(m.Of), Unit: m.Unit}.Title()
+}
+
+func (m *Map) axisTitle(k int) string {
+	return report.Axis{Label: m.Short[k], Unit: m.Axes[k].Unit}.Title()
 }
 
 // drawMarks puts a mark at every point, sound or not, and says what the marks mean.
@@ -209,7 +213,7 @@ func (m *Map) drawPlane(p *plot.Plot) error {
 		for k := range mapContours {
 			level := low + (high-low)*float64(k+1)/(mapContours+1)
 			for _, s := range r.contour(level) {
-				line, err := plotter.NewLine(plotter.XYs{{X: s.x0, Y: s.y0}, {X: s.x1, Y: s.y1}})
+				line, err := plotter.NewLine(plotter.XYs{{X: s.X0, Y: s.Y0}, {X: s.X1, Y: s.Y1}})
 				if err != nil {
 					return err
 				}

@@ -15,7 +15,8 @@ import (
 // trusted.
 func plane() *Map {
 	m := &Map{
-		Of: "ion_mean_energy_eV.grounded.all", Unit: "eV",
+		Short: []string{"pressure", "amplitude"},
+		Of:    "ion_mean_energy_eV.grounded.all", Unit: "eV",
 		Axes: []Axis{{Path: "gas.pressure", Unit: "Pa"}, {Path: "drive.tones.0.amplitude", Unit: "V"}},
 	}
 	for i := range 5 {
@@ -48,7 +49,7 @@ func TestContours(t *testing.T) {
 	for _, level := range []float64{3, 12, 27, 46} {
 		list := r.contour(level)
 		for _, s := range list {
-			for _, end := range [][2]float64{{s.x0, s.y0}, {s.x1, s.y1}} {
+			for _, end := range [][2]float64{{s.X0, s.Y0}, {s.X1, s.Y1}} {
 				if v := end[0] + end[1]/10; math.Abs(v-level) > 1e-9 {
 					t.Errorf("level %g passes through %v, where the value is %g", level, end, v)
 				}
@@ -78,7 +79,8 @@ func TestPicture(t *testing.T) {
 			t.Fatal(err)
 		}
 		for _, want := range []string{
-			"<svg", ">ok<", ">warn<", ">not trusted<", ">not computed<", "gas.pressure [Pa]",
+			"<svg", ">ok<", ">warn<", ">not trusted<", ">not computed<", ">pressure [Pa]<",
+			"ion mean energy, grounded [eV]",
 		} {
 			if !strings.Contains(string(picture), want) {
 				t.Errorf("%d axes: %q is missing from the picture", against, want)

@@ -108,17 +108,17 @@ const (
 	showEvery = time.Second
 )
 
-// prepare checks every point once more, now with the gases, and puts them in order.
+// prepare checks the points once more, now with the gases, and puts them in order.
 func (r *runner) prepare() error {
 	p := r.folder.Plan
-	plans, cost, err := p.Prepare()
+	plans, cost, err := p.prepare(r.mine)
 	if err != nil {
 		return err
 	}
 	r.plans, r.forecast = plans, newForecast(p, cost)
 	for _, i := range p.order(cost, !r.options.Until.IsZero()) {
 		number := p.Points[i].Number
-		if n := r.options.Shards; n > 1 && (number-1)%n != r.options.Shard-1 {
+		if !r.mine(p.Points[i]) {
 			continue
 		}
 		r.report.Total++
@@ -135,6 +135,12 @@ func (r *runner) prepare() error {
 		}
 	}
 	return nil
+}
+
+// mine reports whether a point is in this runner's part.
+func (r *runner) mine(p Point) bool {
+	n := r.options.Shards
+	return n <= 1 || (p.Number-1)%n == r.options.Shard-1
 }
 
 // work lets the workers run to their end.

@@ -7,8 +7,8 @@
 //
 // (Matern, smoothness 5/2: twice differentiable). What is known are samples with their own standard
 // errors, taken as independent and normal. The amplitude s and the lengths l_i, one an input, are
-// drawn from their posterior: the restricted marginal likelihood of the samples times a broad prior,
-// which keeps them finite where a quantity hardly depends on an input.
+// drawn from their posterior: the restricted marginal likelihood of the samples times a broad
+// prior, which keeps them finite where a quantity hardly depends on an input.
 //
 // A prediction is that of the quantity itself, not of a new noisy sample. It averages over the
 // draws. Its error holds the errors of the samples, the distance to them, the unknown constant and

@@ -78,8 +78,8 @@ func Fit(samples []Sample) (*Model, error) {
 	return m, nil
 }
 
-// Known returns the surrogate with a given amplitude, in the unit of the values, and lengths in those
-// of the inputs: for few samples of a quantity whose kind is known well. It costs little.
+// Known returns the surrogate with a given amplitude, in the unit of the values, and lengths in
+// those of the inputs: for few samples of a quantity whose kind is known well. It costs little.
 func Known(samples []Sample, amplitude float64, lengths []float64) (*Model, error) {
 	if len(samples) == 0 || len(samples[0].X) != len(lengths) {
 		return nil, fmt.Errorf("surrogate: %d samples, want some with %d inputs", len(samples),

@@ -16,8 +16,8 @@ const (
 	drawSeed = 1
 )
 
-// sampleParams draws parameters from their posterior density, by slice sampling along each of them and
-// along all together (lengths and amplitude grow together where a quantity is nearly a
+// sampleParams draws parameters from their posterior density, by slice sampling along each of them
+// and along all together (lengths and amplitude grow together where a quantity is nearly a
 // plane), from the most likely ones on.
 //
 // Ref: R. M. Neal, Ann. Stat. 31, 705 (2003), stepping out and shrinkage (from memory).

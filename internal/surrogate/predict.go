@@ -90,9 +90,9 @@ func (m *Model) Residuals() []float64 {
 	return z
 }
 
-// Joint predicts the quantity at several places at once, with the most likely parameters: the means,
-// and the covariances of what is not known of them, row by row. It is for choosing where to look
-// next; errors to be told are those of At.
+// Joint predicts the quantity at several places at once, with the most likely parameters: the
+// means, and the covariances of what is not known of them, row by row. It is for choosing where to
+// look next; errors to be told are those of At.
 func (m *Model) Joint(places [][]float64) (mean []float64, covariance *mat.SymDense) {
 	n, count := len(m.x), len(places)
 	c := m.likely

@@ -339,7 +339,7 @@ export class Plot {
     else if (m.signed) {
       high = Math.max(Math.abs(low), Math.abs(high));
       low = -high;
-    } else if (low >= 0) low = 0;
+    } else if (low >= 0 && !m.close) low = 0;
     if (low >= high) return m.value.log ? [high / 10, high] : [low, low + 1];
     return [low, high];
   }
@@ -356,6 +356,10 @@ export class Plot {
     const color = new Scale(...limits, 0, this.colors.length - 1, m.value.log);
     this.add("image", { href: this.picture(m, w, h, color), x: this.left, y: this.top, width: w, height: h, preserveAspectRatio: "none" });
     this.axes(this.f.x, this.f.y);
+    for (const p of m.marks || []) {
+      const shape = p.failed ? "l9 9m0 -9l-9 9" : "h9v9h-9z";
+      this.add("path", { class: p.failed ? "cross" : "open", d: `M${this.x.at(p.x) - 4.5} ${this.y.at(p.y) - 4.5}${shape}` });
+    }
     colorBar(this, m.value, limits);
   }
 
