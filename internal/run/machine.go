@@ -259,8 +259,8 @@ func (p *Plan) leastLives() float64 {
 }
 
 // accurate tells whether the errors at every substrate are as small as was asked for, those that
-// become smaller with time. An error from n batches is itself known to one part in sqrt(2 (n-1)) only;
-// an average that ends as soon as it looks small enough would end where it is underestimated.
+// become smaller with time. An error from n batches is itself known to one part in sqrt(2 (n-1))
+// only; an average that ends as soon as it looks small enough would end where it is underestimated.
 func (m *machine) accurate() bool {
 	want := m.plan.Case.Accuracy
 	small := func(e stats.Estimate, part float64) bool {
