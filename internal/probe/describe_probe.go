@@ -22,7 +22,7 @@ func probeKeys() []string {
 	return []string{
 		"name", "sweeps", "position", "orientation", "tip_radius", "tip_length", "gas", "pressure",
 		"gas_temperature", "resistance", "rf_amplitude", "area_error", "sign", "columns", "run",
-		"inputs",
+		"inputs", "ion_temperature",
 	}
 }
 
@@ -73,6 +73,8 @@ func (d *describer) probeValue(p *ProbeDescription, key string, v *yaml.Node, pa
 		p.Inputs = d.conditions(v, path)
 	case "gas_temperature":
 		s.Temperature = d.quantity(v, path, config.MeasureTemperature, 50, 5000)
+	case "ion_temperature":
+		s.IonTemperature = d.quantity(v, path, config.MeasureTemperature, 50, 1e5)
 	case "resistance":
 		s.Resistance = d.quantity(v, path, config.MeasureResistance, 0, MostResistance)
 	case "rf_amplitude":
