@@ -18,7 +18,8 @@ func measured(name, verdict string) Beside {
 			{
 				"plasma potential", "V",
 				BesideValue{store.Number(math.NaN()), store.Number(math.NaN()), "no knee"},
-				BesideValue{60, 0.1, ""}, store.Number(math.NaN()),
+				BesideValue{60, 0.1, ""},
+				store.Number(math.NaN()),
 			},
 		},
 		Cautions: []string{"an invented caution"},
