@@ -45,8 +45,8 @@ func (r *reduction) theories() {
 		theory += fmt.Sprintf(" of ions with %.2g of the electrons' temperature", c.tau)
 	}
 	if c.rho > mostTable {
-		r.caution("the tip radius is %.3g Debye lengths: the ion density follows from the current at "+
-			"%d, where the tables end", c.rho, mostTable)
+		r.caution("the tip radius is %.3g Debye lengths: the ion density follows from the "+
+			"current at %d, where the tables end", c.rho, mostTable)
 	}
 	if c.tau > warmIons {
 		r.caution("the ions are warmer than the electrons: the ion density follows from a table of ions " +
