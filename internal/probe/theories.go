@@ -49,8 +49,8 @@ func (r *reduction) theories() {
 			"current at %d, where the tables end", c.rho, mostTable)
 	}
 	if c.tau > warmIons {
-		r.caution("the ions are warmer than the electrons: the ion density follows from a table of ions " +
-			"that are as warm")
+		r.caution("the ions are warmer than the electrons: the ion density follows from a table of " +
+			"ions that are as warm")
 	}
 	r.note("ion density by %s: tip radius over Debye length is %.2g", theory, c.rho)
 	if !reached {
