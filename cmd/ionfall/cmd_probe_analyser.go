@@ -133,14 +133,12 @@ func compareAnalysers(d *probe.Description, file, folder string, choices probe.C
 ) {
 	var list []comparedAnalyser
 	for _, description := range d.Analysers {
-		a := comparedAnalyser{AnalyserDescription: description, run: folder}
+		a := comparedAnalyser{AnalyserDescription: description}
 		a.Sweeps = beside(file, a.Sweeps)
-		if a.Run != "" {
-			a.run = beside(file, a.Run)
-		}
-		if a.run == "" {
-			return nil, usagef("%s: analyser %s names no run, and none is on the command line", file,
-				a.Name)
+		var err error
+		a.run, err = runOf(&a.Placed, a.Run, folder, probe.At(a.Pressure, a.Inputs))
+		if err != nil {
+			return nil, err
 		}
 		if err := a.reduce(choices); err != nil {
 			return nil, err

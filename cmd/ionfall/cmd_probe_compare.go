@@ -3,7 +3,6 @@ package main
 import (
 	"fmt"
 	"math"
-	"os"
 	"path/filepath"
 	"strings"
 
@@ -22,8 +21,9 @@ func (p *program) probeCompareCommand() *cli.Command {
 		ArgsUsage: "RUN PROBE.yaml [--out DIR] [--library DIR] [--seed N] [--json]",
 		Description: `Reduces the sweeps, averages the results of RUN over the volume of each tip with the
 same definitions, and draws the current that such a probe would draw in the simulated plasma. RUN is
-a results folder, or a folder of a scan, of which each probe takes the point at its pressure; probes
-that name their own run need none. With --out, DIR gets tables, figures and comparison.html.`,
+a results folder, or a folder of a scan, of which each probe and analyser takes the point with its
+pressure and inputs; those that name their own run need none. With --out, DIR gets tables, figures
+and comparison.html, and the report of each run a section.`,
 		Flags: []cli.Flag{
 			&cli.StringFlag{
 				Name: "out", Usage: "put tables, figures and a page into the folder `DIR`",
@@ -73,7 +73,8 @@ func (p *program) probeCompare(c *cli.Context) error {
 	for i := range d.Probes {
 		one := comparedProbe{reducedProbe: reducedProbe{ProbeDescription: d.Probes[i]}}
 		one.Sweeps = beside(file, one.Sweeps)
-		if one.run, err = one.runOf(folder, file); err != nil {
+		one.run, err = runOf(&one.Placed, one.Run, folder, probe.At(one.Setup.Pressure, one.Inputs))
+		if err != nil {
 			return err
 		}
 		if err := one.compare(library, choices); err != nil {
@@ -89,43 +90,9 @@ func (p *program) probeCompare(c *cli.Context) error {
 		if err := keepComparisons(out, list, analysers); err != nil {
 			return err
 		}
+		p.recordBeside(list, analysers)
 	}
 	return p.printComparisons(list, analysers)
-}
-
-// runOf is the results folder that a probe is compared with.
-func (o *comparedProbe) runOf(folder, file string) (string, error) {
-	if o.Run != "" {
-		return beside(file, o.Run), nil
-	}
-	if folder == "" {
-		return "", o.Errorf("run", "nothing", "a results folder, here or on the command line", "")
-	}
-	points := filepath.Join(folder, "points")
-	if info, err := os.Stat(points); err != nil || !info.IsDir() {
-		return folder, nil
-	}
-	if o.Setup.Pressure == 0 {
-		return "", o.Errorf("pressure", "nothing", "the pressure, to find the point of the scan", "")
-	}
-	names, err := filepath.Glob(filepath.Join(points, "point=*"))
-	if err != nil {
-		return "", err
-	}
-	const same = 0.01
-	var seen []string
-	for _, name := range names {
-		input, _, err := config.Load(filepath.Join(name, "resolved.yaml"))
-		if err != nil {
-			continue // a point that is not there yet
-		}
-		if math.Abs(input.Gas.Pressure/o.Setup.Pressure-1) < same {
-			return name, nil
-		}
-		seen = append(seen, fmt.Sprintf("%.4g", input.Gas.Pressure))
-	}
-	return "", o.Errorf("pressure", fmt.Sprintf("%.4g Pa", o.Setup.Pressure),
-		"that of a point of the scan: "+strings.Join(seen, ", ")+" Pa", "")
 }
 
 // finishedRun is what a comparison reads of a results folder.

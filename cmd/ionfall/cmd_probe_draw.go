@@ -18,8 +18,8 @@ func (p *program) probeDrawCommand() *cli.Command {
 		Usage:     "make the sweeps that a probe or an analyser would give in a simulated plasma",
 		ArgsUsage: "RUN PROBE.yaml [--points N] [--sweeps N] [--noise PART] [--seed N]",
 		Description: `Writes the files of sweeps that PROBE.yaml names, which must not exist, with noise:
-to plan a measurement, and to see whether it would tell what is to be known. The files say that
-they are synthetic.`,
+to plan a measurement, and to see whether it would tell what is to be known. RUN is a results
+folder or a scan, as for compare. The files say that they are synthetic.`,
 		Flags: []cli.Flag{
 			&cli.StringFlag{Name: "points", Usage: "`N` points a sweep (default: 300)"},
 			&cli.StringFlag{Name: "sweeps", Usage: "`N` sweeps, up and down (default: 2)"},
@@ -55,7 +55,8 @@ func (p *program) probeDraw(c *cli.Context) error {
 		sweeps = usualSweeps
 	}
 	relative := v.measure("noise", config.MeasureRatio, 0, 0.5, 0.005)
-	noise := probe.Noise{Floor: relative / 10, Relative: relative, Seed: v.seed()}
+	firstSeed := v.seed()
+	noise := probe.Noise{Floor: relative / 10, Relative: relative, Seed: firstSeed}
 	if err := v.bad.Err(); err != nil {
 		return err
 	}
@@ -63,13 +64,15 @@ func (p *program) probeDraw(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	run, err := openRun(given[0])
-	if err != nil {
-		return err
-	}
 	for i := range d.Probes {
 		one := reducedProbe{ProbeDescription: d.Probes[i]}
 		one.Sweeps = beside(given[1], one.Sweeps)
+		run, err := openAt(&one.Placed, one.Run, given[0], probe.At(one.Setup.Pressure, one.Inputs))
+		if err != nil {
+			return err
+		}
+		// Places draw noise of their own.
+		noise.Seed = firstSeed + uint64(i)
 		if err := one.draw(run, library, points, sweeps, noise); err != nil {
 			return err
 		}
@@ -77,6 +80,10 @@ func (p *program) probeDraw(c *cli.Context) error {
 	}
 	for i := range d.Analysers {
 		a := &d.Analysers[i]
+		run, err := openAt(&a.Placed, a.Run, given[0], probe.At(a.Pressure, a.Inputs))
+		if err != nil {
+			return err
+		}
 		ions, err := run.arrival(a.Electrode)
 		if err != nil {
 			return err

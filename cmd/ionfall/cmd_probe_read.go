@@ -32,6 +32,8 @@ cylinder. With --out, DIR gets figures of each step and the tables behind them.`
 			measureFlag("pressure", "`PRESSURE`, to judge collisions", config.MeasurePressure),
 			measureFlag("gas-temperature", "`T` of the gas (default: 300 K)",
 				config.MeasureTemperature),
+			measureFlag("ion-temperature", "`T` of the ions (default: that of the gas)",
+				config.MeasureTemperature),
 			measureFlag("resistance", "`R` in series with the tip (default: 0 Ohm)",
 				config.MeasureResistance),
 			measureFlag("rf-amplitude", "residual RF `VOLTAGE` between tip and plasma, if it is known",
@@ -86,10 +88,11 @@ func (v *values) probeSetup() (probe.Setup, probe.Columns) {
 			math.NaN()),
 		Length: v.measure("tip-length", config.MeasureLength, probe.LeastLength, probe.MostLength,
 			math.NaN()),
-		Pressure:    v.measure("pressure", config.MeasurePressure, 1e-4, 1e5, 0),
-		Temperature: v.measure("gas-temperature", config.MeasureTemperature, 50, 5000, 300),
-		Resistance:  v.measure("resistance", config.MeasureResistance, 0, probe.MostResistance, 0),
-		RF:          v.measure("rf-amplitude", config.MeasureVoltage, 0, probe.MostRF, math.NaN()),
+		Pressure:       v.measure("pressure", config.MeasurePressure, 1e-4, 1e5, 0),
+		Temperature:    v.measure("gas-temperature", config.MeasureTemperature, 50, 5000, 300),
+		IonTemperature: v.measure("ion-temperature", config.MeasureTemperature, 50, 1e5, 0),
+		Resistance:     v.measure("resistance", config.MeasureResistance, 0, probe.MostResistance, 0),
+		RF:             v.measure("rf-amplitude", config.MeasureVoltage, 0, probe.MostRF, math.NaN()),
 	}
 	for _, flag := range []string{"tip-radius", "tip-length", "gas"} {
 		if !v.c.IsSet(flag) {

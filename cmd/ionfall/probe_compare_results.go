@@ -58,7 +58,8 @@ type pagePart struct {
 const comparisonPage = `<!DOCTYPE html>
 <html lang="en"><head><meta charset="utf-8"><title>ionfall: measured and simulated</title>
 <style>body{font-family:sans-serif;max-width:60em;margin:2em auto;padding:0 1em}
-pre{overflow-x:auto;background:#f4f4f4;padding:1em}svg{max-width:100%;height:auto}</style></head>
+pre{white-space:pre-wrap;background:#f4f4f4;padding:1em}
+svg{max-width:100%;height:auto}</style></head>
 <body><h1>Measured and simulated</h1>
 {{range .}}<section><h2>{{.Name}}</h2><pre>{{.Text}}</pre>
 {{range .Figures}}<figure>{{.}}</figure>

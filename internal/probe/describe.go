@@ -37,20 +37,10 @@ type ProbeDescription struct {
 	Run     string
 	Columns Columns
 	Setup   Setup
+	// Inputs tell the point of a scan, beside the pressure.
+	Inputs []Condition
 
-	file string
-	pos  map[string][2]int
-}
-
-// Errorf is an error about a key of the probe, in its place.
-func (p *ProbeDescription) Errorf(key, got, want, hint string) *inputerr.Error {
-	at := p.pos[key]
-	if at == [2]int{} {
-		at = p.pos[""]
-	}
-	return &inputerr.Error{
-		File: p.file, Line: at[0], Col: at[1], Key: key, Got: got, Want: want, Hint: hint,
-	}
+	Placed
 }
 
 // ParseDescription reads a description. The error is an inputerr.List.

@@ -16,23 +16,30 @@ type AnalyserDescription struct {
 	Run       string
 	Columns   Columns
 	Analyser  Analyser
+	// Pressure [Pa], 0 if it is not stated, and Inputs tell the point of a scan.
+	Pressure float64
+	Inputs   []Condition
+
+	Placed
 }
 
 func analyserKeys() []string {
 	return []string{
 		"name", "sweeps", "electrode", "grids", "open_fraction", "entrance_radius", "acceptance",
 		"resolution", "electrode_potential", "columns", "run",
+		"pressure", "inputs",
 	}
 }
 
 func (d *describer) analyser(n *yaml.Node, path string) AnalyserDescription {
 	a := AnalyserDescription{
-		Name: path, Electrode: "grounded",
+		Name: path, Electrode: "grounded", Placed: placed(d.file, n),
 		Analyser: Analyser{Grids: 1, Open: 1, Acceptance: math.Pi / 2},
 	}
 	given := map[string]bool{}
 	d.mapping(n, path, analyserKeys(), func(key string, v *yaml.Node) {
 		given[key] = true
+		a.pos[key] = [2]int{v.Line, v.Column}
 		d.analyserValue(&a, key, v, path+"."+key)
 	})
 	if n.Kind == yaml.MappingNode {
@@ -53,6 +60,10 @@ func (d *describer) analyserValue(a *AnalyserDescription, key string, v *yaml.No
 		a.Sweeps = d.text(v, path)
 	case "run":
 		a.Run = d.text(v, path)
+	case "pressure":
+		a.Pressure = d.pressureOf(v, path)
+	case "inputs":
+		a.Inputs = d.conditions(v, path)
 	case "electrode":
 		a.Electrode = d.choice(v, path, "powered", "grounded")
 	case "grids":

@@ -22,13 +22,14 @@ func probeKeys() []string {
 	return []string{
 		"name", "sweeps", "position", "orientation", "tip_radius", "tip_length", "gas", "pressure",
 		"gas_temperature", "resistance", "rf_amplitude", "area_error", "sign", "columns", "run",
+		"inputs", "ion_temperature",
 	}
 }
 
 // probe reads one probe.
 func (d *describer) probe(n *yaml.Node, path string) ProbeDescription {
 	p := ProbeDescription{
-		Name: path, file: d.file, pos: map[string][2]int{"": {n.Line, n.Column}},
+		Name: path, Placed: placed(d.file, n),
 		Position: math.NaN(), Setup: Setup{Temperature: 300, RF: math.NaN()},
 	}
 	given := map[string]bool{}
@@ -67,9 +68,13 @@ func (d *describer) probeValue(p *ProbeDescription, key string, v *yaml.Node, pa
 	case "tip_length":
 		s.Length = d.quantity(v, path, config.MeasureLength, LeastLength, MostLength)
 	case "pressure":
-		s.Pressure = d.quantity(v, path, config.MeasurePressure, 1e-4, 1e5)
+		s.Pressure = d.pressureOf(v, path)
+	case "inputs":
+		p.Inputs = d.conditions(v, path)
 	case "gas_temperature":
 		s.Temperature = d.quantity(v, path, config.MeasureTemperature, 50, 5000)
+	case "ion_temperature":
+		s.IonTemperature = d.quantity(v, path, config.MeasureTemperature, 50, 1e5)
 	case "resistance":
 		s.Resistance = d.quantity(v, path, config.MeasureResistance, 0, MostResistance)
 	case "rf_amplitude":

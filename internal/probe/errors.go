@@ -77,9 +77,10 @@ const tableError = 2e-3
 // and of what other ways disagree.
 func (r *reduction) combine(central *smoothed) {
 	var variance [5]float64
+	near := r.fitNearKnee(r.candidates[0].fitted, r.used)
 	for i := range variance {
 		se := r.spreadOf(func(s *sample) float64 { return s.derived[i] })
-		variance[i] = se*se + r.betweenForms(i)
+		variance[i] = se*se + r.betweenForms(i) + r.saturationError(i, near)
 		if i == isIons {
 			variance[i] += math.Pow(tableError*r.center[i], 2)
 		}

@@ -87,7 +87,7 @@ func (r *reduction) widen(key string, relative float64) {
 func (r *reduction) radialRatio(c *characteristic) float64 {
 	j := RadialCurrent(c.rho, ionReference)
 	// i = J 2 pi lambda sqrt(2)/(2 pi rp) sqrt(2 pi).
-	return j / c.rho * math.Sqrt(4*math.Pi) / OrbitalCurrent(c.rho, ionReference)
+	return j / c.rho * math.Sqrt(4*math.Pi) / WarmCurrent(c.tau, c.rho, ionReference)
 }
 
 // hysteresis compares sweeps up and down by the shift of voltage between them where the current is

@@ -81,7 +81,7 @@ type characteristic struct {
 	ionSlope, saturation   float64
 	straight               float64
 	rf                     float64 // amplitude [V]
-	rho                    float64
+	rho, tau               float64 // tip radius over Debye length, ion over electron temperature
 	electrons, ionPrefixed float64 // currents that the shapes multiply [A]
 }
 
@@ -98,6 +98,7 @@ func (m *model) characteristic(p []float64) *characteristic {
 
 func (c *characteristic) complete(setup *Setup) {
 	c.rho = setup.Radius / DebyeLength(c.density, c.shape.temperature)
+	c.tau = setup.ionRatio(c.shape.temperature)
 	charge := phys.ElementaryCharge * setup.Area()
 	c.electrons = charge * c.density * c.shape.flux
 	c.ionPrefixed = charge * c.ionDensity * setup.ionFlux(c.shape.temperature)
@@ -120,7 +121,7 @@ func (c *characteristic) ions(v float64) float64 {
 	if chi <= 0 {
 		return 0
 	}
-	i := OrbitalCurrent(c.rho, chi)
+	i := WarmCurrent(c.tau, c.rho, chi)
 	if c.ionSlope != 0 {
 		i *= math.Pow(chi/ionReference, c.ionSlope)
 	}

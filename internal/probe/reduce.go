@@ -101,6 +101,7 @@ func (r *reduction) whole() (*Result, error) {
 	r.result.correlation = r.correlations()
 	r.theories()
 	r.judge()
+	r.refuse()
 	r.tables(smooth)
 	return r.result, nil
 }

@@ -19,6 +19,7 @@ func windows() [3]float64 { return [3]float64{1.5, windowUsual, 2.5} }
 type sample struct {
 	derived
 	smoothed
+	nearKnee derived // with less of the saturation in the fit
 }
 
 // resample repeats the reduction on resampled data, and returns what derivatives give on the data
@@ -41,7 +42,7 @@ func (r *reduction) resample() (*smoothed, error) {
 		if err != nil {
 			continue
 		}
-		s := sample{derived: derive(f, drawn)}
+		s := sample{derived: derive(f, drawn), nearKnee: r.fitNearKnee(f, drawn)}
 		window := windows()[int(3*stream.Float64())]
 		grid, values := uniform(drawn.voltage, drawn.current)
 		smooth, err := r.derivatives(grid, values, f.model.characteristic(f.p), window)

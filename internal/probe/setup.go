@@ -15,6 +15,8 @@ type Setup struct {
 	IonMass float64
 	// Pressure [Pa] and Temperature [K] of the gas; a pressure of 0 is not known.
 	Pressure, Temperature float64
+	// IonTemperature [K] of the ions before the tip attracts them; 0 is that of the gas.
+	IonTemperature float64
 	// Resistance in series with the tip, part of which is plasma at the chamber's wall [Ohm].
 	Resistance float64
 	// RF is the amplitude of the residual voltage between tip and plasma, where it is known [V];

@@ -190,6 +190,7 @@ func (y *synthetic) current(v float64, p plasma) float64 {
 	stretch := p.temperature / y.s.Distribution.Temperature()
 	charge := phys.ElementaryCharge * y.setup.Area()
 	rho := y.setup.Radius / DebyeLength(p.density, p.temperature)
+	tau := y.setup.ionRatio(p.temperature)
 	steady := func(v float64) float64 {
 		u := p.potential - v
 		if u <= 0 {
@@ -198,7 +199,7 @@ func (y *synthetic) current(v float64, p plasma) float64 {
 			return charge * p.density * math.Sqrt(stretch) * (at + y.saturation*more)
 		}
 		electrons := p.density * math.Sqrt(stretch) * y.s.Distribution.Retarded(u/stretch)
-		ions := p.ions * y.setup.ionFlux(p.temperature) * OrbitalCurrent(rho, u/p.temperature)
+		ions := p.ions * y.setup.ionFlux(p.temperature) * WarmCurrent(tau, rho, u/p.temperature)
 		return charge * (electrons - ions)
 	}
 	if y.rf <= 0 {

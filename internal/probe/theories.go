@@ -41,6 +41,17 @@ func (r *reduction) theories() {
 	if c.rho > 2 {
 		theory = "the table of orbital motion"
 	}
+	if c.tau > coldIons {
+		theory += fmt.Sprintf(" of ions with %.2g of the electrons' temperature", c.tau)
+	}
+	if c.rho > mostTable {
+		r.caution("the tip radius is %.3g Debye lengths: the ion density follows from the "+
+			"current at %d, where the tables end", c.rho, mostTable)
+	}
+	if c.tau > warmIons {
+		r.caution("the ions are warmer than the electrons: the ion density follows from a table of " +
+			"ions that are as warm")
+	}
 	r.note("ion density by %s: tip radius over Debye length is %.2g", theory, c.rho)
 	if !reached {
 		r.caution("the sweep reaches only %.2g temperatures below the plasma potential: the ion "+

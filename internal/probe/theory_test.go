@@ -79,6 +79,53 @@ func TestOrbitalCurrent(t *testing.T) {
 	near(t, "orbits destroyed", CollisionTrend(1, 1.4), 1.4*0.7547, 1e-3)
 }
 
+// Goal: warm ions. Method: the nodes of the tables of an independent solver; limits that are known
+// (the orbital-motion limit of warm ions, 25 % more current of equally warm than of cold ions at rho
+// and chi of 10, and 1.6 and 26 % less than the limit at rho 2 and 5); no jump between the tables;
+// and power laws fitted elsewhere, within their stated 1.4 %.
+func TestWarmCurrent(t *testing.T) {
+	rhos, chis := orbitalNodes()
+	tenth, equal := warmTables()
+	for i, chi := range chis {
+		for j, rho := range rhos {
+			near(t, "0.1", WarmCurrent(0.1, rho, chi), tenth[i][j], 1e-9)
+			near(t, "1", WarmCurrent(1, rho, chi), equal[i][j], 1e-9)
+			near(t, "cold", WarmCurrent(0.02+1e-9, rho, chi), OrbitalCurrent(rho, chi), 1e-6)
+			near(t, "between", WarmCurrent(0.1+1e-9, rho, chi), WarmCurrent(0.1, rho, chi), 1e-6)
+		}
+	}
+	near(t, "limit", WarmCurrent(1, 0.5, 7.5), 3.2846, 1e-3)
+	near(t, "at the plasma potential", WarmCurrent(1, 50, 1e-9), 1, 1e-3)
+	near(t, "warm over cold", WarmCurrent(1, 10, 10)/OrbitalCurrent(10, 10), 1.25, 0.01)
+	near(t, "rho 2", OMLCylinder(15)/WarmCurrent(1, 2, 15), 1.016, 1e-3)
+	near(t, "rho 5", OMLCylinder(25)/WarmCurrent(1, 5, 25), 1.26, 1e-3)
+	near(t, "remembered from Laframboise's report", WarmCurrent(1, 10, 5), 2.23, 0.01)
+	cold := [][3]float64{
+		{1, 1.134, .499},
+		{3, 1.192, .464},
+		{5, 1.224, .357},
+		{10, 1.155, .260},
+		{20, 1.107, .180},
+		{50, 1.074, .100},
+	}
+	warm := [][3]float64{
+		{1, 1.358, .445},
+		{3, 1.407, .409},
+		{5, 1.445, .354},
+		{10, 1.486, .252},
+		{20, 1.487, .167},
+		{50, 1.477, .089},
+	}
+	for _, chi := range chis[1:] {
+		for _, f := range cold {
+			near(t, "power law, cold", f[1]*math.Pow(chi, f[2]), WarmCurrent(0.02, f[0], chi), 0.0145)
+		}
+		for _, f := range warm {
+			near(t, "power law, warm", f[1]*math.Pow(chi, f[2]), WarmCurrent(1, f[0], chi), 0.0145)
+		}
+	}
+}
+
 // Goal: the exact inversion of Druyvesteyn. Method: second differences of the retarded current of
 // three distributions against the distribution itself.
 func TestDruyvesteynInversion(t *testing.T) {

@@ -1,6 +1,7 @@
 package report
 
 import (
+	"encoding/json"
 	"fmt"
 	"math"
 	"strconv"
@@ -26,6 +27,19 @@ func (n Numbers) MarshalJSON() ([]byte, error) {
 		b = strconv.AppendFloat(b, v, 'g', 6, 64)
 	}
 	return append(b, ']'), nil
+}
+
+// UnmarshalJSON takes null for NaN.
+func (n *Numbers) UnmarshalJSON(src []byte) error {
+	var list []store.Number
+	if err := json.Unmarshal(src, &list); err != nil {
+		return err
+	}
+	*n = nil
+	for _, v := range list {
+		*n = append(*n, float64(v))
+	}
+	return nil
 }
 
 // Axis is a direction of a figure.

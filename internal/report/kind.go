@@ -31,6 +31,7 @@ func (k Kind) Group() string { return k.group }
 // The groups that the page is divided into.
 const (
 	groupWall     = "What hits the electrodes"
+	groupBeside   = "Beside measurements"
 	groupGap      = "Across the gap"
 	groupPhase    = "Over the RF period"
 	groupElectron = "Electrons"
@@ -40,8 +41,8 @@ const (
 
 // Kinds are all figures, in the order of the page.
 func Kinds() []Kind {
-	return slices.Concat(wallKinds(), gapKinds(), phaseKinds(), waveKinds(), electronKinds(),
-		balanceKinds(), historyKinds())
+	return slices.Concat(wallKinds(), besideKinds(), gapKinds(), phaseKinds(), waveKinds(),
+		electronKinds(), balanceKinds(), historyKinds())
 }
 
 // FindKind returns the kind with the ID, or an error that names the nearest.
@@ -101,6 +102,8 @@ func AllFigures(runs []*Run) (figures []Figure, absent []string, err error) {
 	for _, k := range Kinds() {
 		list, err := k.Figures(runs, Select{})
 		switch {
+		case errors.Is(err, fs.ErrNotExist) && k.group == groupBeside:
+			// most runs have none, and lack nothing
 		case errors.Is(err, fs.ErrNotExist):
 			absent = append(absent, k.Title)
 		case err != nil:

@@ -25,6 +25,8 @@ type RunSheet struct {
 	Headline                               []Headline
 	Checks                                 []CheckSheet
 	Indicators                             []Indicator
+	Beside                                 []BesideSheet
+	BesideLost                             string // why there are none, if there should be
 	Provenance                             []Pair
 	References                             []store.Reference
 	Results                                []Pair // every one, under its path
@@ -76,6 +78,7 @@ func newRunSheet(r *Run) (RunSheet, error) {
 			Limit:  typeset(progress.Digits(c.Bound, 3)),
 		})
 	}
+	s.Beside, s.BesideLost = r.besideSheets()
 	all, err := r.Summary.Flatten()
 	if err != nil {
 		return RunSheet{}, err

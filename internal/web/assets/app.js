@@ -225,7 +225,7 @@ function figureSections(ids, fresh) {
     } catch (e) {
       place.remove();
       if (e.status !== 404) missing.append(make("span", { class: "problem" }, `${kind.title}: ${e.message}`));
-      else {
+      else if (kind.id !== "measurements") {
         absent.push(kind.title);
         missing.textContent = `Not recorded, so not shown: ${absent.join("; ")}.`;
       }
@@ -273,6 +273,20 @@ function answersTable(sheet) {
       `${sheet.Several ? h.Run + ", " : ""}${h.Electrode}${h.Substrate ? " (substrate)" : ""}`, make("span", { class: "tag" }, markOf(h.Verdict)))))),
     make("tbody", {}, ...(a.Rows || []).map((r) => make("tr", {}, make("th", { scope: "row" }, r.Label),
       ...r.Cells.map((c) => make("td", { class: c.Failed ? "failed" : null }, (c.Failed ? "✗ " : "") + c.Text)))))));
+}
+
+// besideOf is what measurements say of a run.
+function besideOf(r) {
+  if (!r.Beside && !r.BesideLost) return [];
+  const failed = r.Verdict === "fail";
+  const tables = (r.Beside || []).flatMap((b) => [make("h3", {}, b.Name), make("p", {}, failed ? failedMark() : null, make("strong", {}, b.Verdict)),
+    region(`comparison with ${b.Name}`, make("table", { class: "answers" },
+      make("caption", {}, `${b.Sweeps}, ${b.Where}. Difference: simulated less measured, in joint standard errors.`),
+      make("thead", {}, make("tr", {}, ...["quantity", "measured", "simulated", "difference"].map((t) => make("th", { scope: "col" }, t)))),
+      make("tbody", {}, ...b.Rows.map((c) => make("tr", {}, make("th", { scope: "row" }, c.Label), make("td", {}, c.Measured),
+        make("td", { class: failed ? "failed" : null }, (failed ? "✗ " : "") + c.Simulated), make("td", { class: "n" }, c.Sigma)))))),
+    make("ul", {}, ...(b.Cautions || []).map((c) => make("li", {}, c)))]);
+  return [make("section", {}, make("h2", {}, "Does it agree with what was measured?"), r.BesideLost ? make("p", {}, r.BesideLost) : null, ...tables)];
 }
 
 function wordsOf(r) {
@@ -340,7 +354,7 @@ async function showRun(id, fresh) {
   main.replaceChildren(...head,
     make("dl", { class: "headline" }, ...(r.Headline || []).map((h) => make("div", {}, make("dt", {}, `${h.Name}, ${h.Where} electrode (substrate)`), make("dd", {}, h.Text, failed ? failedMark() : null)))),
     make("section", {}, make("h2", {}, "Answers"), answersTable(v.sheet), definition(r.Asked)),
-    ...figureSections([id], fresh), wordsOf(r));
+    ...besideOf(r), ...figureSections([id], fresh), wordsOf(r));
 }
 
 async function showCompare(ids, fresh) {
