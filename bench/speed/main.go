@@ -1,6 +1,6 @@
 // Command speed measures the program on this machine and writes bench/SPEED.md:
 //
-//	go run ./bench/speed [-runs 5] [-write]
+//	go run ./bench/speed [-runs 5] [-answers] [-write]
 //
 // Whole-loop figures are medians over runs; things that are compared are run in turn.
 package main
@@ -17,13 +17,17 @@ import (
 func main() {
 	runs := flag.Int("runs", 5, "runs of each whole loop")
 	write := flag.Bool("write", false, "write bench/SPEED.md instead of printing")
+	answers := flag.Bool("answers", false, "only make the table of bench/fastpath.json anew")
 	peak := flag.Bool("peak", false, "run a million particles and print the peak memory")
 	flag.Parse()
 	var text []byte
 	var err error
-	if *peak {
+	switch {
+	case *peak:
 		text, err = peakMemory()
-	} else {
+	case *answers:
+		text, err = withAnswers()
+	default:
 		text, err = report(*runs)
 	}
 	if err == nil && *write {
