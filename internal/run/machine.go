@@ -172,7 +172,7 @@ func (m *machine) decidePilot(row *Row) error {
 			1.5*pilotQuality.plasmaStep*float64(c.Numerics.StepsPerPeriod) {
 			return m.refinePilot(density)
 		}
-		if done, _ := m.project(row); done {
+		if m.project(row) {
 			c.Projecting = false
 			m.rec.Start(1)
 		}
@@ -188,17 +188,16 @@ func (m *machine) decidePilot(row *Row) error {
 func (m *machine) decideSettling(row *Row) {
 	c := &m.control
 	if c.Projecting {
-		done, undisturbed := m.project(row)
-		if !done {
+		if !m.project(row) {
 			return
 		}
 		c.Projecting = false
-		c.StagePeriods = undisturbed // the round without growth was settling already
+		c.StagePeriods = 0
 	}
 	if c.StagePeriods < c.Window {
 		return
 	}
-	if c.StagePeriods > c.Window && c.StagePeriods%settleLook != 0 {
+	if c.StagePeriods%settleLook != 0 {
 		return
 	}
 	if ok, _, _ := m.steady(len(m.history) - c.Window); !ok && c.StagePeriods < mostWindows*c.Window {

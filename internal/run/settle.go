@@ -39,12 +39,12 @@ func (c *control) startRound(content float64) {
 // project ends a round: the density, which follows slowly, is moved ahead by a part of the
 // residence time of an ion at the growth rate that was seen, if the growth is more than chance.
 // If it is not, the next round is twice as long and sees less of chance. Reports whether a
-// round of the greatest length saw no growth, and for how many periods nothing was changed.
-func (m *machine) project(row *Row) (done bool, undisturbed int) {
+// round of the greatest length saw no growth.
+func (m *machine) project(row *Row) (done bool) {
 	c := &m.control
 	c.Round.Periods++
 	if c.Round.Periods < c.Round.Length {
-		return false, 0
+		return false
 	}
 	r := c.Round
 	growth := math.Log(row.Content/r.Content) / float64(r.Length)
@@ -68,11 +68,8 @@ func (m *machine) project(row *Row) (done bool, undisturbed int) {
 	if m.balanceNegative() {
 		done = false
 	}
-	if c.Event == "" {
-		undisturbed = r.Length
-	}
 	c.startRound(content)
-	return done || r.Number >= mostRounds, undisturbed
+	return done || r.Number >= mostRounds
 }
 
 // projected returns ln(n*/n) for the way w = (n* - n)/n that is to be gone: births do not follow
