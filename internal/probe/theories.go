@@ -53,11 +53,24 @@ func (r *reduction) theories() {
 			"ions that are as warm")
 	}
 	r.note("ion density by %s: tip radius over Debye length is %.2g", theory, c.rho)
+	r.warmth(c)
 	if !reached {
 		r.caution("the sweep reaches only %.2g temperatures below the plasma potential: the ion "+
 			"density rests on theory more than on current", chi)
 	}
 	r.rfBound()
+}
+
+// warmth states what the ion density rests on where the temperature of the ions is not known: that
+// of the gas is their lowest.
+func (r *reduction) warmth(c *characteristic) {
+	if r.setup.IonTemperature > 0 || c.tau >= someIons {
+		return
+	}
+	ratio := WarmCurrent(c.tau, c.rho, ionReference) / WarmCurrent(someIons, c.rho, ionReference)
+	r.note("the ions were taken to be as warm as the gas, %.2g of the electrons' temperature; at %.2g "+
+		"of it the ion density would be %.2g %% lower. Give ion_temperature where it is known",
+		c.tau, someIons, 100*(1-ratio))
 }
 
 func (r *reduction) relativeError(key string) float64 {
