@@ -2,6 +2,7 @@ package web
 
 import (
 	"bytes"
+	"math"
 	"os"
 	"path/filepath"
 	"strings"
@@ -151,7 +152,9 @@ func (b *tab) reach() {
 // Goal: the viewer lists, shows, compares and follows runs, with mouse and keyboard, and keeps to
 // its own address. Method: a real browser on a sound run, a failed one, and one in progress.
 func TestViewerInBrowser(t *testing.T) {
-	s := viewed(t, results(t), nil)
+	root := results(t)
+	measuredBeside(t, filepath.Join(root, "sound"))
+	s := viewed(t, root, nil)
 	address, err := s.Address()
 	if err != nil {
 		t.Fatal(err)
@@ -170,8 +173,9 @@ func TestViewerInBrowser(t *testing.T) {
 	b.until(`(document.querySelector('a[href="#/run/sound"]').click(), true)`)
 	b.until(`document.querySelectorAll("figure").length >= 1`)
 	b.reach()
-	b.drawn("viewer-run", 12)
+	b.drawn("viewer-run", 13)
 	b.accessible("run")
+	measuredIsShown(b)
 	viewerByKeyboard(b)
 	viewerByMouse(b)
 	b.dark(true)
@@ -194,6 +198,65 @@ func TestViewerInBrowser(t *testing.T) {
 	b.until(`document.querySelector(".progress")?.textContent.includes("period 12")`)
 	b.accessible("run in progress")
 	b.clean()
+}
+
+// measuredBeside gives a run an invented measurement to stand beside.
+func measuredBeside(t *testing.T, dir string) {
+	t.Helper()
+	unknown := store.Number(math.NaN())
+	err := report.KeepBeside(dir, report.Beside{
+		Name: "mid-gap", Sweeps: "sweeps.csv", Where: "20 mm from the powered electrode",
+		Verdict: "They <disagree> in one of two.",
+		Rows: []report.BesideRow{
+			{
+				Label: "electron density", Unit: "1/m3", Measured: report.BesideValue{Value: 3e15, SE: 3e13},
+				Simulated: report.BesideValue{Value: 3.3e15, SE: 4e13}, Sigma: 6,
+			},
+			{
+				Label: "plasma potential", Unit: "V",
+				Measured:  report.BesideValue{Value: unknown, SE: unknown, Reason: "no knee"},
+				Simulated: report.BesideValue{Value: 60, SE: 0.1}, Sigma: unknown,
+			},
+		},
+		Cautions: []string{"an invented caution"},
+		Figures: []report.Figure{{
+			Title: "characteristic of the probe mid-gap",
+			X:     report.Axis{Name: "voltage_V", Label: "voltage", Unit: "V"},
+			Y:     report.Axis{Name: "current_A", Label: "current", Unit: "A"},
+			Series: []report.Series{
+				{
+					Label: "measured", Run: -1, Dots: true, X: report.Numbers{0, 1, 2},
+					Y: report.Numbers{1, 2.2, 3}, SE: report.Numbers{0.1, 0.1, 0.1},
+				},
+				{
+					Label: "simulated", X: report.Numbers{0, 1, 2}, Y: report.Numbers{1.1, 2.1, 3.1},
+				},
+			},
+		}},
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+}
+
+// measuredIsShown checks the section of the measurement: its table, sentence, caution and figure.
+func measuredIsShown(b *tab) {
+	b.t.Helper()
+	text := value[string](b, `[...document.querySelectorAll("section")].find((s) =>
+		s.querySelector("h2")?.textContent === "Does it agree with what was measured?")?.innerText ?? ""`)
+	for _, want := range []string{
+		"mid-gap", "They <disagree> in one of two.", "sweeps.csv, 20 mm from the powered electrode",
+		"electron density", "(3.000 ± 0.030) × 10", "(3.300 ± 0.040) × 10", "+6.0", "no knee",
+		"an invented caution",
+	} {
+		if !strings.Contains(text, want) {
+			b.t.Errorf("what was measured: no %q in %q", want, text)
+		}
+	}
+	if !value[bool](b, `[...document.querySelectorAll("figure")].some((f) =>
+		f.textContent.includes("characteristic of the probe"))`) {
+		b.t.Error("what was measured has no figure")
+	}
 }
 
 // viewerByKeyboard reads values, zooms and changes the scale.
