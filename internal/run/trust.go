@@ -112,7 +112,7 @@ func (m *machine) particleChecks() []store.Check {
 		below("particles_per_debye_length", center*q.debye()*c.Area(0.5*float64(n.Cells)), perDebye,
 			"electrons in a Debye length in the middle of the gap. Their noise acts as collisions "+
 				"between them, which argon feels: with four times the automatic number the density "+
-				"in the middle was 15 % higher at 5 Pa, the ion flux 12 % higher at 20 Pa"),
+				"in the middle was 15 % higher at 5 Pa, the ion flux 11 % higher at 20 Pa"),
 		above("table_range", t.Beyond/math.Max(1, t.AllCollide), tableEnd,
 			"part of the collisions judged by a cross section beyond the end of its data"),
 	}
