@@ -68,8 +68,8 @@ func (r *reduction) warmth(c *characteristic) {
 		return
 	}
 	ratio := WarmCurrent(c.tau, c.rho, ionReference) / WarmCurrent(someIons, c.rho, ionReference)
-	r.note("the ions were taken to be as warm as the gas, %.2g of the electrons' temperature; at %.2g "+
-		"of it the ion density would be %.2g %% lower. Give ion_temperature where it is known",
+	r.note("the ions were taken to be as warm as the gas, %.2g of the electrons' temperature; at "+
+		"%.2g of it the ion density would be %.2g %% lower. Give ion_temperature where it is known",
 		c.tau, someIons, 100*(1-ratio))
 }
 
