@@ -93,9 +93,10 @@ func discharges() []part {
 		{
 			file: "convergence.json", title: "Numerics: how far from the limit?",
 			about: "One argon discharge with cells, steps and particles each halved and doubled, for " +
-				"both field schemes, extrapolated; and the automatic choice against a much finer one.",
+				"both field schemes, extrapolated; the automatic choice against a much finer one; and " +
+				"one at 20 Pa with two and four times the automatic number of particles.",
 			pkg: "./internal/run", pattern: "ValidationConvergence", flags: "-timeout 3h",
-			takes: "a quarter of an hour with two free processors",
+			takes: "half an hour with two free processors",
 		},
 		{
 			file: "discharge.json", title: "Whole discharges",
