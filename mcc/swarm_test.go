@@ -94,6 +94,9 @@ func TestSwarmErrorsAreTrue(t *testing.T) {
 			square += e.Mean * e.Mean
 			quoted += e.StdErr * e.StdErr
 		}
+		if square == 0 && quoted == 0 {
+			continue // argon has no such process
+		}
 		variance := (square - sum*sum/seeds) / (seeds - 1)
 		ratio := variance / (quoted / seeds)
 		t.Logf("%s: spread over quoted error %.2f", q.name, math.Sqrt(ratio))
