@@ -22,8 +22,8 @@ numerics: %s
 // collisional. The noise of particles acts as collisions between electrons, which bring the bulk
 // closer to a Maxwellian (M. M. Turner, Phys. Plasmas 13, 033506 (2006)); so fewer of them ionize
 // as much at a lower temperature. Method: the automatic choice, and the same cells and steps with
-// two and four times the particles; half of the cells and steps make no difference at the same
-// number of particles.
+// two and four times the particles; and finer cells and steps with the same number of particles,
+// which tells what these do alone.
 func TestValidationConvergenceOfCollisionalArgon(t *testing.T) {
 	onlyWhenValidating(t, "ten minutes with two free processors")
 	automatic := runAll(t, []string{ohmicArgon("auto")})[0]
